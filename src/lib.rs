@@ -1,0 +1,10 @@
+//! `railworthy` judges the linear regulators and voltage references of a schematic netlist.
+//!
+//! Data flows one way through the modules below, in the order in which they are listed: each uses only those
+//! before it.
+
+pub mod source;
+
+pub mod quantity;
+
+pub mod netlist;

@@ -1,0 +1,1 @@
+//! Ranges with units and evidence.

@@ -1,0 +1,7 @@
+//! Texts that were read, places in them, and problems met while reading: shared by every reader.
+
+mod problem;
+mod text;
+
+pub use problem::{Problem, Severity};
+pub use text::{Position, Source, Span};

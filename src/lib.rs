@@ -8,3 +8,8 @@ pub mod source;
 pub mod quantity;
 
 pub mod netlist;
+
+pub mod circuit;
+pub mod facts;
+pub mod knowledge;
+pub mod recognize;

@@ -1,1 +1,15 @@
-//! Ranges with units and evidence.
+//! Figures as ranges with units and with what they rest on.
+//!
+//! SI units inside: volts, amperes, ohms, farads, seconds, kelvins as differences and degrees Celsius as levels.
+
+mod dimension;
+mod evidence;
+mod figure;
+mod pair;
+mod range;
+
+pub use dimension::Dimension;
+pub use evidence::{Evidence, Grade, Key, Settle, Table};
+pub use figure::{Guess, Quantity, Slope};
+pub use pair::Pair;
+pub use range::{Range, RangeError};

@@ -2,6 +2,7 @@
 
 use petgraph::graph::{NodeIndex, UnGraph};
 
+use crate::netlist::Field;
 use crate::source::Span;
 
 /// A device of the board.
@@ -182,6 +183,8 @@ pub struct Device {
     pub keywords: String,
     /// Footprint, `library:name` or empty.
     pub footprint: String,
+    /// Fields and properties of the component as written; manufacturer's numbers stand here.
+    pub fields: Vec<Field>,
     /// Pins in a stable order: as the library part lists them, then any that only nets name.
     pub pins: Vec<Pin>,
     /// Its place in `Netlist::components`.

@@ -1,0 +1,1 @@
+//! Inputs meant to do harm.

@@ -2,6 +2,7 @@
 
 mod problem;
 mod text;
+pub mod toml;
 
 pub use problem::{Problem, Severity};
 pub use text::{Position, Source, Span};

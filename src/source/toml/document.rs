@@ -18,14 +18,14 @@ impl Document {
     ///
     /// # Errors
     /// When the text is not TOML: one problem that points at the first place which is not.
-    pub fn parse(source: &Source) -> Result<Self, Problem> {
+    pub fn parse(source: &Source) -> Result<Self, Box<Problem>> {
         match toml_edit::Document::parse(source.text().to_owned()) {
             Ok(tree) => Ok(Self { source: source.clone(), tree, problems: RefCell::default() }),
             Err(error) => {
                 let end = source.text().len();
                 let span = error.span().map_or(Span::new(end, end), Span::from);
                 let message = error.message().lines().collect::<Vec<_>>().join(", ");
-                Err(Problem::error("the file is not valid TOML").at(source, span, message))
+                Err(Box::new(Problem::error("the file is not valid TOML").at(source, span, message)))
             }
         }
     }

@@ -8,6 +8,7 @@ use super::form::{Form, Misshapen, text};
 use super::island::{Island, Kind, Place, Sink};
 use super::limits::{Limits, MAX_FIELDS};
 use super::model::{Component, Field, LibraryPart, NetEntry, NetNode, PartPin};
+use super::problems::Problems;
 use crate::source::{Problem, Source, Span};
 
 const EXPORT_AGAIN: &str = "export the netlist again from the schematic editor";
@@ -24,7 +25,7 @@ pub(super) struct Builder<'a> {
     pub(super) components: Vec<Component>,
     pub(super) parts: Vec<LibraryPart>,
     pub(super) nets: Vec<NetEntry>,
-    pub(super) problems: Vec<Problem>,
+    pub(super) problems: Problems,
 }
 
 impl Sink for Builder<'_> {
@@ -64,7 +65,7 @@ impl<'a> Builder<'a> {
             components: Vec::new(),
             parts: Vec::new(),
             nets: Vec::new(),
-            problems: Vec::new(),
+            problems: Problems::default(),
         }
     }
 

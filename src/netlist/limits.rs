@@ -27,7 +27,7 @@ pub const MAX_FIELDS: usize = 256;
 /// Most attributes on one XML element; exports write 4.
 pub const MAX_ATTRIBUTES: usize = 64;
 
-/// Most problems told one by one; the rest is counted.
+/// Most errors, and most warnings, told one by one; the rest is counted.
 pub const MAX_PROBLEMS: usize = 200;
 
 /// The limits in force, so that tests can meet small ones.

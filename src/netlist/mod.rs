@@ -10,9 +10,12 @@ mod form;
 mod island;
 pub mod limits;
 mod model;
+mod problems;
 mod read;
 mod refuse;
 mod scan;
+#[cfg(test)]
+mod tests;
 mod verify;
 mod xml;
 

@@ -1,13 +1,14 @@
 //! From bytes to a netlist.
 
 use super::build::Builder;
-use super::limits::{Limits, MAX_PROBLEMS};
+use super::limits::Limits;
 use super::model::{Format, Netlist};
+use super::problems::Problems;
 use super::refuse;
 use super::scan::Scanner;
 use super::verify::verify;
 use super::xml::XmlScanner;
-use crate::source::{Problem, Severity, Source};
+use crate::source::{Problem, Source};
 
 /// Reads a netlist export: S-expressions of version `D` or `E`, or the XML form of either, told apart by content.
 ///
@@ -55,16 +56,15 @@ fn finish(source: &Source, is_xml: bool, built: Builder<'_>) -> Result<Netlist, 
     let Builder { version, schematic, tool, mut components, parts, mut nets, mut problems, .. } = built;
     verify(source, &mut components, &parts, &mut nets, &mut problems);
     let (format, version) = format(source, is_xml, version, &mut problems);
-    let problems = settle(problems);
-    let damaged = problems.iter().any(|problem| problem.severity() == Severity::Error);
-    if damaged && components.is_empty() && nets.is_empty() {
-        return Err(problems);
+    if problems.has_error() && components.is_empty() && nets.is_empty() {
+        return Err(problems.settle());
     }
+    let problems = problems.settle();
     Ok(Netlist { source: source.clone(), format, version, schematic, tool, components, parts, nets, problems })
 }
 
 /// The format by the version; where that is missing or not known, by whether references are quoted.
-fn format(source: &Source, is_xml: bool, version: Option<String>, problems: &mut Vec<Problem>) -> (Format, String) {
+fn format(source: &Source, is_xml: bool, version: Option<String>, problems: &mut Problems) -> (Format, String) {
     let written = version.unwrap_or_default();
     let guessed = if source.text().contains("(ref \"") { Format::E } else { Format::D };
     let of_lists = match written.as_str() {
@@ -81,20 +81,4 @@ fn format(source: &Source, is_xml: bool, version: Option<String>, problems: &mut
         }
     };
     (if is_xml { Format::Xml } else { of_lists }, written)
-}
-
-/// The problems in order of the file, those past the limit counted.
-fn settle(mut problems: Vec<Problem>) -> Vec<Problem> {
-    problems.sort_by_key(|problem| problem.place().map_or(usize::MAX, |(_, span)| span.start()));
-    if problems.len() <= MAX_PROBLEMS {
-        return problems;
-    }
-    // Errors first, so that a flood of warnings cannot hide one.
-    problems.sort_by_key(|problem| problem.severity() != Severity::Error);
-    let rest = problems.split_off(MAX_PROBLEMS);
-    problems.sort_by_key(|problem| problem.place().map_or(usize::MAX, |(_, span)| span.start()));
-    let worst = rest.iter().any(|problem| problem.severity() == Severity::Error);
-    let message = format!("{} more problems are not listed", rest.len());
-    problems.push(if worst { Problem::error(message) } else { Problem::warning(message) });
-    problems
 }

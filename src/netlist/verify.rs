@@ -6,6 +6,7 @@
 use std::collections::{HashMap, HashSet};
 
 use super::model::{Component, LibraryPart, NetEntry};
+use super::problems::Problems;
 use crate::source::{Problem, Source};
 
 /// Drops components and nets that claim a taken reference or code, and tells all that does not fit.
@@ -14,7 +15,7 @@ pub(super) fn verify(
     components: &mut Vec<Component>,
     parts: &[LibraryPart],
     nets: &mut Vec<NetEntry>,
-    problems: &mut Vec<Problem>,
+    problems: &mut Problems,
 ) {
     unique_references(source, components, problems);
     unique_codes(source, nets, problems);
@@ -32,7 +33,7 @@ fn keep<T>(items: &mut Vec<T>, flags: &[bool]) {
     }
 }
 
-fn unique_references(source: &Source, components: &mut Vec<Component>, problems: &mut Vec<Problem>) {
+fn unique_references(source: &Source, components: &mut Vec<Component>, problems: &mut Problems) {
     let mut seen = HashSet::with_capacity(components.len());
     let fresh: Vec<bool> = components.iter().map(|component| seen.insert(component.reference.as_str())).collect();
     for component in components.iter().zip(&fresh).filter_map(|(component, fresh)| (!fresh).then_some(component)) {
@@ -45,7 +46,7 @@ fn unique_references(source: &Source, components: &mut Vec<Component>, problems:
     keep(components, &fresh);
 }
 
-fn unique_codes(source: &Source, nets: &mut Vec<NetEntry>, problems: &mut Vec<Problem>) {
+fn unique_codes(source: &Source, nets: &mut Vec<NetEntry>, problems: &mut Problems) {
     let mut seen = HashSet::with_capacity(nets.len());
     let fresh: Vec<bool> = nets.iter().map(|net| seen.insert(net.code.as_str())).collect();
     for net in nets.iter().zip(&fresh).filter_map(|(net, fresh)| (!fresh).then_some(net)) {
@@ -58,7 +59,7 @@ fn unique_codes(source: &Source, nets: &mut Vec<NetEntry>, problems: &mut Vec<Pr
     keep(nets, &fresh);
 }
 
-fn repeated_names(source: &Source, nets: &[NetEntry], problems: &mut Vec<Problem>) {
+fn repeated_names(source: &Source, nets: &[NetEntry], problems: &mut Problems) {
     let mut seen = HashSet::with_capacity(nets.len());
     for net in nets.iter().filter(|net| !net.name.is_empty()) {
         if !seen.insert(net.name.as_str()) {
@@ -71,7 +72,7 @@ fn repeated_names(source: &Source, nets: &[NetEntry], problems: &mut Vec<Problem
     }
 }
 
-fn repeated_parts(source: &Source, parts: &[LibraryPart], problems: &mut Vec<Problem>) {
+fn repeated_parts(source: &Source, parts: &[LibraryPart], problems: &mut Problems) {
     let mut seen = HashSet::with_capacity(parts.len());
     for part in parts {
         if !seen.insert((part.library.as_str(), part.part.as_str())) {
@@ -86,7 +87,7 @@ fn repeated_parts(source: &Source, parts: &[LibraryPart], problems: &mut Vec<Pro
     }
 }
 
-fn known_references(source: &Source, components: &[Component], nets: &[NetEntry], problems: &mut Vec<Problem>) {
+fn known_references(source: &Source, components: &[Component], nets: &[NetEntry], problems: &mut Problems) {
     let known: HashSet<&str> = components.iter().map(|component| component.reference.as_str()).collect();
     let mut told = HashSet::new();
     for node in nets.iter().flat_map(|net| &net.nodes) {
@@ -100,7 +101,7 @@ fn known_references(source: &Source, components: &[Component], nets: &[NetEntry]
     }
 }
 
-fn pins_on_several_nets(source: &Source, nets: &[NetEntry], problems: &mut Vec<Problem>) {
+fn pins_on_several_nets(source: &Source, nets: &[NetEntry], problems: &mut Problems) {
     let count = nets.iter().map(|net| net.nodes.len()).sum();
     let mut home: HashMap<(&str, &str), &NetEntry> = HashMap::with_capacity(count);
     let mut told = HashSet::new();

@@ -198,6 +198,18 @@ impl<'a, S: Sink> XmlScanner<'a, S> {
             self.stop(problem.help("this is damaged or no netlist; export it again"));
             return;
         }
+        let written = self.text.get(tag.start..self.at).unwrap_or("");
+        if written.contains([' ', '\t', '\r', '\n']) && declares_namespace(written) {
+            // Scopes of many names cost the parser more than the length of the text.
+            let problem = Problem::error("an element declares a namespace").at(
+                self.source,
+                tag.start..self.at,
+                "a netlist has none; what holds this was left out",
+            );
+            self.open = None;
+            self.damage(problem);
+            return;
+        }
         if tag.closing {
             open.depth -= 1;
         } else if !tag.empty {
@@ -325,6 +337,10 @@ impl<'a, S: Sink> XmlScanner<'a, S> {
 
 fn ends_name(byte: u8) -> bool {
     matches!(byte, b' ' | b'\t' | b'\r' | b'\n' | b'/' | b'>' | b'<')
+}
+
+fn declares_namespace(tag: &str) -> bool {
+    tag.split([' ', '\t', '\r', '\n']).skip(1).any(|word| word.starts_with("xmlns=") || word.starts_with("xmlns:"))
 }
 
 fn atom(text: &str) -> Sexp {

@@ -119,6 +119,9 @@ impl<'a> Builder<'a> {
         for (form, place) in forms(items, places) {
             match form.head.as_str() {
                 "ref" => {
+                    if !component.reference.is_empty() {
+                        self.lost("a component has two references".into(), place.whole, "the second; it counts");
+                    }
                     component.reference = self.value(form, place);
                     component.reference_span = place.value;
                 }
@@ -239,6 +242,12 @@ impl<'a> Builder<'a> {
         let mut named = false;
         for (form, place) in forms(items, places) {
             match form.head.as_str() {
+                "code" | "name"
+                    if (form.head == "code" && !net.code.is_empty()) || (form.head == "name" && named) =>
+                {
+                    let label = "the second; two nets may have run together";
+                    self.lost(format!("a net has two of `{}`", form.head), place.whole, label);
+                }
                 "code" => net.code = self.value(form, place),
                 "name" => {
                     net.name = self.value(form, place);
@@ -261,6 +270,9 @@ impl<'a> Builder<'a> {
 
     fn node(&mut self, form: Form, place: Place) -> Option<NetNode> {
         let mut node = NetNode { span: place.whole, ..NetNode::default() };
+        if form.rest.as_slice().iter().any(|item| matches!(item, Sexp::Atom(_))) {
+            self.lost("a pin on a net holds a text by itself".into(), place.whole, "expected lists only");
+        }
         for inner in form.lists() {
             match inner.head.as_str() {
                 "ref" => node.reference = self.value(inner, place),

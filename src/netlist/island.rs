@@ -87,9 +87,40 @@ impl Section {
         }
     }
 
+    /// Whether all that stands in it are islands.
+    pub(super) fn holds_islands(self) -> bool {
+        matches!(self, Self::Components | Self::Parts | Self::Nets)
+    }
+
     /// Whether it stands right inside the export.
     pub(super) fn is_main(self) -> bool {
         !matches!(self, Self::Export | Self::Other)
+    }
+}
+
+/// Which of the sections that a netlist cannot be without were met.
+#[derive(Debug, Default)]
+pub(super) struct Met {
+    components: bool,
+    nets: bool,
+}
+
+impl Met {
+    /// Notes a section.
+    pub(super) fn note(&mut self, section: Section) {
+        self.components |= section == Section::Components;
+        self.nets |= section == Section::Nets;
+    }
+
+    /// The first section that is missing.
+    pub(super) fn missing(&self) -> Option<Problem> {
+        let name = match self {
+            Self { components: false, .. } => "components",
+            Self { nets: false, .. } => "nets",
+            _ => return None,
+        };
+        let problem = Problem::error(format!("the netlist has no section `{name}`"));
+        Some(problem.help("export the netlist again from the schematic editor"))
     }
 }
 

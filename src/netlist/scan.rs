@@ -8,7 +8,7 @@ use std::ops::ControlFlow;
 
 use sexp::Sexp;
 
-use super::island::{Island, Kind, Place, Section, Sink, opens_outside};
+use super::island::{Island, Kind, Met, Place, Section, Sink, opens_outside};
 use super::limits::Limits;
 use crate::source::{Problem, Source, Span};
 
@@ -33,6 +33,7 @@ pub(super) struct Scanner<'a, S> {
     sink: &'a mut S,
     at: usize,
     outer: Vec<Section>,
+    met: Met,
     open: Option<Open>,
     rewritten: String,
     places: Vec<Place>,
@@ -52,6 +53,7 @@ impl<'a, S: Sink> Scanner<'a, S> {
             sink,
             at: if text.starts_with('\u{feff}') { '\u{feff}'.len_utf8() } else { 0 },
             outer: Vec::new(),
+            met: Met::default(),
             open: None,
             rewritten: String::new(),
             places: Vec::new(),
@@ -190,8 +192,10 @@ impl<'a, S: Sink> Scanner<'a, S> {
             }
             Section::Export => self.started = true,
             section if section.is_main() && around != Some(Section::Export) => self.misplaced(head),
+            Section::Other if around.is_some_and(Section::holds_islands) => self.unknown(head),
             _ => {}
         }
+        self.met.note(section);
         self.outer.push(section);
         self.at += 1;
     }
@@ -219,6 +223,13 @@ impl<'a, S: Sink> Scanner<'a, S> {
             self.damage(problem);
         }
         self.outer.truncate(1);
+    }
+
+    fn unknown(&mut self, head: &str) {
+        let problem = Problem::error("a list of an unknown kind stands among components, library parts or nets")
+            .at(self.source, self.at..self.at + 1 + head.len(), "expected `comp`, `libpart` or `net`; left out")
+            .help(EXPORT_AGAIN);
+        self.damage(problem);
     }
 
     fn close_list(&mut self) {
@@ -392,6 +403,8 @@ impl<'a, S: Sink> Scanner<'a, S> {
             let problem = Problem::error(format!("the file ends with {} lists still open", self.outer.len()))
                 .at(self.source, last..end, "something is missing behind this")
                 .help(format!("everything before it was read; {EXPORT_AGAIN}"));
+            self.damage(problem);
+        } else if let Some(problem) = self.met.missing() {
             self.damage(problem);
         }
     }

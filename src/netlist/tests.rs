@@ -189,6 +189,9 @@ fn what_lacks_its_key_is_an_error_at_its_place() {
         ("(code 2) ", "", "a net has no code", "(net (name"),
         ("(name -12V)", "", "a net has no name", "(net (code 1)"),
         ("(node (ref U1) (pin 1))", "(node (pin 1))", "a pin on a net is not complete", "(node (pin 1))"),
+        ("))\n    (net (code 2)", ") (code 2)", "a net has two of `code`", "(code 2)"),
+        ("(ref U1) (pin 1)", "(ref U1) (pin 1) x", "a pin on a net holds a text", "(node (ref U1) (pin 1) x"),
+        ("(ref U1) (value INF)", "(ref U1) (value INF) (ref U2)", "a component has two references", "(ref U2)"),
         ("(part LD)\n", "\n", "a library part has no name", "(libpart (lib reg)"),
         ("(num 1) ", "", "a pin of a library part has no number", "(pins"),
     ] {
@@ -302,6 +305,20 @@ fn the_place_of_a_bad_byte_is_shown() {
 }
 
 #[test]
+fn a_lost_head_or_section_is_an_error() {
+    for (from, to, message) in [
+        ("(comp (ref U1)", "(cmp (ref U1)", "a list of an unknown kind"),
+        ("(nets", "(nts", "no section `nets`"),
+        ("(components", "(cmponents", "no section `components`"),
+    ] {
+        let (_, errors) = damaged(&BOARD_D.replace(from, to));
+        assert!(errors.iter().any(|error| error.message().contains(message)), "{errors:?}");
+    }
+    let (_, errors) = damaged(&BOARD_XML.replace("net>", "nat>").replace("<net ", "<nat "));
+    assert!(errors[0].message().contains("an unknown element"), "{errors:?}");
+}
+
+#[test]
 fn an_unknown_version_is_read_with_a_warning() {
     let netlist = read("board.net", BOARD_D.replace("(version D)", "(version F)").as_bytes()).unwrap();
     assert!(netlist.is_complete() && netlist.problems.len() == 1);
@@ -333,7 +350,7 @@ fn each_limit_is_told_and_what_came_before_is_kept() {
 fn nesting_is_read_up_to_the_limit() {
     let nested = |depth: usize| {
         let inner = depth - 3;
-        format!("(export (components (comp (ref A1) {}{})))", "(x ".repeat(inner), ")".repeat(inner))
+        format!("(export (components (comp (ref A1) {}{})) (nets))", "(x ".repeat(inner), ")".repeat(inner))
     };
     assert_eq!(good(&nested(MAX_DEPTH)).components.len(), 1);
     let message = refused(nested(MAX_DEPTH + 1).as_bytes()).message().to_owned();
@@ -343,7 +360,7 @@ fn nesting_is_read_up_to_the_limit() {
 #[test]
 fn fields_beyond_the_limit_are_an_error() {
     let fields: String = (0..MAX_FIELDS + 1).map(|at| format!("(field (name F{at}) x)")).collect();
-    let (netlist, errors) = damaged(&format!("(export (components (comp (ref A1) (fields {fields}))))"));
+    let (netlist, errors) = damaged(&format!("(export (components (comp (ref A1) (fields {fields}))) (nets))"));
     assert_eq!((netlist.components[0].fields.len(), errors.len()), (MAX_FIELDS, 1));
 }
 

@@ -9,7 +9,7 @@ use std::ops::ControlFlow;
 use roxmltree::{Document, Node, ParsingOptions};
 use sexp::{Atom, Sexp};
 
-use super::island::{Island, Kind, Place, Section, Sink, opens_outside};
+use super::island::{Island, Kind, Met, Place, Section, Sink, opens_outside};
 use super::limits::Limits;
 use crate::source::{Problem, Source, Span};
 
@@ -23,6 +23,7 @@ pub(super) struct XmlScanner<'a, S> {
     sink: &'a mut S,
     at: usize,
     outer: Vec<&'a str>,
+    met: Met,
     open: Option<Open>,
     started: bool,
     stopped: bool,
@@ -55,6 +56,7 @@ impl<'a, S: Sink> XmlScanner<'a, S> {
             sink,
             at: 0,
             outer: Vec::new(),
+            met: Met::default(),
             open: None,
             started: false,
             stopped: false,
@@ -242,7 +244,8 @@ impl<'a, S: Sink> XmlScanner<'a, S> {
             }
             return;
         }
-        match Section::of(tag.name) {
+        let section = Section::of(tag.name);
+        match section {
             Section::Export if self.started => {
                 let problem = Problem::error("a second netlist begins in the same file")
                     .at(self.source, tag.start..self.at, "it was not read")
@@ -258,8 +261,17 @@ impl<'a, S: Sink> XmlScanner<'a, S> {
                 self.mismatch(tag, "stands in the wrong place");
                 self.outer.truncate(1);
             }
+            Section::Other if around.is_some_and(Section::holds_islands) => {
+                let problem = Problem::error("an unknown element stands among components, library parts or nets").at(
+                    self.source,
+                    tag.start..self.at,
+                    "expected `comp`, `libpart` or `net`; left out",
+                );
+                self.damage(problem);
+            }
             _ => {}
         }
+        self.met.note(section);
         if !tag.empty {
             self.outer.push(tag.name);
         }
@@ -327,8 +339,12 @@ impl<'a, S: Sink> XmlScanner<'a, S> {
         let message = match &self.open {
             Some(open) => format!("the file ends inside a {}", open.kind.noun()),
             None if !self.outer.is_empty() => format!("the file ends with {} elements still open", self.outer.len()),
-            None if !self.started => "the file holds no export".to_owned(),
-            None => return,
+            None => {
+                if let Some(problem) = self.met.missing() {
+                    self.damage(problem);
+                }
+                return;
+            }
         };
         let problem = Problem::error(message).at(self.source, last..end, "everything complete before this was read");
         self.damage(problem);

@@ -5,6 +5,7 @@
 //! component, library part or net each. `build` turns an island into a thing of the [`model`](Netlist), and `verify`
 //! looks at how these fit together.
 
+mod atoms;
 mod build;
 mod form;
 mod island;
@@ -18,6 +19,7 @@ mod scan;
 mod tests;
 mod verify;
 mod xml;
+mod xml_tree;
 
 #[doc(hidden)]
 pub use island::islands;

@@ -8,6 +8,7 @@ use std::ops::ControlFlow;
 
 use sexp::Sexp;
 
+use super::atoms::{quote, resolve_line_ends, separates};
 use super::island::{Island, Kind, Met, Place, Section, Sink, opens_outside};
 use super::limits::Limits;
 use crate::source::{Problem, Source, Span};
@@ -320,18 +321,7 @@ impl<'a, S: Sink> Scanner<'a, S> {
             return;
         }
         let atom = self.slice(start, self.at);
-        self.rewritten.push('"');
-        if atom.bytes().any(|byte| matches!(byte, b'"' | b'\\')) {
-            for character in atom.chars() {
-                if matches!(character, '"' | '\\') {
-                    self.rewritten.push('\\');
-                }
-                self.rewritten.push(character);
-            }
-        } else {
-            self.rewritten.push_str(atom);
-        }
-        self.rewritten.push('"');
+        quote(atom, &mut self.rewritten);
     }
 
     fn quoted(&mut self) {
@@ -406,32 +396,6 @@ impl<'a, S: Sink> Scanner<'a, S> {
             self.damage(problem);
         } else if let Some(problem) = self.met.missing() {
             self.damage(problem);
-        }
-    }
-}
-
-/// Whether a byte ends a bare atom. Blanks beyond these four are part of an atom.
-fn separates(byte: u8) -> bool {
-    matches!(byte, b' ' | b'\t' | b'\r' | b'\n' | b'(' | b')')
-}
-
-/// Copies a quoted atom with `\n` and `\r` resolved; the parser resolves `\\` and `\"`, and any other backslash
-/// stands for itself.
-fn resolve_line_ends(atom: &str, into: &mut String) {
-    let mut characters = atom.chars();
-    while let Some(character) = characters.next() {
-        if character != '\\' {
-            into.push(character);
-            continue;
-        }
-        match characters.next() {
-            Some('n') => into.push('\n'),
-            Some('r') => into.push('\r'),
-            Some(other) => {
-                into.push('\\');
-                into.push(other);
-            }
-            None => into.push('\\'),
         }
     }
 }

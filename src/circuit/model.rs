@@ -1,5 +1,7 @@
 //! Devices, nets and pins.
 
+use std::collections::HashMap;
+
 use petgraph::graph::{NodeIndex, UnGraph};
 
 use crate::netlist::Field;
@@ -22,6 +24,8 @@ pub enum DeviceKind {
     Potentiometer,
     /// A resistor network or array.
     ResistorNetwork,
+    /// A resistor that follows temperature or light.
+    Thermistor,
     /// A capacitor, polarized or not.
     Capacitor,
     /// An inductor.
@@ -34,7 +38,7 @@ pub enum DeviceKind {
     Diode,
     /// A Schottky diode.
     Schottky,
-    /// A zener diode or transient suppressor.
+    /// A zener diode, transient suppressor or varistor: a clamp.
     Zener,
     /// A light-emitting diode.
     Led,
@@ -46,9 +50,11 @@ pub enum DeviceKind {
     Mosfet,
     /// A junction field-effect transistor.
     Jfet,
+    /// Another discrete semiconductor: thyristor, triac, IGBT, unijunction or photo transistor, solar cell.
+    OtherSemiconductor,
     /// An operational amplifier or comparator.
     OpAmp,
-    /// A connector, terminal or test point.
+    /// A connector or terminal.
     Connector,
     /// A battery or cell.
     Battery,
@@ -175,8 +181,12 @@ pub struct Device {
     pub fitted: Fitted,
     /// Symbol library.
     pub library: String,
-    /// Symbol name.
+    /// Symbol name in that library.
     pub part: String,
+    /// Fields and properties as the component has them, in order of the file.
+    pub fields: Vec<Field>,
+    /// Human-readable sheet path, such as `/Power/`, or empty.
+    pub sheet: String,
     /// The symbol's description; that of the library part where the component has none.
     pub description: String,
     /// The symbol's key words, or empty.
@@ -187,8 +197,10 @@ pub struct Device {
     pub fields: Vec<Field>,
     /// Pins in a stable order: as the library part lists them, then any that only nets name.
     pub pins: Vec<Pin>,
-    /// Its place in `Netlist::components`.
+    /// Its place in `Netlist::components`; past the end for a part that only nets name.
     pub component: usize,
+    /// The two nets of a part whose connected pins lie on exactly two.
+    pub(super) ends: Option<[NetId; 2]>,
 }
 
 /// A net.
@@ -220,4 +232,6 @@ pub struct Circuit {
     pub(super) graph: UnGraph<Node, usize>,
     pub(super) devices: Vec<DeviceId>,
     pub(super) nets: Vec<NetId>,
+    pub(super) by_reference: HashMap<String, DeviceId>,
+    pub(super) by_name: HashMap<String, Vec<NetId>>,
 }

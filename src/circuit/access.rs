@@ -62,7 +62,7 @@ impl Circuit {
     /// The pins on a net, in order of the file: device and index in [`Device::pins`].
     pub fn pins_on(&self, net: NetId) -> impl Iterator<Item = (DeviceId, usize)> + '_ {
         // Edges are added last to first, so petgraph, which lists the newest first, gives them in order of the file.
-        self.graph.edges(net.0).map(|edge| {
+        self.graph.edges(net.0).map(move |edge| {
             let device = if edge.source() == net.0 { edge.target() } else { edge.source() };
             (DeviceId(device), *edge.weight())
         })

@@ -1,6 +1,6 @@
 //! Builds the circuit from a netlist.
 
-use std::collections::{BTreeSet, HashMap, HashSet};
+use std::collections::{BTreeSet, HashMap};
 
 use petgraph::graph::UnGraph;
 
@@ -75,7 +75,8 @@ impl<'a> Builder<'a> {
         let mut connections: Vec<Vec<Connection<'a>>> = vec![Vec::new(); netlist.components.len()];
         for (index, component) in netlist.components.iter().enumerate() {
             if self.places.contains_key(component.reference.as_str()) {
-                let message = format!("several parts are called {}: its connections go to the first", component.reference);
+                let message =
+                    format!("several parts are called {}: its connections go to the first", component.reference);
                 self.problems.push(
                     Problem::warning(message)
                         .at(&netlist.source, component.reference_span, "named again here")
@@ -94,8 +95,11 @@ impl<'a> Builder<'a> {
                     connections.push(Vec::new());
                     self.components.push(Component { reference: node.reference.clone(), ..Component::default() });
                     self.problems.push(
-                        Problem::warning(format!("net {} has a pin of {}, which is no part", entry.name, node.reference))
-                            .at(&netlist.source, node.span, "no part has this reference"),
+                        Problem::warning(format!(
+                            "net {} has a pin of {}, which is no part",
+                            entry.name, node.reference
+                        ))
+                        .at(&netlist.source, node.span, "no part has this reference"),
                     );
                 }
                 if let Some(of_part) = connections.get_mut(place) {
@@ -109,12 +113,16 @@ impl<'a> Builder<'a> {
     fn add_devices(&mut self, connections: &[Vec<Connection<'a>>]) {
         let netlist = self.netlist;
         let parts = Parts::new(&netlist.parts);
-        for (index, (component, of_part)) in std::mem::take(&mut self.components).iter().zip(connections).enumerate() {
+        for (index, (component, of_part)) in std::mem::take(&mut self.components).iter().zip(connections).enumerate()
+        {
             let part = parts.of(component);
             let found = pins(part, of_part);
             if let Some(number) = found.split.first() {
                 let message = format!("pin {number} of {} is on several nets", component.reference);
-                let span = of_part.iter().find(|(node, _)| node.pin == **number).map_or(component.span, |(node, _)| node.span);
+                let span = of_part
+                    .iter()
+                    .find(|(node, _)| node.pin == **number)
+                    .map_or(component.span, |(node, _)| node.span);
                 self.problems.push(Problem::warning(message).at(&netlist.source, span, "on another net too"));
             }
             let device = device(component, index, part, found.pins);
@@ -190,5 +198,127 @@ fn ends(pins: &[Pin]) -> Option<[NetId; 2]> {
     match nets.into_iter().collect::<Vec<_>>()[..] {
         [one, other] => Some([one, other]),
         _ => None,
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::netlist::{Field, Format, NetEntry, NetNode};
+    use crate::source::{Source, Span};
+
+    fn component(reference: &str, value: &str, part: &str) -> Component {
+        let (reference, value, part) = (reference.to_owned(), value.to_owned(), part.to_owned());
+        Component { reference, value, library: "Device".to_owned(), part, ..Component::default() }
+    }
+
+    fn netlist(components: Vec<Component>, nets: &[(&str, &[(&str, &str)])]) -> Netlist {
+        let mut at = 0;
+        let mut node = |(reference, pin): &(&str, &str)| {
+            at += 10;
+            let (reference, pin) = ((*reference).to_owned(), (*pin).to_owned());
+            NetNode { reference, pin, span: Span::new(at, at + 5), ..NetNode::default() }
+        };
+        let nets = nets.iter().enumerate().map(|(code, (name, nodes))| NetEntry {
+            code: code.to_string(),
+            name: (*name).to_owned(),
+            nodes: nodes.iter().map(&mut node).collect(),
+            ..NetEntry::default()
+        });
+        Netlist {
+            source: Source::new("x.net", ""),
+            format: Format::D,
+            version: "D".to_owned(),
+            schematic: String::new(),
+            tool: String::new(),
+            components,
+            parts: Vec::new(),
+            nets: nets.collect(),
+            problems: Vec::new(),
+        }
+    }
+
+    #[test]
+    fn pins_on_a_net_come_in_order_of_the_file() {
+        let parts = vec![component("R2", "1k", "R"), component("R1", "1k", "R"), component("C1", "1u", "C")];
+        let nets: &[(&str, &[(&str, &str)])] =
+            &[("A", &[("R1", "1"), ("C1", "1"), ("R2", "2")]), ("GND", &[("C1", "2"), ("R1", "2")])];
+        let (circuit, problems) = Circuit::build(&netlist(parts, nets));
+        assert!(problems.is_empty());
+        let a = circuit.net_named("A").unwrap();
+        let on: Vec<_> = circuit.devices_on(a).map(|id| circuit.device(id).reference.as_str()).collect();
+        assert_eq!(on, ["R1", "C1", "R2"]);
+        assert_eq!(circuit.pin_count(a), 3);
+        let ground = circuit.net_named("GND").unwrap();
+        let c1 = circuit.device_named("C1").unwrap();
+        assert_eq!(circuit.other_end(c1, a), Some(ground));
+        assert_eq!(circuit.other_end(circuit.device_named("R2").unwrap(), a), None);
+        assert_eq!(circuit.grounds().collect::<Vec<_>>(), [ground]);
+        assert_eq!(circuit.neighbours(ground).count(), 2);
+    }
+
+    #[test]
+    fn nets_of_one_name_stay_apart_and_unnamed_ones_are_named_by_code() {
+        let parts = vec![component("R1", "1k", "R"), component("R2", "1k", "R")];
+        let (circuit, _) =
+            Circuit::build(&netlist(parts, &[("", &[("R1", "1")]), ("", &[("R1", "2")]), ("X", &[]), ("X", &[])]));
+        let names: Vec<_> = circuit.nets().map(|id| circuit.net(id).name.as_str()).collect();
+        assert_eq!(names, ["net 0", "net 1", "X", "X"]);
+        assert_eq!(circuit.nets_named("X").len(), 2);
+        assert!(circuit.ends(circuit.device_named("R1").unwrap()).is_some());
+    }
+
+    #[test]
+    fn a_pin_that_is_left_open_on_purpose_is_on_no_net() {
+        let nets: &[(&str, &[(&str, &str)])] = &[("unconnected-(R1-Pad1)", &[("R1", "1")])];
+        let (circuit, _) = Circuit::build(&netlist(vec![component("R1", "1k", "R")], nets));
+        let pin = &circuit.device(circuit.device_named("R1").unwrap()).pins[0];
+        assert_eq!((pin.net, pin.span), (None, Span::new(10, 15)));
+    }
+
+    #[test]
+    fn odd_references_are_told_and_kept() {
+        let parts = vec![component("R?", "1k", "R"), component("R?", "2k", "R")];
+        let nets: &[(&str, &[(&str, &str)])] = &[("A", &[("R?", "1"), ("U9", "4")]), ("B", &[("R?", "1")])];
+        let (circuit, problems) = Circuit::build(&netlist(parts, nets));
+        let messages: Vec<_> = problems.iter().map(Problem::message).collect();
+        assert_eq!(
+            messages,
+            [
+                "several parts are called R?: its connections go to the first",
+                "net A has a pin of U9, which is no part",
+                "pin 1 of R? is on several nets"
+            ]
+        );
+        assert_eq!(circuit.devices().len(), 3);
+        assert_eq!(circuit.device(circuit.device_named("U9").unwrap()).kind, DeviceKind::Integrated);
+        assert_eq!(circuit.device(circuit.device_named("R?").unwrap()).value, "1k");
+    }
+
+    #[test]
+    fn parts_that_are_not_fitted_are_skipped_where_asked() {
+        let mut left_out = component("R1", "1k", "R");
+        left_out.fields.push(Field { name: "dnp".to_owned(), value: String::new() });
+        let (circuit, _) = Circuit::build(&netlist(vec![left_out], &[("A", &[("R1", "1")])]));
+        let a = circuit.net_named("A").unwrap();
+        assert_eq!((circuit.pins_on(a).count(), circuit.fitted_on(a).count()), (1, 0));
+    }
+
+    #[test]
+    fn a_ground_can_be_marked_by_name() {
+        let (mut circuit, _) =
+            Circuit::build(&netlist(vec![component("R1", "1k", "R")], &[("-BATT", &[("R1", "1")])]));
+        assert_eq!(circuit.mark_ground(["-BATT", "NOPE"]), ["NOPE"]);
+        assert_eq!(circuit.grounds().count(), 1);
+    }
+
+    #[test]
+    fn a_net_of_many_pins_is_built_and_walked_in_linear_time() {
+        let parts = (0..100_000).map(|index| component(&format!("R{index}"), "1k", "R")).collect();
+        let references: Vec<String> = (0..100_000).map(|index| format!("R{index}")).collect();
+        let nodes: Vec<(&str, &str)> = references.iter().map(|reference| (reference.as_str(), "1")).collect();
+        let others: Vec<(&str, &str)> = references.iter().map(|reference| (reference.as_str(), "2")).collect();
+        let (circuit, _) = Circuit::build(&netlist(parts, &[("A", &nodes), ("B", &others)]));
+        assert_eq!(circuit.neighbours(circuit.net_named("A").unwrap()).count(), 100_000);
     }
 }

@@ -6,8 +6,24 @@ use super::model::{Device, DeviceKind, Fitted};
 
 /// Names of fields that say "not on the board" when they are set; compared without case, blanks and marks.
 const LEFT_OUT: &[&str] = &[
-    "dnp", "dnf", "dnm", "dni", "donotplace", "donoplace", "donotpopulate", "donotfit", "donotmount", "donotassemble",
-    "nofit", "notfitted", "nopop", "nomount", "nostuff", "dontplace", "dontpopulate", "dontfit",
+    "dnp",
+    "dnf",
+    "dnm",
+    "dni",
+    "donotplace",
+    "donoplace",
+    "donotpopulate",
+    "donotfit",
+    "donotmount",
+    "donotassemble",
+    "nofit",
+    "notfitted",
+    "nopop",
+    "nomount",
+    "nostuff",
+    "dontplace",
+    "dontpopulate",
+    "dontfit",
 ];
 
 /// Names of fields that say "on the board" when they are set.
@@ -18,13 +34,29 @@ const NO: &[&str] = &["0", "no", "n", "false", "off"];
 
 /// Words that say "not on the board" wherever they stand in a value (`DNP 10k`). `NF` and `NM` are not among them:
 /// they are nanofarads and newton metres too, so they must be the whole value.
-const WORDS: &[&str] = &["dnp", "dnf", "dnm", "dni", "nofit", "nopop", "nomount", "nostuff", "unpopulated", "unfitted"];
+const WORDS: &[&str] =
+    &["dnp", "dnf", "dnm", "dni", "nofit", "nopop", "nomount", "nostuff", "unpopulated", "unfitted"];
 
 /// Phrases that say so, in a value whose marks are made blanks.
 const PHRASES: &[&str] = &[
-    "do not place", "do not populate", "do not fit", "do not mount", "do not assemble", "do not stuff", "don t place",
-    "don t populate", "don t fit", "not placed", "not populated", "not fitted", "not mounted", "no fit", "no pop",
-    "no mount", "no stuff", "no place",
+    "do not place",
+    "do not populate",
+    "do not fit",
+    "do not mount",
+    "do not assemble",
+    "do not stuff",
+    "don t place",
+    "don t populate",
+    "don t fit",
+    "not placed",
+    "not populated",
+    "not fitted",
+    "not mounted",
+    "no fit",
+    "no pop",
+    "no mount",
+    "no stuff",
+    "no place",
 ];
 
 /// Whether a device is on the board, from its fields, attributes and value.
@@ -54,7 +86,9 @@ fn says_left_out(field: &Field) -> bool {
     }
     let word = letters(value);
     PUT_ON.contains(&name.as_str())
-        && (is_no(value) || LEFT_OUT.contains(&word.as_str()) || ["nf", "nm", "not", "never"].contains(&word.as_str()))
+        && (is_no(value)
+            || LEFT_OUT.contains(&word.as_str())
+            || ["nf", "nm", "not", "never"].contains(&word.as_str()))
 }
 
 fn field_text(field: &Field) -> String {
@@ -124,7 +158,8 @@ mod tests {
 
     #[test]
     fn values_say_what_is_left_out() {
-        let out = ["DNP", "dnf", "DNP 10k", "10k DNP", "10k (DNP)", "10k_DNP", "NF", "NM", "Do not place", "not fitted"];
+        let out =
+            ["DNP", "dnf", "DNP 10k", "10k DNP", "10k (DNP)", "10k_DNP", "NF", "NM", "Do not place", "not fitted"];
         for value in out {
             assert!(value_says_left_out(value, DeviceKind::Resistor), "{value}");
         }

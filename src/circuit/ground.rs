@@ -7,17 +7,18 @@ use super::supply_name::supply_name;
 
 /// Words that make a net a ground where one of them stands in its name.
 const WORDS: &[&str] = &[
-    "GND", "GROUND", "EARTH", "AGND", "DGND", "PGND", "SGND", "CGND", "IGND", "GNDA", "GNDD", "GNDP", "GNDS", "GNDPWR",
-    "GNDREF", "GNDIO", "GNDISO", "0V", "0VDC", "0VA", "0VD", "AGNDA", "DGNDD",
+    "GND", "GROUND", "EARTH", "AGND", "DGND", "PGND", "SGND", "CGND", "IGND", "GNDA", "GNDD", "GNDP", "GNDS",
+    "GNDPWR", "GNDREF", "GNDIO", "GNDISO", "0V", "0VDC", "0VA", "0VD", "AGNDA", "DGNDD",
 ];
 
 /// Words that make one on a board that has no net of the first kind: beside a ground they may be a negative supply.
-const SECOND_CHOICE: &[&str] = &["VSS", "VSSA", "AVSS", "DVSS", "VSSD", "COM", "COMMON", "MASSE", "MASSA", "MASS", "0"];
+const SECOND_CHOICE: &[&str] =
+    &["VSS", "VSSA", "AVSS", "DVSS", "VSSD", "COM", "COMMON", "MASSE", "MASSA", "MASS", "0"];
 
 /// Words beside a ground's that say that the net is something else: a sense line, a switched or a virtual ground.
 const OTHERWISE: &[&str] = &[
-    "SENSE", "SNS", "DET", "DETECT", "EN", "ENABLE", "SW", "SWITCH", "SWITCHED", "CTRL", "FB", "VIRTUAL", "LED", "TEST",
-    "LIFT", "FAULT", "LOSS",
+    "SENSE", "SNS", "DET", "DETECT", "EN", "ENABLE", "SW", "SWITCH", "SWITCHED", "CTRL", "FB", "VIRTUAL", "LED",
+    "TEST", "LIFT", "FAULT", "LOSS",
 ];
 
 pub(super) fn mark_grounds(circuit: &mut Circuit) {
@@ -46,10 +47,10 @@ fn own_name(name: &str) -> Option<&str> {
 }
 
 fn has_word(name: &str, words: &[&str]) -> bool {
-    let Some(name) = own_name(name) else { return false };
+    let Some(name) = own_name(name).filter(|name| supply_name(name).is_none()) else { return false };
     let upper = name.to_uppercase();
     let mut found = false;
-    for token in upper.split(|letter: char| !letter.is_alphanumeric() && letter != '+') {
+    for token in upper.split(|letter: char| !letter.is_alphanumeric() && !matches!(letter, '+' | '.')) {
         // `GND1`, `AGND2`; `0V` keeps its own digit because only those at the end go.
         let bare = token.trim_end_matches(|letter: char| letter.is_ascii_digit());
         if OTHERWISE.contains(&token) {
@@ -57,7 +58,6 @@ fn has_word(name: &str, words: &[&str]) -> bool {
         }
         found |= words.contains(&token) || words.contains(&bare);
     }
-    // `-0V` and `+0V` are the same place; `-BATT` and other signed names are supplies.
     found
 }
 
@@ -93,11 +93,28 @@ mod tests {
 
     #[test]
     fn grounds_are_known_by_name() {
-        let grounds = ["GND", "Earth", "AGND", "GNDD", "GNDPWR", "PGND", "GNDA", "GNDREF", "/0VDC", "0V", "DGND", "SGND"];
-        for name in grounds.iter().chain(&["/x/GND", "GND1", "GND_ISO", "/Power/Earth_Protective", "gnd", "GND-A", "A_GND"]) {
+        let grounds =
+            ["GND", "Earth", "AGND", "GNDD", "GNDPWR", "PGND", "GNDA", "GNDREF", "/0VDC", "0V", "DGND", "SGND"];
+        for name in
+            grounds.iter().chain(&["/x/GND", "GND1", "GND_ISO", "/Power/Earth_Protective", "gnd", "GND-A", "A_GND"])
+        {
             assert!(has_word(name, WORDS), "{name}");
         }
-        let others = ["VSS", "GND_SENSE", "VGND", "-BATT", "+10V", "Net-(U1-GND)", "GNDDETECT", "10V", "+3V3", "GND_SW", ""];
+        let others = [
+            "VSS",
+            "GND_SENSE",
+            "VGND",
+            "-BATT",
+            "+10V",
+            "Net-(U1-GND)",
+            "GNDDETECT",
+            "10V",
+            "+3V3",
+            "GND_SW",
+            "/5_0V",
+            "5.0V",
+            "",
+        ];
         for name in others {
             assert!(!has_word(name, WORDS), "{name}");
         }

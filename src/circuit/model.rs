@@ -183,8 +183,6 @@ pub struct Device {
     pub library: String,
     /// Symbol name in that library.
     pub part: String,
-    /// Fields and properties as the component has them, in order of the file.
-    pub fields: Vec<Field>,
     /// Human-readable sheet path, such as `/Power/`, or empty.
     pub sheet: String,
     /// The symbol's description; that of the library part where the component has none.

@@ -7,7 +7,12 @@ pub fn nearest<'a>(name: &str, candidates: impl IntoIterator<Item = &'a str>) ->
     let name = plain(name);
     let mut best: Option<(f64, &str)> = None;
     for candidate in candidates {
-        let likeness = strsim::jaro_winkler(&name, &plain(candidate));
+        let candidate_name = plain(candidate);
+        let mut likeness = strsim::jaro_winkler(&name, &candidate_name);
+        // In a short name two letters that changed places already look foreign to the measure above.
+        if name.chars().count() >= 3 && strsim::osa_distance(&name, &candidate_name) == 1 {
+            likeness = likeness.max(0.8);
+        }
         if best.is_none_or(|(most, _)| likeness > most) {
             best = Some((likeness, candidate));
         }
@@ -25,5 +30,6 @@ mod tests {
         assert_eq!(nearest("rated-curent", keys), Some("rated_current"));
         assert_eq!(nearest("input_maximum", keys), Some("input_max"));
         assert_eq!(nearest("colour", keys), None);
+        assert_eq!(nearest("GWB", ["SR", "GBW"]), Some("GBW"));
     }
 }

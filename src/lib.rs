@@ -9,6 +9,7 @@ pub mod quantity;
 
 pub mod netlist;
 
+pub mod board;
 pub mod circuit;
 pub mod facts;
 pub mod knowledge;

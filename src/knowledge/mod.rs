@@ -1,8 +1,25 @@
 //! What the tool knows of parts, capacitors and supplies: files in `rules/`, built in and loadable.
 
+mod amount;
+mod cite;
+mod demand;
+mod family;
+mod files;
+mod keys;
+mod load;
+mod lookup;
 mod model;
+mod names;
+mod supply;
+mod technology;
+#[cfg(test)]
+mod tests;
 
+pub use keys::FigureKey;
+pub use lookup::DropoutAt;
 pub use model::{
     Active, AdjustSide, Basis, CapacitorDemand, Cited, Dropout, DropoutPoint, EnableSpec, EsrWindow, Family,
     FamilyKind, Knowledge, MinimumKind, OpenEnable, Package, Pass, RoleName, Sign, SourceNote, Supply, Technology,
 };
+pub use names::VOLTAGE_CODE;
+pub use technology::TECHNOLOGIES;

@@ -41,6 +41,23 @@ pub enum FamilyKind {
     Other,
 }
 
+impl FamilyKind {
+    /// Every kind with its name in part files and results.
+    pub const ALL: &'static [(Self, &'static str)] = &[
+        (Self::Series, "series"),
+        (Self::Shunt, "shunt"),
+        (Self::Reference, "reference"),
+        (Self::Switching, "switching"),
+        (Self::Other, "other"),
+    ];
+
+    /// Its name in part files and results.
+    #[must_use]
+    pub fn name(self) -> &'static str {
+        Self::ALL.iter().find(|(kind, _)| *kind == self).map_or("", |(_, name)| name)
+    }
+}
+
 /// The sign of the voltage that a part regulates.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub enum Sign {
@@ -147,11 +164,16 @@ pub struct CapacitorDemand {
     pub if_far: bool,
     /// Largest capacitance in farads that the sheet allows.
     pub maximum: Option<Cited<f64>>,
+    /// Minimum in farads with a capacitor at the adjust or bypass pin, where the sheet then asks for more.
+    pub with_bypass: Option<Cited<f64>>,
 }
 
 /// A dropout point: at this load the typical and the maximum dropout.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct DropoutPoint {
+    /// The point holds for versions of this output voltage (a magnitude in volts) and above, up to the next such
+    /// voltage of the family; 0 where the sheet makes no difference.
+    pub from_output: f64,
     /// Load in amperes.
     pub load: f64,
     /// Typical dropout in volts; equal to the maximum where the sheet gives only one.
@@ -163,7 +185,7 @@ pub struct DropoutPoint {
 /// Dropout against load.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Dropout {
-    /// Points with rising load.
+    /// Points with rising `from_output`, then rising load.
     pub points: Vec<Cited<DropoutPoint>>,
     /// How the sheet defines dropout: `output 100 mV below nominal`.
     pub defined: String,
@@ -277,10 +299,20 @@ pub struct Family {
     pub group: String,
     /// The maker.
     pub maker: String,
-    /// Name patterns: letters and digits as they are, `?` one character, `*` any rest, `{V}` the voltage code.
+    /// Words, lower case, by which a manufacturer field names the maker.
+    pub maker_words: Vec<String>,
+    /// The family under whose names this maker sells a version of its own; such a family is taken only where the
+    /// schematic names the maker.
+    pub version_of: Option<String>,
+    /// Name patterns: letters, digits and `-./+` as they are, in any case; `?` one character; `*` any run, also none;
+    /// `{V}` a voltage code with the separators around it (`-3.3`, `33`, `3V3`, `05`, `-ADJ`), which must be there: one
+    /// of `codes`, or one that spells a voltage of `voltages` (`33`, `330`, `3.3` and `3V3` for 3.3 V), or `ADJ`. Of
+    /// several patterns that fit, the one with a voltage code is meant, then the one with most literal characters.
     pub names: Vec<String>,
     /// Output voltages (magnitudes, volts) that are made in fixed versions; settles what a voltage code means.
     pub voltages: Vec<f64>,
+    /// Voltage codes that do not spell their voltage: code without separators, upper case, to volts.
+    pub codes: BTreeMap<String, f64>,
     /// Series, shunt, reference …
     pub kind: FamilyKind,
     /// The sign of its output.
@@ -293,16 +325,23 @@ pub struct Family {
     pub adjust: Option<AdjustSide>,
     /// Plain figures by their key in the file, each a range in SI units: see [`Family::FIGURES`].
     pub figures: BTreeMap<String, Cited<Range>>,
+    /// Figures that depend on the output voltage: `(up to this magnitude in volts, figure)`, rising, the last holds
+    /// above. `figures` then holds the hull of them.
+    pub by_output: BTreeMap<String, Vec<(f64, Cited<Range>)>>,
     /// Dropout.
     pub dropout: Option<Dropout>,
     /// Input capacitor.
     pub input_capacitor: Option<CapacitorDemand>,
     /// Output capacitor.
     pub output_capacitor: Option<CapacitorDemand>,
+    /// Capacitor at the bypass, noise or adjust pin.
+    pub bypass_capacitor: Option<CapacitorDemand>,
     /// Enable input.
     pub enable: Option<EnableSpec>,
     /// Packages by name.
     pub packages: BTreeMap<String, Package>,
+    /// What a reader should know that no figure holds.
+    pub note: Option<String>,
     /// Its sources.
     pub sources: Vec<SourceNote>,
     /// The file it comes from, as a path below `rules/`.
@@ -337,6 +376,10 @@ pub struct Supply {
     pub voltage: Cited<Range>,
     /// Net names, as patterns, that are taken for this supply.
     pub nets: Vec<String>,
+    /// Plain figures by their key in the file, see [`Supply::FIGURES`].
+    pub figures: BTreeMap<String, Cited<Range>>,
+    /// Its sources.
+    pub sources: Vec<SourceNote>,
     /// The file it comes from.
     pub file: String,
 }
@@ -352,4 +395,8 @@ pub struct Knowledge {
     pub supplies: Vec<Supply>,
     /// Check folders as text: folder name to file name to text; typed later.
     pub checks: BTreeMap<String, BTreeMap<String, String>>,
+    /// Where each check folder is, for messages.
+    pub check_paths: BTreeMap<String, String>,
+    /// Files of an extra folder that took the place of one of the same name: `parts/1117-lm.toml`, and from where.
+    pub replaced: Vec<(String, String)>,
 }

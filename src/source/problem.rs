@@ -36,6 +36,12 @@ impl Problem {
         Self::new(Severity::Warning, message)
     }
 
+    /// Something was done that the reader should know of.
+    #[must_use]
+    pub fn note(message: impl Into<String>) -> Self {
+        Self::new(Severity::Note, message)
+    }
+
     fn new(severity: Severity, message: impl Into<String>) -> Self {
         Self { severity, message: message.into(), place: None, label: None, help: None }
     }

@@ -69,6 +69,12 @@ impl<'a> Text<'a> {
         self.span
     }
 
+    /// The file.
+    #[must_use]
+    pub fn document(&self) -> &'a Document {
+        self.document
+    }
+
     /// Notes an error at this text.
     pub fn refuse(&self, message: impl Into<String>, label: impl Into<String>, help: impl Into<String>) {
         self.document.refuse(self.span, message, label, help);

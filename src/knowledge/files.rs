@@ -1,0 +1,215 @@
+//! The files of the knowledge folders, built in and from the disk.
+
+use std::collections::BTreeMap;
+use std::fs;
+use std::path::Path;
+
+use include_dir::{Dir, include_dir};
+
+use crate::source::toml::Document;
+use crate::source::{Problem, Source};
+
+static RULES: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules");
+
+/// Largest file of a knowledge folder in bytes.
+const LARGEST_FILE: u64 = 4 << 20;
+/// Most files of one folder.
+const MOST_FILES: usize = 4096;
+
+/// The kind of a knowledge file.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+pub(super) enum Shelf {
+    Parts,
+    Technologies,
+    Supplies,
+}
+
+impl Shelf {
+    /// Each with its folder and the key that only its files have.
+    pub(super) const ALL: [(Self, &'static str, &'static str); 3] = [
+        (Self::Parts, "parts", "family"),
+        (Self::Technologies, "technologies", "technology"),
+        (Self::Supplies, "supplies", "supply"),
+    ];
+
+    fn folder(self) -> &'static str {
+        Self::ALL.iter().find(|(shelf, ..)| *shelf == self).map_or("", |(_, folder, _)| folder)
+    }
+}
+
+/// A check folder: where it is, and its files.
+#[derive(Debug, Clone, Default)]
+pub(super) struct CheckFolder {
+    pub(super) path: String,
+    pub(super) files: BTreeMap<String, String>,
+}
+
+/// Every file, later ones in place of earlier ones of the same name.
+#[derive(Debug, Default)]
+pub(super) struct Files {
+    /// By path below the folder: `parts/1117-lm.toml`.
+    pub(super) tables: BTreeMap<(Shelf, String), Source>,
+    /// By folder name.
+    pub(super) checks: BTreeMap<String, CheckFolder>,
+    /// What took the place of an earlier one: path below the folder, path of the new one.
+    pub(super) replaced: Vec<(String, String)>,
+}
+
+impl Files {
+    /// The files that are compiled in.
+    pub(super) fn built_in() -> Self {
+        let mut files = Self::default();
+        for (shelf, folder, _) in Shelf::ALL {
+            for file in RULES.get_dir(folder).into_iter().flat_map(Dir::files) {
+                let Some(name) = file.path().file_name().and_then(|name| name.to_str()) else { continue };
+                if let Some(text) = file.contents_utf8().filter(|_| is_toml(name)) {
+                    let path = format!("rules/{folder}/{name}");
+                    files.tables.insert((shelf, name.to_owned()), Source::new(path, text));
+                }
+            }
+        }
+        for folder in RULES.get_dir("checks").into_iter().flat_map(Dir::dirs) {
+            let Some(name) = folder.path().file_name().and_then(|name| name.to_str()) else { continue };
+            let texts = folder.files().filter_map(|file| {
+                let name = file.path().file_name()?.to_str()?;
+                Some((name.to_owned(), file.contents_utf8()?.to_owned()))
+            });
+            let check = CheckFolder { path: format!("rules/checks/{name}"), files: texts.collect() };
+            files.checks.insert(name.to_owned(), check);
+        }
+        files
+    }
+
+    /// Adds the files of a folder from the disk. The folder has `parts/`, `technologies/`, `supplies/` and `checks/`, any
+    /// of them; or it holds such files, or check folders, itself; or it is a check folder.
+    pub(super) fn add_folder(&mut self, folder: &Path, problems: &mut Vec<Problem>) {
+        if !folder.is_dir() {
+            let message = format!("the rules folder `{}` cannot be read", folder.display());
+            problems.push(Problem::error(message).help("name a folder that exists"));
+            return;
+        }
+        let mut laid_out = false;
+        for (shelf, name, _) in Shelf::ALL {
+            let inner = folder.join(name);
+            if inner.is_dir() {
+                laid_out = true;
+                for (name, source) in read_files(&inner, problems).into_iter().filter(|(name, _)| is_toml(name)) {
+                    self.put(shelf, name, source);
+                }
+            }
+        }
+        if folder.join("checks").is_dir() {
+            laid_out = true;
+            self.add_checks(&folder.join("checks"), problems);
+        }
+        if !laid_out {
+            self.add_loose(folder, problems);
+        }
+    }
+
+    /// Adds the files of a folder without subfolders by what they hold.
+    fn add_loose(&mut self, folder: &Path, problems: &mut Vec<Problem>) {
+        if folder.join("check.toml").is_file() {
+            self.add_check(folder, problems);
+            return;
+        }
+        let mut found = self.add_checks(folder, problems);
+        for (name, source) in read_files(folder, problems).into_iter().filter(|(name, _)| is_toml(name)) {
+            let document = match Document::parse(&source) {
+                Ok(document) => document,
+                Err(problem) => {
+                    problems.push(*problem);
+                    continue;
+                }
+            };
+            let mut root = document.root();
+            if let Some((shelf, ..)) = Shelf::ALL.into_iter().find(|(.., key)| root.take(key).is_some()) {
+                self.put(shelf, name, source);
+                found = true;
+            }
+        }
+        if !found {
+            let message = format!("the rules folder `{}` holds no rules", folder.display());
+            problems.push(Problem::warning(message).help(
+                "put part files into `parts/`, checks into folders of `checks/`, supplies into `supplies/`, \
+                 technologies into `technologies/`",
+            ));
+        }
+    }
+
+    /// Adds every check folder in a folder; whether there was one.
+    fn add_checks(&mut self, folder: &Path, problems: &mut Vec<Problem>) -> bool {
+        let mut found = false;
+        for path in entries(folder, problems).into_iter().filter(|path| path.join("check.toml").is_file()) {
+            self.add_check(&path, problems);
+            found = true;
+        }
+        found
+    }
+
+    fn add_check(&mut self, folder: &Path, problems: &mut Vec<Problem>) {
+        let full = fs::canonicalize(folder).unwrap_or_else(|_| folder.to_owned());
+        let Some(name) = full.file_name().and_then(|name| name.to_str()).map(str::to_owned) else { return };
+        let texts = read_files(folder, problems).into_iter().map(|(name, source)| (name, source.text().to_owned()));
+        let check = CheckFolder { path: folder.display().to_string(), files: texts.collect() };
+        if self.checks.contains_key(&name) {
+            self.replaced.push((format!("checks/{name}"), check.path.clone()));
+        }
+        self.checks.insert(name, check);
+    }
+
+    fn put(&mut self, shelf: Shelf, name: String, source: Source) {
+        let path = format!("{}/{name}", shelf.folder());
+        let place = source.name().to_owned();
+        if self.tables.insert((shelf, name), source).is_some() {
+            self.replaced.push((path, place));
+        }
+    }
+}
+
+fn is_toml(name: &str) -> bool {
+    Path::new(name).extension().is_some_and(|extension| extension == "toml")
+}
+
+/// The entries of a folder in the order of their names.
+fn entries(folder: &Path, problems: &mut Vec<Problem>) -> Vec<std::path::PathBuf> {
+    let mut paths: Vec<_> = match fs::read_dir(folder) {
+        Ok(list) => list.filter_map(|entry| Some(entry.ok()?.path())).collect(),
+        Err(error) => {
+            let message = format!("the folder `{}` cannot be read: {error}", folder.display());
+            problems.push(Problem::error(message));
+            Vec::new()
+        }
+    };
+    paths.sort();
+    if paths.len() > MOST_FILES {
+        let message = format!("the folder `{}` has more than {MOST_FILES} entries", folder.display());
+        problems.push(Problem::error(message).help("split it"));
+        paths.truncate(MOST_FILES);
+    }
+    paths
+}
+
+/// The text files of a folder with their names; what cannot be read is reported.
+fn read_files(folder: &Path, problems: &mut Vec<Problem>) -> Vec<(String, Source)> {
+    let mut files = Vec::new();
+    for path in entries(folder, problems) {
+        let Some(name) = path.file_name().and_then(|name| name.to_str()) else { continue };
+        let wanted = ["toml", "net", "xml"].iter().any(|known| path.extension().is_some_and(|is| is == *known));
+        if !wanted || !path.is_file() {
+            continue;
+        }
+        if fs::metadata(&path).map_or(0, |data| data.len()) > LARGEST_FILE {
+            let message = format!("the file `{}` is larger than {} MiB", path.display(), LARGEST_FILE >> 20);
+            problems.push(Problem::error(message).help("split it"));
+            continue;
+        }
+        match fs::read_to_string(&path) {
+            Ok(text) => files.push((name.to_owned(), Source::new(path.display().to_string(), text))),
+            Err(error) => {
+                problems.push(Problem::error(format!("the file `{}` cannot be read: {error}", path.display())));
+            }
+        }
+    }
+    files
+}

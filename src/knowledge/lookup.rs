@@ -44,7 +44,7 @@ impl Family {
             .filter(|from| *from <= output * 1.001)
             .fold(0.0, f64::max);
         let points: Vec<&Cited<DropoutPoint>> =
-            all.iter().filter(|point| point.value.from_output >= from && point.value.from_output <= from).collect();
+            all.iter().filter(|point| point.value.from_output.total_cmp(&from).is_eq()).collect();
         let load = load.abs();
         let below = points.iter().rev().find(|point| point.value.load <= load).or(points.first())?;
         let above = points.iter().find(|point| point.value.load >= load).or(points.last())?;

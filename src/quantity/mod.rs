@@ -7,9 +7,11 @@ mod evidence;
 mod figure;
 mod pair;
 mod range;
+mod text;
 
 pub use dimension::Dimension;
 pub use evidence::{Evidence, Grade, Key, Settle, Table};
 pub use figure::{Guess, Quantity, Slope};
 pub use pair::Pair;
 pub use range::{Range, RangeError};
+pub use text::{ReadError, read_amount, read_range, read_typical_maximum};

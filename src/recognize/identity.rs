@@ -1,0 +1,193 @@
+//! Which part a device is: its texts in order of trust against the families, and what they disagree on.
+
+use crate::circuit::Device;
+use crate::knowledge::Knowledge;
+use crate::quantity::Grade;
+
+use super::family_match::{Hit, Matcher, reduced};
+use super::model::Identity;
+
+/// Field names that hold a maker's part number. Order numbers of distributors name no part.
+const NUMBER_FIELDS: &[&str] = &[
+    "MPN", "MFPN", "MFR_PN", "MFR PN", "MFG_PN", "MANUFACTURER_PART_NUMBER", "MANUFACTURER PART NUMBER", "PART NUMBER",
+    "PARTNUMBER", "PART_NUMBER", "MANF#", "MANUFACTURER_PN", "MFR PART NUMBER", "MP", "PN", "MANUFACTURER PN", "MFGPN", "PART",
+];
+
+/// Where a name stands.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) enum Place {
+    Value,
+    Number,
+    Symbol,
+    Board,
+}
+
+/// What identification found, before it is known whether the device is a regulator.
+#[derive(Debug, Clone)]
+pub(super) struct Known {
+    pub(super) identity: Identity,
+    /// The hit of the best family in `name`, where there is one.
+    pub(super) hit: Option<Hit>,
+    /// Where the name stands.
+    pub(super) place: Place,
+    /// Whether value and symbol name the same part, so that the symbol's text speaks of this very part.
+    pub(super) symbol_agrees: bool,
+    /// Whether the value names a part (rather than being free text such as `LDO`).
+    pub(super) value_names_part: bool,
+}
+
+/// Whether a text looks like a part number: letters, then digits, in one word.
+pub(super) fn names_part(text: &str) -> bool {
+    let text = reduced(text);
+    let word = text.split(' ').next().unwrap_or("");
+    let letters = word.chars().take_while(char::is_ascii_alphabetic).count();
+    let digits = word.chars().skip(letters).skip_while(|each| *each == '-').take_while(char::is_ascii_digit).count();
+    let seventy = letters == 0 && (word.starts_with("78") || word.starts_with("79")) && word.len() >= 4;
+    // `V3.3` and `LDO3V3` are no parts; `78L05` is one.
+    seventy || (1..=5).contains(&letters) && digits >= 2 && !word.starts_with("LDO") && !word.starts_with("REG")
+}
+
+/// The beginning of a part number that tells parts apart: letters and the first three digits.
+fn stem(text: &str) -> String {
+    let mut digits = 0;
+    reduced(text)
+        .chars()
+        .filter(|each| *each != '-')
+        .take_while(|each| {
+            digits += usize::from(each.is_ascii_digit());
+            each.is_ascii_alphanumeric() && digits <= 4
+        })
+        .collect()
+}
+
+/// Whether two texts name the same part, as far as names tell.
+pub(super) fn same_part(one: &str, other: &str) -> bool {
+    let (one, other) = (stem(one), stem(other));
+    if one.is_empty() || other.is_empty() {
+        return false;
+    }
+    let shorter = one.len().min(other.len());
+    let shared = one.chars().zip(other.chars()).take_while(|(left, right)| left == right).count();
+    shared == shorter && shorter >= 4 || shared >= 6
+}
+
+/// Identifies a device. `declared` is the family that the board file names for it.
+pub(super) fn identify(device: &Device, declared: Option<&str>, knowledge: &Knowledge, matcher: &Matcher) -> Known {
+    let value = device.value.trim();
+    let symbol = device.symbol();
+    let symbol_agrees = value.is_empty() || same_part(value, symbol) || reduced(value) == reduced(symbol);
+    let value_names_part = names_part(value);
+    let mut known = Known {
+        identity: Identity {
+            families: Vec::new(),
+            name: if value.is_empty() { symbol.to_owned() } else { value.to_owned() },
+            told_by: if value.is_empty() { "symbol".to_owned() } else { "value".to_owned() },
+            grade: Grade::Drawn,
+            remarks: Vec::new(),
+        },
+        hit: None,
+        place: if value.is_empty() { Place::Symbol } else { Place::Value },
+        symbol_agrees,
+        value_names_part,
+    };
+    if let Some(name) = declared
+        && let Some(family) = knowledge.families.iter().position(|family| family.name == name)
+    {
+        known.identity.families = vec![family];
+        known.identity.told_by = "board file".to_owned();
+        known.identity.grade = Grade::Declared;
+        known.place = Place::Board;
+        return known;
+    }
+    if take(&mut known, value, "value", Place::Value, Grade::Drawn, matcher) {
+        note_disagreement(&mut known, symbol, matcher);
+        return known;
+    }
+    for field in &device.fields {
+        let name = field.name.trim();
+        if NUMBER_FIELDS.iter().any(|each| each.eq_ignore_ascii_case(name)) && !field.value.trim().is_empty() {
+            let told_by = format!("{name} field");
+            if take(&mut known, field.value.trim(), &told_by, Place::Number, Grade::Drawn, matcher) {
+                return known;
+            }
+        }
+    }
+    by_symbol(&mut known, value, symbol, matcher);
+    known
+}
+
+/// Takes the families that a text fits; `false` where it fits none.
+fn take(known: &mut Known, text: &str, told_by: &str, place: Place, grade: Grade, matcher: &Matcher) -> bool {
+    let hits = matcher.hits(&reduced(text));
+    let Some(best) = hits.first() else { return false };
+    known.identity.families = hits.iter().map(|hit| hit.family).collect();
+    text.clone_into(&mut known.identity.name);
+    told_by.clone_into(&mut known.identity.told_by);
+    known.identity.grade = grade;
+    known.hit = Some(*best);
+    known.place = place;
+    true
+}
+
+/// The value names one part and the symbol another: worth a remark, and the value wins.
+fn note_disagreement(known: &mut Known, symbol: &str, matcher: &Matcher) {
+    if known.symbol_agrees || !names_part(symbol) {
+        return;
+    }
+    let drawn = matcher.hits(&reduced(symbol));
+    if !drawn.iter().any(|hit| known.identity.families.contains(&hit.family)) {
+        known.identity.remarks.push(format!("the value is {}, the symbol that of {symbol}", known.identity.name));
+    }
+}
+
+/// No text but perhaps the symbol's names a known part.
+fn by_symbol(known: &mut Known, value: &str, symbol: &str, matcher: &Matcher) {
+    // A value one repeated digit short of a known number is that part, misspelt.
+    let misspelt = if known.value_names_part { matcher.misspelt(&reduced(value)) } else { Vec::new() };
+    if let Some(best) = misspelt.first() {
+        known.identity.families = misspelt.iter().map(|hit| hit.family).collect();
+        known.identity.grade = Grade::Inferred;
+        known.identity.remarks.push(format!("the value {value} is taken for a misspelling"));
+        known.hit = Some(Hit { base: 0, ..*best });
+        return;
+    }
+    if known.symbol_agrees {
+        take(known, symbol, "symbol", Place::Symbol, Grade::Described, matcher);
+        // The value may carry the voltage code that the symbol lacks.
+        return;
+    }
+    if known.value_names_part {
+        // Another part on this symbol: the symbol's family says nothing of its figures.
+        if names_part(symbol) {
+            known.identity.remarks.push(format!("the value is {value}, the symbol that of {symbol}"));
+        }
+        return;
+    }
+    if take(known, symbol, "symbol", Place::Symbol, Grade::Inferred, matcher) && !value.is_empty() {
+        known.identity.remarks.push(format!("known only by its symbol {symbol}; the value is {value}"));
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn part_numbers_are_told_from_free_text() {
+        for text in ["LM1117-3.3", "AP2114H-3.3", "78L05", "L7805", "XC6206P332MR", "R-78E5.0-0.5", "uA7805", "MIC5504-3.3"] {
+            assert!(names_part(text), "{text}");
+        }
+        for text in ["LDO", "3.3V", "5V REG", "497-18013-1-ND", "LDO3V3", "", "VOLTAGE REGULATOR"] {
+            assert!(!names_part(text), "{text}");
+        }
+    }
+
+    #[test]
+    fn names_that_share_their_number_are_one_part() {
+        assert!(same_part("LM1117-3.3", "LM1117-ADJ"));
+        assert!(same_part("MCP1702", "MCP1702_SOT23"));
+        assert!(same_part("TLV70233", "TLV70233_SOT23-5"));
+        assert!(!same_part("LM1117", "LM7805_TO220"));
+        assert!(!same_part("AP2114H-3.3", "AP2112K-3.3"));
+    }
+}

@@ -1,0 +1,467 @@
+//! Nominal voltages as part names and descriptions spell them.
+//!
+//! Makers write the same voltage as `-3.3`, `33`, `330`, `3302`, `3V3`, `-3-3`; the same digits mean 12 V or 1.2 V. So a
+//! name is not decoded to one voltage: every reading is collected with how plain it is, and what is known beside the
+//! name (voltages that the family is made for, the symbol's description) chooses among the readings, never beyond.
+
+use std::sync::LazyLock;
+
+use regex::Regex;
+
+/// How plain a reading is, plainest first.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+pub(super) enum Plainness {
+    /// Spelled with a point or a `V`, or the 78/79 scheme.
+    Spelled,
+    /// Digits behind a dash, or behind the known base of the family.
+    Coded,
+    /// Digits glued to letters.
+    Glued,
+    /// The last digits of a long number.
+    Tail,
+    /// Digits that are more likely the part's number; they count only where something else confirms them.
+    Faint,
+}
+
+/// One reading of a name, a magnitude in volts.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) struct Reading {
+    pub(super) volts: f64,
+    /// How many decimals the code resolves: a reference of 4.096 V may be called 4 or 41.
+    pub(super) decimals: i32,
+    pub(super) plainness: Plainness,
+}
+
+/// Largest and smallest magnitude that a fixed regulator or reference is made for, in volts.
+const SENSIBLE: std::ops::RangeInclusive<f64> = 0.5..=48.0;
+
+fn regex(pattern: &str) -> Regex {
+    #[allow(clippy::expect_used)] // constant patterns, each compiled in the tests
+    Regex::new(pattern).expect("constant pattern")
+}
+
+/// Package names, and rests such as `/NOPB`: their digits say nothing of a voltage.
+static PACKAGE: LazyLock<Regex> = LazyLock::new(|| {
+    regex(
+        r"(?x) (?:^|[_\-/\x20(])
+        (?: SOT-?\d{2,3}(?:-\d{1,2}L?)? | TSOT-?\d{2}(?:-\d)? | TO-?\d{2,3}(?:-\d{1,2})?(?:AB|AA|F|FP)? | SO-?\d{1,2} | SOIC-?\d{0,2}
+          | DIP-?\d{0,2} | PDIP-?\d{0,2} | H?T?S?SOP-?\d{0,2}J? | [VMH]?SSOP-?\d{0,2} | [HTM]+SOP-?\d{0,2} | [WVUXTHD]*[DQ]FN-?\d{0,2} | SON-?\d{0,2}
+          | [WVUX]+SON-?\d{0,2} | SC-?\d{2}(?:-\d)? | DPAK-?\d? | D2PAK-?\d? | DDPAK-?\d? | BGA-?\d* | WLCSP-?\d* | SIP-?\d* | VQFN-?\d*
+          | \d{1,2}PINPACKAGE | NOPB | TR | T[12]G | TRG\d | HF-\d )
+        (?: $ | [_\-/\x20)] )",
+    )
+});
+static SPELLED_V: LazyLock<Regex> = LazyLock::new(|| regex(r"(\d{1,2})V(\d{1,3})|(\d{1,2})P(\d{1,2})(?:V|$|[^A-Z0-9])"));
+static POINT: LazyLock<Regex> = LazyLock::new(|| regex(r"(\d{1,4})\.(\d{1,3})"));
+static VOLTS: LazyLock<Regex> = LazyLock::new(|| regex(r"(?:^|[^0-9.])(\d{1,2})V(?:DC)?(?:$|[^A-Z0-9])"));
+static SEVENTY: LazyLock<Regex> =
+    LazyLock::new(|| regex(r"(?:^|[^0-9])7([89])([A-Z]{0,2})-?(\d{2})(\.\d)?(?:$|[^0-9.])"));
+static DASHES: LazyLock<Regex> = LazyLock::new(|| regex(r"-(\d)-(\d)(?:$|[^0-9])"));
+static DASHED: LazyLock<Regex> = LazyLock::new(|| regex(r"[\-_\x20](\d{1,4})([A-Z/\-_\x20]|$)"));
+static GLUED: LazyLock<Regex> = LazyLock::new(|| regex(r"([A-Z])(\d{2,4})"));
+static RUN: LazyLock<Regex> = LazyLock::new(|| regex(r"\d+"));
+
+/// The voltages after 78 or 79: above 27 the code is in tenths, and a few below are too.
+fn seventy_code(code: &str) -> Option<f64> {
+    let number: f64 = code.parse().ok()?;
+    match number {
+        5.0..=12.0 | 15.0 | 16.0 | 17.0 | 18.0 | 20.0 | 24.0 | 27.0 => Some(number),
+        25.0 | 26.0 | 28.0..=90.0 => Some(number / 10.0),
+        _ => None,
+    }
+}
+
+/// Every reading of a part name, plainest first. `base` is how many bytes of the upper-case name are known to be the
+/// family's own number.
+pub(super) fn read_name(name: &str, base: usize) -> Vec<Reading> {
+    let mut upper = name.to_uppercase().replace(',', ".").replace(['µ', 'Μ', 'μ'], "U");
+    // Packages overlap in their separators, so they are cut out until none is left.
+    while let Some(found) = PACKAGE.find(&upper) {
+        if found.start() < base {
+            break;
+        }
+        let range = found.range();
+        upper.replace_range(range, "_");
+    }
+    let mut readings = Vec::new();
+    spelled(&upper, &mut readings);
+    let seventy = SEVENTY.captures(&upper).and_then(|found| seventy_reading(&found));
+    let is_seventy = seventy.is_some();
+    readings.extend(seventy);
+    let has_spelled = !readings.is_empty();
+    if base > 0 {
+        behind_base(upper.get(base.min(upper.len())..).unwrap_or(""), &mut readings);
+    }
+    if !is_seventy {
+        coded(&upper, &mut readings);
+    }
+    readings.retain(|reading| SENSIBLE.contains(&reading.volts));
+    // A spelled voltage settles the name; what other digits could mean no longer matters.
+    if has_spelled && readings.iter().any(|reading| reading.plainness == Plainness::Spelled) {
+        readings.retain(|reading| reading.plainness == Plainness::Spelled);
+    }
+    readings.sort_by(|one, other| one.plainness.cmp(&other.plainness));
+    let mut seen: Vec<Reading> = Vec::new();
+    for reading in readings {
+        if !seen.iter().any(|other| (other.volts - reading.volts).abs() < 1e-9) {
+            seen.push(reading);
+        }
+    }
+    seen
+}
+
+fn group<'a>(found: &regex::Captures<'a>, index: usize) -> &'a str {
+    found.get(index).map_or("", |group| group.as_str())
+}
+
+fn spelled(upper: &str, readings: &mut Vec<Reading>) {
+    for found in SPELLED_V.captures_iter(upper) {
+        let (whole, part) = if found.get(1).is_some() { (1, 2) } else { (3, 4) };
+        push(readings, &format!("{}.{}", group(&found, whole), group(&found, part)), Plainness::Spelled);
+    }
+    for found in POINT.captures_iter(upper) {
+        let (whole, part) = (group(&found, 1), group(&found, 2));
+        // `MC7905.2` is left to the 78/79 scheme, and `TC2014.5`-like runs are no voltages.
+        if whole.len() <= 2 {
+            push(readings, &format!("{whole}.{part}"), Plainness::Spelled);
+        }
+    }
+    for found in VOLTS.captures_iter(upper) {
+        push(readings, group(&found, 1), Plainness::Spelled);
+    }
+}
+
+fn seventy_reading(found: &regex::Captures<'_>) -> Option<Reading> {
+    let mut volts = seventy_code(group(found, 3))?;
+    let mut decimals = i32::from(volts.fract() > 0.0);
+    if let Ok(part) = group(found, 4).parse::<f64>() {
+        volts += part;
+        decimals = 1;
+    }
+    Some(Reading { volts, decimals, plainness: Plainness::Spelled })
+}
+
+fn push(readings: &mut Vec<Reading>, text: &str, plainness: Plainness) {
+    if let Ok(volts) = text.parse::<f64>() {
+        let decimals = text.split_once('.').map_or(0, |(_, part)| i32::try_from(part.len()).unwrap_or(0));
+        readings.push(Reading { volts, decimals, plainness });
+    }
+}
+
+/// What a bare run of digits can mean, the likelier first.
+fn digits(code: &str, plainness: Plainness, readings: &mut Vec<Reading>) {
+    let Ok(number) = code.parse::<f64>() else { return };
+    let mut add = |volts: f64, decimals: i32| readings.push(Reading { volts, decimals, plainness });
+    match code.len() {
+        1 => add(number, 0),
+        2 => {
+            // Fixed voltages from 5 V up are written whole where the digits cannot be tenths of a common voltage.
+            let whole = matches!(code, "05" | "06" | "09" | "10" | "24") || code == "15" && plainness == Plainness::Spelled;
+            if whole {
+                add(number, 0);
+                add(number / 10.0, 1);
+            } else {
+                add(number / 10.0, 1);
+                add(number, 0);
+            }
+        }
+        3 => {
+            add(number / 100.0, 2);
+            // `331`: tenths, then a letter's worth of tolerance.
+            if let Ok(tenths) = code.get(..2).unwrap_or("").parse::<f64>() {
+                add(tenths / 10.0, 1);
+            }
+        }
+        4 => {
+            // `3302`: tenths and the tolerance class.
+            if let Ok(tenths) = code.get(..2).unwrap_or("").parse::<f64>()
+                && code.get(2..3) == Some("0")
+            {
+                add(tenths / 10.0, 1);
+            }
+            add(number / 1000.0, 3);
+        }
+        _ => {}
+    }
+}
+
+/// Digits right behind the family's own number, through a few letters.
+fn behind_base(rest: &str, readings: &mut Vec<Reading>) {
+    let Some(run) = RUN.find(rest) else { return };
+    if run.start() <= 6 && run.len() <= 4 {
+        // Letters between that number and the digits make it less plain.
+        let plainness = if rest.get(..run.start()).is_some_and(|between| between.len() <= 1) {
+            Plainness::Coded
+        } else {
+            Plainness::Glued
+        };
+        digits(run.as_str(), plainness, readings);
+    }
+}
+
+/// Digits behind dashes, glued to letters, and at the end of long numbers.
+fn coded(upper: &str, readings: &mut Vec<Reading>) {
+    for found in DASHES.captures_iter(upper) {
+        push(readings, &format!("{}.{}", group(&found, 1), group(&found, 2)), Plainness::Coded);
+    }
+    let first_run = RUN.find(upper).map_or(0..0, |run| run.range());
+    for found in DASHED.captures_iter(upper) {
+        let at = found.get(1).map_or(0, |group| group.start());
+        // The first number of `R-78` or `LD-1117` is the part's.
+        if at > first_run.start || group(&found, 1).len() <= 2 && first_run.len() > 2 {
+            digits(group(&found, 1), Plainness::Coded, readings);
+        }
+    }
+    for found in GLUED.captures_iter(upper) {
+        let Some(run) = found.get(2) else { continue };
+        let ends = upper.as_bytes().get(run.end()).is_none_or(|next| !next.is_ascii_digit() && *next != b'.');
+        if !ends {
+            continue;
+        }
+        // `LF33` has no number but its voltage; it counts like the tail of a long one.
+        let plainness = match run.start() > first_run.start {
+            true => Plainness::Glued,
+            false if run.len() == 2 => Plainness::Tail,
+            false => Plainness::Faint,
+        };
+        digits(run.as_str(), plainness, readings);
+    }
+    tail(upper.get(first_run).unwrap_or(""), readings);
+}
+
+/// The last digits of the part's own number: `TLV70233`, `TPS715345`, `REF3033`.
+fn tail(run: &str, readings: &mut Vec<Reading>) {
+    if run.len() < 4 {
+        return;
+    }
+    let plainness = if run.len() >= 5 { Plainness::Tail } else { Plainness::Faint };
+    for length in [2, 3] {
+        if run.len() >= length + 3 || length == 2 {
+            if let Some(code) = run.get(run.len() - length..) {
+                let divisor = if length == 2 { 10.0 } else { 100.0 };
+                if let Ok(number) = code.parse::<f64>() {
+                    let decimals = if length == 2 { 1 } else { 2 };
+                    readings.push(Reading { volts: number / divisor, decimals, plainness });
+                    if length == 2 {
+                        readings.push(Reading { volts: number, decimals: 0, plainness: Plainness::Faint });
+                    }
+                }
+            }
+        }
+    }
+}
+
+/// A voltage that a description states.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) struct Stated {
+    /// Volts, magnitude.
+    pub(super) volts: f64,
+    /// Whether it carries a minus sign.
+    pub(super) negative: bool,
+    /// Whether the words beside it say that it is the output.
+    pub(super) output: bool,
+}
+
+static STATED: LazyLock<Regex> = LazyLock::new(|| {
+    regex(r"(?i)(?P<lead>.{0,14}?)(?P<sign>[+\-\u{2212}\u{2013}]?)(?P<number>\d+(?:[.,]\d+)?)\s?V(?:DC|olts?)?(?P<rest>[^a-z0-9].{0,18}|$)")
+});
+static RANGE: LazyLock<Regex> = LazyLock::new(|| {
+    regex(
+        r"(?ix) [+\-]? \d+(?:[.,]\d+)? \s? V? \s? (?: - | \u{2013} | to | \.\.\.? | ~ | \u{2026} ) \s? [+\-]? \d+(?:[.,]\d+)? \s? V
+        | (?: up\ to | max\.? | vin\ ?=? | maximum | under | over | ESD ) \s? [+\-]? \d+(?:[.,]\d+)? \s? V
+        | [+\-]? \d+(?:[.,]\d+)? \s? V \s? (?: / \s? V | max | input | in\b | abs | vin | tolerant | high\ )
+        | ± \s? \d+(?:[.,]\d+)? \s? V",
+    )
+});
+
+/// The voltages that a description states for its output; ranges, inputs and limits are passed over.
+pub(super) fn read_description(text: &str) -> Vec<Stated> {
+    let text = RANGE.replace_all(text, " ");
+    let mut found = Vec::new();
+    let mut rest: &str = &text;
+    while let Some(hit) = STATED.captures(rest) {
+        let number = group_named(&hit, "number").replace(',', ".");
+        let end = hit.name("number").map_or(rest.len(), |number| number.end());
+        let lead = group_named(&hit, "lead").to_lowercase();
+        let behind = group_named(&hit, "rest").to_lowercase();
+        // A digit or point right before means that the number was cut in half.
+        let whole = !lead.ends_with(|each: char| each.is_ascii_digit() || each == '.');
+        if whole && let Ok(volts) = number.parse::<f64>() {
+            let output = lead.contains("output") || lead.contains("fixed") || lead.contains("vo") || behind.contains("output")
+                || behind.contains("fixed") || behind.contains("reference");
+            let negative = !matches!(group_named(&hit, "sign"), "" | "+");
+            if SENSIBLE.contains(&volts) {
+                found.push(Stated { volts, negative, output });
+            }
+        }
+        rest = rest.get(end..).unwrap_or("");
+    }
+    found
+}
+
+fn group_named<'a>(found: &regex::Captures<'a>, name: &str) -> &'a str {
+    found.name(name).map_or("", |group| group.as_str())
+}
+
+/// Whether a code that resolves so many decimals can stand for a voltage: it is the voltage, rounded or cut off.
+pub(super) fn stands_for(reading: &Reading, volts: f64) -> bool {
+    let scale = 10_f64.powi(reading.decimals);
+    let near = |value: f64| (value - reading.volts).abs() < 1e-6;
+    near(volts) || near((volts * scale).round() / scale) || near((volts * scale + 1e-9).floor() / scale)
+}
+
+/// What settles which reading of a name is meant.
+#[derive(Debug, Clone, Copy, Default)]
+pub(super) struct Arbiters<'a> {
+    /// Voltages that the family is made for; empty where unknown.
+    pub(super) made_for: &'a [f64],
+    /// What the description states.
+    pub(super) stated: &'a [Stated],
+}
+
+/// A chosen voltage.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) struct Chosen {
+    /// Magnitude in volts.
+    pub(super) volts: f64,
+    /// Whether the name alone or together with the family says so; else the reading is a guess.
+    pub(super) sure: bool,
+    /// Whether the description says something else.
+    pub(super) contradicted: bool,
+}
+
+/// Codes that a reader takes for a voltage without being told.
+fn typical(volts: f64) -> bool {
+    [1.2, 1.5, 1.8, 2.5, 2.8, 2.85, 3.0, 3.3, 5.0, 12.0, 15.0].iter().any(|each| (each - volts).abs() < 1e-9)
+}
+
+/// Chooses among the readings of a name. `None` where the name says nothing that can be relied on.
+pub(super) fn choose(readings: &[Reading], arbiters: Arbiters<'_>) -> Option<Chosen> {
+    let made = |reading: &&Reading| arbiters.made_for.iter().any(|volts| stands_for(reading, *volts));
+    let exact = |reading: &Reading| {
+        let near = |volts: &&f64| stands_for(reading, **volts);
+        arbiters.made_for.iter().find(near).copied().unwrap_or(reading.volts)
+    };
+    let stated = |reading: &Reading| arbiters.stated.iter().map(|each| each.volts).find(|volts| stands_for(reading, *volts));
+    // Which of two readings that the family is made for (12 V, 1.2 V) the description decides.
+    let family: Vec<&Reading> =
+        readings.iter().filter(|reading| reading.plainness < Plainness::Faint).filter(made).collect();
+    if let Some(reading) = family.iter().find(|reading| stated(reading).is_some()).or(family.first()) {
+        let contradicted = stated(reading).is_none() && !arbiters.stated.is_empty();
+        return Some(Chosen { volts: exact(reading), sure: true, contradicted });
+    }
+    // The plainest reading that the description confirms; a more precise statement is the better figure.
+    if let Some((reading, volts)) = readings.iter().find_map(|reading| stated(reading).map(|volts| (reading, volts))) {
+        let spelled = readings.iter().any(|other| other.plainness == Plainness::Spelled);
+        if !spelled || reading.plainness == Plainness::Spelled {
+            return Some(Chosen { volts, sure: true, contradicted: false });
+        }
+    }
+    let contradicted = !arbiters.stated.is_empty();
+    let best = readings.first()?;
+    match best.plainness {
+        Plainness::Spelled | Plainness::Coded => Some(Chosen { volts: best.volts, sure: true, contradicted }),
+        Plainness::Glued => {
+            let group = readings.iter().filter(|reading| reading.plainness == Plainness::Glued);
+            let near = nearest(group.clone(), arbiters.stated).or_else(|| group.clone().find(|each| typical(each.volts)).copied());
+            let volts = near.map_or(best.volts, |reading| reading.volts);
+            Some(Chosen { volts, sure: typical(volts), contradicted })
+        }
+        Plainness::Tail => {
+            let group = readings.iter().filter(|reading| reading.plainness == Plainness::Tail);
+            if contradicted {
+                // The part's own number: only a reading close to what is described can be a voltage at all.
+                return nearest(group, arbiters.stated)
+                    .map(|reading| Chosen { volts: reading.volts, sure: true, contradicted });
+            }
+            group.clone().find(|each| typical(each.volts)).map(|reading| Chosen {
+                volts: reading.volts,
+                sure: false,
+                contradicted,
+            })
+        }
+        Plainness::Faint => None,
+    }
+}
+
+/// The reading nearest to what is stated, within a tenth.
+fn nearest<'a>(readings: impl Iterator<Item = &'a Reading>, stated: &[Stated]) -> Option<Reading> {
+    let distance = |reading: &Reading| {
+        stated.iter().map(|each| (each.volts / reading.volts - 1.0).abs()).fold(f64::INFINITY, f64::min)
+    };
+    readings.copied().filter(|reading| distance(reading) < 0.1).min_by(|one, other| distance(one).total_cmp(&distance(other)))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn alone(name: &str) -> Option<f64> {
+        choose(&read_name(name, 0), Arbiters::default()).map(|chosen| chosen.volts)
+    }
+
+    fn with(name: &str, description: &str) -> Option<f64> {
+        choose(&read_name(name, 0), Arbiters { made_for: &[], stated: &read_description(description) })
+            .map(|chosen| chosen.volts)
+    }
+
+    #[test]
+    fn spelled_and_dashed_codes_are_read_without_help() {
+        for (name, volts) in [
+            ("LM1117-3.3", 3.3), ("MIC5205-2.85YM5", 2.85), ("LP5907MFX-3.3/NOPB", 3.3), ("AMS1117-3V3", 3.3),
+            ("TLV1117-33", 3.3), ("MCP1700T-3302E/TT", 3.3), ("MCP1703A-500xxDB", 5.0), ("SPX3819M5-L-3-3", 3.3),
+            ("L7805", 5.0), ("78L05", 5.0), ("L7885", 8.5), ("MC7905.2", 5.2), ("L78L33_SO8", 3.3), ("uA7812", 12.0),
+            ("LD1117S33TR_SOT223", 3.3), ("LF33_TO220", 3.3), ("NCP1117ST33T3G", 3.3), ("LD39150DT18", 1.8),
+            ("IFX25401TBV50", 5.0), ("LM336Z2.5", 2.5), ("LM4040DBZ-2.5", 2.5), ("ME6211C33M5G", 3.3),
+            ("RT9193-33GB", 3.3), ("LM2940CT-12", 1.2), ("LM7805_TO220", 5.0), ("XC6220B331MR", 3.3), ("AP2127K-4.75", 4.75),
+        ] {
+            assert_eq!(alone(name), Some(volts), "{name}");
+        }
+    }
+
+    #[test]
+    fn model_numbers_are_no_voltages() {
+        for name in ["LM1117", "MCP1702", "ADP3335", "NCP4620", "LM317T", "REF192", "MAX603", "TL431", "LT3080", "LM4128"] {
+            assert_eq!(alone(name), None, "{name}");
+        }
+    }
+
+    #[test]
+    fn a_description_chooses_among_the_readings_and_never_beyond_them() {
+        for (name, description, volts) in [
+            ("LM1085-12", "3A 27V Linear Regulator, Fixed Output 12V, TO-220/TO-263", 12.0),
+            ("APE8865N-12-HF-3", "300mA Low Dropout Voltage Regulator, Fixed Output 1.2V", 1.2),
+            ("LD1086D2T12TR", "Linear Regulator, Fixed Output 12V", 12.0),
+            ("LM4040DBZ-4.1", "4.096V Precision Micropower Shunt Voltage Reference, SOT-23", 4.096),
+            ("MAX6241", "1ppm/°C Low-Noise Precision +4.096V Voltage Reference, SO-8/DIP-8", 4.096),
+            ("LD3985M29R_SOT23", "150mA Low Dropout Voltage Regulator, Fixed Output 2.8V, SOT-23-5", 2.9),
+            ("TLV713185PDBV", "150mA Low Dropout Voltage Regulator, Fixed Output 1.8V, SOT-23-5", 1.85),
+            ("TPS76329", "Low power 150mA LDO 2.8V fixed output voltage, SOT-23-5", 2.9),
+            ("NCP163BFCT180T2G", "250mA low-noise LDO, 2.2V-5.5V input, 2.925V output, WLCSP-4", 1.8),
+            ("TPS7148", "500mA Low Drop-out Voltage Regulator, Fixed Output 4.85V, SO-8/DIP-8", 4.85),
+            ("L79L12_SOT89", "Negative 100mA -30V Linear Regulator, Fixed Output -5V, SOT-89", 12.0),
+            ("MCP1501-12xCH", "1.25V, 0.1%, 20mA, Precision Voltage Reference, SOT-23-6", 1.25),
+        ] {
+            assert_eq!(with(name, description), Some(volts), "{name}");
+        }
+    }
+
+    #[test]
+    fn ranges_and_limits_of_a_description_are_not_its_output() {
+        let stated = |text: &str| read_description(text).iter().map(|each| each.volts).collect::<Vec<_>>();
+        assert_eq!(stated("250mA low-noise LDO, 2.2V-5.5V input, 2.925V output, WLCSP-4"), vec![2.925]);
+        assert_eq!(stated("Dual 500mA Low Dropout Linear Regulator, 3.3V/1.2V, MSOP-8"), vec![3.3, 1.2]);
+        assert_eq!(stated("Precision virtual ground, 4V to 40V input, TO-92"), Vec::<f64>::new());
+        assert_eq!(stated("50mA Dual Mode -5V/Programmable Negative Voltage Regulator"), vec![5.0]);
+    }
+
+    #[test]
+    fn the_family_settles_ambiguous_codes() {
+        let readings = read_name("TLV70233DBVR", 6);
+        let chosen = choose(&readings, Arbiters { made_for: &[1.2, 1.8, 3.3], stated: &[] });
+        assert_eq!(chosen, Some(Chosen { volts: 3.3, sure: true, contradicted: false }));
+        let twelve = read_name("LM2940CT-12", 6);
+        let chosen = choose(&twelve, Arbiters { made_for: &[5.0, 8.0, 9.0, 10.0, 12.0, 15.0], stated: &[] });
+        assert_eq!(chosen.map(|chosen| chosen.volts), Some(12.0));
+    }
+}

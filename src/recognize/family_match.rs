@@ -1,43 +1,68 @@
 //! Matching part names against the name patterns of families.
 //!
-//! Patterns are written for people (`LM1117{V}*`); here each becomes one regular expression over the reduced name, and
-//! all of them one set, so that a name is scanned once however many families are known.
+//! Patterns are written for people (`LM1117*{V}*`); they are cut into tokens once, and a name is walked along them with
+//! the set of places that can be reached, so that the cost is linear in the name whatever the pattern.
 
-use regex::{Regex, RegexSet};
-
-use crate::knowledge::Family;
+use crate::knowledge::{Family, VOLTAGE_CODE};
 
 /// A family whose pattern fits a name.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+#[derive(Debug, Clone, Copy, PartialEq)]
 pub(super) struct Hit {
     /// Index of the family.
     pub(super) family: usize,
-    /// How many characters of the pattern are letters and digits of its own: how telling the match is.
+    /// How many letters and digits of its own the pattern has: how telling the match is.
     pub(super) literal: usize,
-    /// How many bytes of the reduced name are the family's own number.
+    /// Up to which byte the reduced name is the family's own number.
     pub(super) base: usize,
-    /// Byte in the reduced name at which the match begins.
-    pub(super) start: usize,
+    /// The voltage code that the name has where the pattern wants one.
+    pub(super) code: Option<Code>,
 }
 
-/// The compiled patterns of all families.
-pub(super) struct Matcher {
-    set: RegexSet,
-    patterns: Vec<Pattern>,
+/// What a voltage code says.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) enum Code {
+    /// This many volts, a magnitude.
+    Volts(f64),
+    /// Adjustable.
+    Adjustable,
 }
 
+#[derive(Debug, Clone, PartialEq)]
+enum Token {
+    Literal(char),
+    /// A dash or blank: makers and drawers leave it out or write another.
+    Separator,
+    One,
+    Any,
+    Code,
+}
+
+#[derive(Debug)]
 struct Pattern {
     family: usize,
     literal: usize,
-    regex: Regex,
+    tokens: Vec<Token>,
+    /// Number of tokens that stand before the first `?`, `*` or code.
+    beginning: usize,
     /// The literal beginning, with runs of one character cut to one.
     squeezed: String,
 }
 
-/// A name as it is compared: upper case, underscores as dashes, the micro sign as `U`.
+/// The patterns of all families, with the spellings of their voltages.
+#[derive(Debug)]
+pub(super) struct Matcher {
+    patterns: Vec<Pattern>,
+    /// For each family its codes without separators, longest first.
+    codes: Vec<Vec<(String, Code)>>,
+}
+
+/// No order code is longer; what follows is prose.
+const LONGEST_NAME: usize = 80;
+
+/// A name as it is compared: upper case, underscores as dashes, the micro sign as `U`, at most [`LONGEST_NAME`] long.
 pub(super) fn reduced(name: &str) -> String {
     let mut text = String::with_capacity(name.len());
-    for each in name.trim().chars().flat_map(char::to_uppercase) {
+    for each in name.trim().chars().flat_map(char::to_uppercase).take(LONGEST_NAME) {
         match each {
             '\u{a0}' => text.push(' '),
             '_' => text.push('-'),
@@ -49,54 +74,8 @@ pub(super) fn reduced(name: &str) -> String {
     text
 }
 
-/// The expression of a pattern, how many literal characters it has, and its literal beginning.
-fn expression(pattern: &str) -> (String, usize, String) {
-    let mut text = String::from("^(?P<base>");
-    let mut literal = 0;
-    let mut beginning = String::new();
-    let mut open = true;
-    let mut rest = pattern;
-    while let Some(each) = rest.chars().next() {
-        let close = |open: &mut bool, text: &mut String| {
-            if std::mem::replace(open, false) {
-                text.push(')');
-            }
-        };
-        if let Some(behind) = rest.strip_prefix("{V}") {
-            close(&mut open, &mut text);
-            text.push_str(r"[-/ ]?(?:\d{1,2}[.VP]\d{1,3}V?|\d-\d|\d{1,4}V?)?");
-            rest = behind;
-            continue;
-        }
-        match each {
-            '*' => {
-                close(&mut open, &mut text);
-                text.push_str(".*");
-            }
-            '?' => text.push('.'),
-            _ => {
-                let upper = reduced(&each.to_string());
-                let upper = if each == ' ' { "-".to_owned() } else { upper };
-                // A dash in the pattern counts little: makers and drawers leave it out.
-                if upper == "-" {
-                    text.push_str("[- ]?");
-                } else {
-                    text.push_str(&regex::escape(&upper));
-                    literal += 1;
-                    if open {
-                        beginning.push_str(&upper);
-                    }
-                }
-            }
-        }
-        rest = rest.get(each.len_utf8()..).unwrap_or("");
-    }
-    if open {
-        text.push(')');
-    }
-    // What follows the name behind a separator (`/NOPB`, a package, a remark) is no part of it.
-    text.push_str(r"(?:$|[-/(;+#@ ])");
-    (text, literal, beginning)
+fn is_separator(each: char) -> bool {
+    matches!(each, '-' | '.' | '/' | ' ' | '_')
 }
 
 fn squeezed(text: &str) -> String {
@@ -104,36 +83,87 @@ fn squeezed(text: &str) -> String {
     text.chars().filter(|each| last.replace(*each) != Some(*each)).collect()
 }
 
-impl Matcher {
-    /// Compiles the patterns of all families; a pattern that cannot be compiled is passed over.
-    pub(super) fn new(families: &[Family]) -> Self {
-        let mut texts = Vec::new();
-        let mut patterns = Vec::new();
-        for (family, each) in families.iter().enumerate() {
-            for name in &each.names {
-                let (text, literal, beginning) = expression(name);
-                if let Ok(regex) = Regex::new(&text) {
-                    patterns.push(Pattern { family, literal, regex, squeezed: squeezed(&beginning) });
-                    texts.push(text);
-                }
+fn compile(family: usize, pattern: &str) -> Pattern {
+    let mut tokens = Vec::new();
+    let mut rest = pattern;
+    while let Some(each) = rest.chars().next() {
+        if let Some(behind) = rest.strip_prefix(VOLTAGE_CODE) {
+            tokens.push(Token::Code);
+            rest = behind;
+            continue;
+        }
+        tokens.push(match each {
+            '*' => Token::Any,
+            '?' => Token::One,
+            '-' | ' ' => Token::Separator,
+            other => Token::Literal(other.to_ascii_uppercase()),
+        });
+        rest = rest.get(each.len_utf8()..).unwrap_or("");
+    }
+    let plain = |token: &&Token| matches!(token, Token::Literal(_) | Token::Separator);
+    let beginning = tokens.iter().take_while(plain).count();
+    let text = |token: &Token| if let Token::Literal(each) = token { Some(*each) } else { None };
+    let literal = tokens.iter().filter_map(text).count();
+    let squeezed = squeezed(&tokens.iter().take(beginning).filter_map(text).collect::<String>());
+    Pattern { family, literal, tokens, beginning, squeezed }
+}
+
+/// The ways in which a voltage is spelled as a code, without separators.
+fn spellings(volts: f64) -> Vec<String> {
+    let mut found = vec![format!("{volts}"), format!("{volts:.1}"), format!("{volts:.2}"), format!("{volts:.3}")];
+    found.extend([format!("{volts:.1}"), format!("{volts:.2}")].map(|text| text.replace('.', "V")));
+    found.extend([format!("{volts:.1}"), format!("{volts:.2}")].map(|text| text.replace('.', "P")));
+    found.extend([format!("{volts:.1}"), format!("{volts:.2}"), format!("{volts:.3}")].map(|text| text.replace('.', "")));
+    found.extend([format!("{volts:.1}"), format!("{volts:.2}")].map(|text| text.replace('.', "-")));
+    let tenths = (volts * 10.0).round();
+    // Microchip's four digits: tenths and the tolerance class.
+    found.push(format!("{tenths:02}02"));
+    found.push(format!("{tenths:02}"));
+    if volts.fract() == 0.0 {
+        found.push(format!("{volts:02.0}"));
+        found.push(format!("{volts:.0}V"));
+    }
+    found.sort();
+    found.dedup();
+    found
+}
+
+fn codes_of(family: &Family) -> Vec<(String, Code)> {
+    let mut codes: Vec<(String, Code)> =
+        family.codes.iter().map(|(text, volts)| (text.to_ascii_uppercase(), Code::Volts(*volts))).collect();
+    for volts in &family.voltages {
+        for text in spellings(*volts) {
+            if !codes.iter().any(|(known, _)| *known == text) {
+                codes.push((text, Code::Volts(*volts)));
             }
         }
-        // Each pattern compiled alone, so the set fails only by its size; then nothing is matched.
-        let set = RegexSet::new(&texts).unwrap_or_else(|_| RegexSet::empty());
-        Self { set, patterns }
+    }
+    codes.push(("ADJ".to_owned(), Code::Adjustable));
+    codes.sort_by(|one, other| other.0.len().cmp(&one.0.len()).then(one.0.cmp(&other.0)));
+    codes
+}
+
+impl Matcher {
+    /// Prepares the patterns of all families.
+    pub(super) fn new(families: &[Family]) -> Self {
+        let patterns = families.iter().enumerate().flat_map(|(index, family)| {
+            family.names.iter().map(move |name| compile(index, name))
+        });
+        Self { patterns: patterns.collect(), codes: families.iter().map(codes_of).collect() }
     }
 
-    /// The families that a reduced name fits, the most telling pattern first, then in order of the families.
+    /// The families that a reduced name fits: those with a voltage code first, then by how telling the pattern is, then
+    /// in order of the families.
     pub(super) fn hits(&self, name: &str) -> Vec<Hit> {
         let mut found: Vec<Hit> = Vec::new();
         for start in starts(name) {
-            let rest = name.get(start..).unwrap_or("");
-            for index in &self.set.matches(rest) {
-                let Some(pattern) = self.patterns.get(index) else { continue };
-                let base = pattern.regex.captures(rest).and_then(|hit| hit.name("base")).map_or(0, |base| base.end());
-                let hit = Hit { family: pattern.family, literal: pattern.literal, base, start };
+            let rest: Vec<char> = name.get(start..).unwrap_or("").chars().collect();
+            for pattern in &self.patterns {
+                let codes = self.codes.get(pattern.family).map_or(&[][..], Vec::as_slice);
+                let Some((base, code)) = walk(pattern, &rest, codes) else { continue };
+                let hit = Hit { family: pattern.family, literal: pattern.literal, base: start + base, code };
                 match found.iter_mut().find(|other| other.family == hit.family) {
-                    Some(other) if other.literal < hit.literal => *other = hit,
+                    Some(other) if rank(other) < rank(&hit) => *other = hit,
                     Some(_) => {}
                     None => found.push(hit),
                 }
@@ -142,7 +172,7 @@ impl Matcher {
                 break;
             }
         }
-        found.sort_by(|one, other| other.literal.cmp(&one.literal).then(one.family.cmp(&other.family)));
+        found.sort_by(|one, other| rank(other).cmp(&rank(one)).then(one.family.cmp(&other.family)));
         found
     }
 
@@ -151,15 +181,87 @@ impl Matcher {
         let name = squeezed(name);
         let mut found: Vec<Hit> = Vec::new();
         for pattern in &self.patterns {
-            let fits = pattern.squeezed.len() >= 5
-                && name.strip_prefix(&pattern.squeezed).is_some_and(|rest| !rest.starts_with(|each: char| each.is_ascii_digit()));
+            let goes_on = |rest: &str| rest.starts_with(|each: char| each.is_ascii_digit());
+            let fits = pattern.squeezed.len() >= 5 && name.strip_prefix(&pattern.squeezed).is_some_and(|rest| !goes_on(rest));
             if fits && !found.iter().any(|hit| hit.family == pattern.family) {
-                found.push(Hit { family: pattern.family, literal: pattern.literal, base: 0, start: 0 });
+                found.push(Hit { family: pattern.family, literal: pattern.literal, base: 0, code: None });
             }
         }
-        found.sort_by(|one, other| other.literal.cmp(&one.literal).then(one.family.cmp(&other.family)));
+        found.sort_by(|one, other| rank(other).cmp(&rank(one)).then(one.family.cmp(&other.family)));
         found
     }
+}
+
+fn rank(hit: &Hit) -> (bool, usize) {
+    (hit.code.is_some(), hit.literal)
+}
+
+/// A place in the name that was reached, with the code that was passed.
+type Reached = (usize, Option<Code>);
+
+/// Walks a name along a pattern. Gives where the literal beginning ends, in bytes, and the code.
+fn walk(pattern: &Pattern, name: &[char], codes: &[(String, Code)]) -> Option<(usize, Option<Code>)> {
+    let mut reached: Vec<Reached> = vec![(0, None)];
+    let mut base = 0;
+    for (index, token) in pattern.tokens.iter().enumerate() {
+        reached = match token {
+            Token::Literal(each) => step(&reached, name, |found| found == *each),
+            Token::One => step(&reached, name, |_| true),
+            Token::Separator => {
+                let mut next = step(&reached, name, is_separator);
+                next.extend(&reached);
+                next
+            }
+            Token::Any => {
+                let first = reached.iter().map(|(at, _)| *at).min()?;
+                let code = reached.iter().find_map(|(_, code)| *code);
+                (first..=name.len()).map(|at| (at, code)).collect()
+            }
+            Token::Code => {
+                let behind_any = index > 0 && pattern.tokens.get(index - 1) == Some(&Token::Any);
+                pass_code(&reached, name, codes, behind_any)
+            }
+        };
+        if reached.is_empty() {
+            return None;
+        }
+        if index + 1 == pattern.beginning {
+            base = reached.iter().map(|(at, _)| *at).max().unwrap_or(0);
+        }
+    }
+    // What follows the name behind a separator (`/NOPB`, a package, a remark) is no part of it.
+    let ends = |at: usize| name.get(at).is_none_or(|each| is_separator(*each) || matches!(each, '(' | ';' | '+' | '#' | '@'));
+    let (_, code) = reached.into_iter().find(|(at, _)| ends(*at))?;
+    let bytes = name.iter().take(base).map(|each| each.len_utf8()).sum();
+    Some((bytes, code))
+}
+
+fn step(reached: &[Reached], name: &[char], fits: impl Fn(char) -> bool) -> Vec<Reached> {
+    let next = |(at, code): &Reached| name.get(*at).filter(|each| fits(**each)).map(|_| (at + 1, *code));
+    reached.iter().filter_map(next).collect()
+}
+
+/// Passes a voltage code with the separators around it. Its digits must not be part of a longer number.
+fn pass_code(reached: &[Reached], name: &[char], codes: &[(String, Code)], behind_any: bool) -> Vec<Reached> {
+    let digit = |at: usize| name.get(at).is_some_and(char::is_ascii_digit);
+    let mut next = Vec::new();
+    for (start, _) in reached {
+        let separators = name.iter().skip(*start).take_while(|each| is_separator(**each)).count();
+        let at = start + separators;
+        if behind_any && separators == 0 && at > 0 && digit(at - 1) {
+            continue;
+        }
+        for (text, code) in codes {
+            let length = text.chars().count();
+            let fits = name.get(at..at + length).is_some_and(|part| part.iter().copied().eq(text.chars()));
+            let cut = name.get(at + length).is_some_and(|each| *each == '.') && digit(at + length + 1);
+            if fits && !digit(at + length) && !cut {
+                next.push((at + length, Some(*code)));
+                break;
+            }
+        }
+    }
+    next
 }
 
 /// Where a name may begin: at the start, then behind a maker's name or another word.
@@ -171,21 +273,31 @@ fn starts(name: &str) -> impl Iterator<Item = usize> + '_ {
 mod tests {
     use super::*;
 
-    fn fits(pattern: &str, name: &str) -> Option<usize> {
-        let (text, _, _) = expression(pattern);
-        let regex = Regex::new(&text).ok()?;
-        regex.captures(&reduced(name)).and_then(|hit| hit.name("base")).map(|base| base.end())
+    fn codes(voltages: &[f64]) -> Vec<(String, Code)> {
+        let mut codes: Vec<(String, Code)> =
+            voltages.iter().flat_map(|volts| spellings(*volts).into_iter().map(|text| (text, Code::Volts(*volts)))).collect();
+        codes.push(("ADJ".to_owned(), Code::Adjustable));
+        codes.sort_by(|one, other| other.0.len().cmp(&one.0.len()).then(one.0.cmp(&other.0)));
+        codes
+    }
+
+    fn fits(pattern: &str, name: &str) -> Option<(usize, Option<Code>)> {
+        let name: Vec<char> = reduced(name).chars().collect();
+        walk(&compile(0, pattern), &name, &codes(&[1.8, 2.5, 3.3, 5.0, 12.0]))
     }
 
     #[test]
     fn patterns_cut_the_voltage_and_keep_the_number() {
-        assert_eq!(fits("LM1117{V}*", "LM1117-3.3"), Some(6));
-        assert_eq!(fits("LM1117{V}*", "lm1117mpx-33/NOPB"), Some(6));
-        assert_eq!(fits("LM1117", "LM1117 SOT223"), Some(6));
-        assert_eq!(fits("TLV702{V}*", "TLV70233_SOT23-5"), Some(6));
-        assert_eq!(fits("LM1117{V}", "LM11173"), Some(6));
+        assert_eq!(fits("LM1117*{V}*", "LM1117-3.3"), Some((6, Some(Code::Volts(3.3)))));
+        assert_eq!(fits("LM1117*{V}*", "lm1117mpx-33/NOPB"), Some((6, Some(Code::Volts(3.3)))));
+        assert_eq!(fits("LM1117*{V}*", "LM1117T-ADJ"), Some((6, Some(Code::Adjustable))));
+        assert_eq!(fits("LM1117", "LM1117 SOT223"), Some((6, None)));
+        assert_eq!(fits("TLV702{V}*", "TLV70233_SOT23-5"), Some((6, Some(Code::Volts(3.3)))));
         assert_eq!(fits("LM317*", "LM337T"), None);
-        assert_eq!(fits("78{V}", "7805"), Some(2));
+        assert_eq!(fits("78{V}*", "7805CT"), Some((2, Some(Code::Volts(5.0)))));
+        assert_eq!(fits("L78{V}*", "L78L05"), None);
+        assert_eq!(fits("L78{V}*", "L7812CV"), Some((3, Some(Code::Volts(12.0)))));
+        assert_eq!(fits("78{V}*", "78233"), None);
     }
 
     #[test]

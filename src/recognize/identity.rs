@@ -36,6 +36,15 @@ pub(super) struct Known {
     pub(super) value_names_part: bool,
 }
 
+/// What names are matched against.
+#[derive(Debug, Clone, Copy)]
+struct Sources<'a> {
+    matcher: &'a Matcher,
+    knowledge: &'a Knowledge,
+    /// What the fields say of the maker, lower case.
+    maker: &'a str,
+}
+
 /// Whether a text looks like a part number: letters, then digits, in one word.
 pub(super) fn names_part(text: &str) -> bool {
     let text = reduced(text);
@@ -73,6 +82,8 @@ pub(super) fn same_part(one: &str, other: &str) -> bool {
 
 /// Identifies a device. `declared` is the family that the board file names for it.
 pub(super) fn identify(device: &Device, declared: Option<&str>, knowledge: &Knowledge, matcher: &Matcher) -> Known {
+    let maker = maker(device);
+    let sources = Sources { matcher, knowledge, maker: &maker };
     let value = device.value.trim();
     let symbol = device.symbol();
     let symbol_agrees = value.is_empty() || same_part(value, symbol) || reduced(value) == reduced(symbol);
@@ -99,7 +110,7 @@ pub(super) fn identify(device: &Device, declared: Option<&str>, knowledge: &Know
         known.place = Place::Board;
         return known;
     }
-    if take(&mut known, value, "value", Place::Value, Grade::Drawn, matcher) {
+    if take(&mut known, value, "value", Place::Value, Grade::Drawn, sources) {
         note_disagreement(&mut known, symbol, matcher);
         return known;
     }
@@ -107,26 +118,65 @@ pub(super) fn identify(device: &Device, declared: Option<&str>, knowledge: &Know
         let name = field.name.trim();
         if NUMBER_FIELDS.iter().any(|each| each.eq_ignore_ascii_case(name)) && !field.value.trim().is_empty() {
             let told_by = format!("{name} field");
-            if take(&mut known, field.value.trim(), &told_by, Place::Number, Grade::Drawn, matcher) {
+            if take(&mut known, field.value.trim(), &told_by, Place::Number, Grade::Drawn, sources) {
                 return known;
             }
         }
     }
-    by_symbol(&mut known, value, symbol, matcher);
+    by_symbol(&mut known, value, symbol, sources);
     known
 }
 
 /// Takes the families that a text fits; `false` where it fits none.
-fn take(known: &mut Known, text: &str, told_by: &str, place: Place, grade: Grade, matcher: &Matcher) -> bool {
+fn take(known: &mut Known, text: &str, told_by: &str, place: Place, grade: Grade, sources: Sources<'_>) -> bool {
+    let Sources { matcher, knowledge, maker } = sources;
     let hits = matcher.hits(&reduced(text));
     let Some(best) = hits.first() else { return false };
-    known.identity.families = hits.iter().map(|hit| hit.family).collect();
+    known.identity.families = families(&hits, maker, knowledge);
+    let Some(first) = known.identity.families.first().copied() else { return false };
     text.clone_into(&mut known.identity.name);
     told_by.clone_into(&mut known.identity.told_by);
     known.identity.grade = grade;
-    known.hit = Some(*best);
+    known.hit = Some(hits.iter().find(|hit| hit.family == first).copied().unwrap_or(*best));
     known.place = place;
     true
+}
+
+/// The families that are meant, best first. Makers sell versions of their own under a common name: such a version is
+/// taken only where a field names its maker, and then before the others.
+fn families(hits: &[Hit], maker: &str, knowledge: &Knowledge) -> Vec<usize> {
+    let of_maker = |index: usize| {
+        let words = knowledge.families.get(index).map_or(&[][..], |family| family.maker_words.as_slice());
+        !maker.is_empty() && words.iter().any(|word| maker.contains(word.as_str()))
+    };
+    let is_version = |index: usize| knowledge.families.get(index).is_some_and(|family| family.version_of.is_some());
+    let Some(best) = hits.first() else { return Vec::new() };
+    let same_group = |hit: &&Hit| {
+        let group = |index: usize| knowledge.families.get(index).map(|family| (&family.group, family.kind));
+        hit.family == best.family || group(hit.family) == group(best.family) || hit.literal == best.literal
+    };
+    let mut found: Vec<usize> = hits.iter().filter(same_group).map(|hit| hit.family).collect();
+    let named: Vec<&str> =
+        found.iter().filter_map(|index| knowledge.families.get(*index)).map(|family| family.name.as_str()).collect();
+    let versions: Vec<usize> = (0..knowledge.families.len())
+        .filter(|index| {
+            let parent = knowledge.families.get(*index).and_then(|family| family.version_of.as_deref());
+            parent.is_some_and(|parent| named.contains(&parent))
+        })
+        .filter(|index| !found.contains(index))
+        .collect();
+    found.extend(versions);
+    found.retain(|index| !is_version(*index) || of_maker(*index));
+    // A stable sort keeps the most telling pattern first among the rest.
+    found.sort_by_key(|index| !of_maker(*index));
+    found
+}
+
+/// What the fields say of the maker, lower case.
+fn maker(device: &Device) -> String {
+    const FIELDS: &[&str] = &["MANUFACTURER", "MFR", "MFG", "MAKER", "MANUFACTURER_NAME", "MANUFACTURER NAME", "VENDOR", "MF"];
+    let named = |name: &&str| device.field(name);
+    FIELDS.iter().find_map(|name| named(name)).unwrap_or("").to_lowercase()
 }
 
 /// The value names one part and the symbol another: worth a remark, and the value wins.
@@ -141,18 +191,19 @@ fn note_disagreement(known: &mut Known, symbol: &str, matcher: &Matcher) {
 }
 
 /// No text but perhaps the symbol's names a known part.
-fn by_symbol(known: &mut Known, value: &str, symbol: &str, matcher: &Matcher) {
+fn by_symbol(known: &mut Known, value: &str, symbol: &str, sources: Sources<'_>) {
+    let matcher = sources.matcher;
     // A value one repeated digit short of a known number is that part, misspelt.
     let misspelt = if known.value_names_part { matcher.misspelt(&reduced(value)) } else { Vec::new() };
     if let Some(best) = misspelt.first() {
-        known.identity.families = misspelt.iter().map(|hit| hit.family).collect();
+        known.identity.families = families(&misspelt, sources.maker, sources.knowledge);
         known.identity.grade = Grade::Inferred;
         known.identity.remarks.push(format!("the value {value} is taken for a misspelling"));
-        known.hit = Some(Hit { base: 0, ..*best });
+        known.hit = Some(*best);
         return;
     }
     if known.symbol_agrees {
-        take(known, symbol, "symbol", Place::Symbol, Grade::Described, matcher);
+        take(known, symbol, "symbol", Place::Symbol, Grade::Described, sources);
         // The value may carry the voltage code that the symbol lacks.
         return;
     }
@@ -163,7 +214,7 @@ fn by_symbol(known: &mut Known, value: &str, symbol: &str, matcher: &Matcher) {
         }
         return;
     }
-    if take(known, symbol, "symbol", Place::Symbol, Grade::Inferred, matcher) && !value.is_empty() {
+    if take(known, symbol, "symbol", Place::Symbol, Grade::Inferred, sources) && !value.is_empty() {
         known.identity.remarks.push(format!("known only by its symbol {symbol}; the value is {value}"));
     }
 }

@@ -1,9 +1,30 @@
 //! Finds regulators and references, their dividers, feeds and capacitor banks.
+//!
+//! A device goes through these steps, each in a file of its own: its texts are matched against the families
+//! (`identity`, `family_match`), its pins are read by name (`pin_name`), its text by sense (`words`), then it is decided
+//! what it is (`kind`), which voltage it is made for (`nominal`, `voltage_code`), what each pin does (`roles`), how many
+//! outputs it has (`outputs`), and what is wired around it (`divider`, `feed`, `bank`). Rules are general: names of
+//! parts stand in family files, never here.
 
+mod bank;
+mod divider;
+mod family_match;
+mod feed;
+mod find;
+mod identity;
+mod kind;
 mod model;
+mod nominal;
+mod order;
+mod outputs;
 mod pin_name;
+mod roles;
 mod voltage_code;
+mod walk;
+mod words;
 
+pub use bank::{Side, bank, bank_to};
+pub use find::{Overrides, recognize};
 pub use model::{
     Bank, Branch, Design, Divider, EnablePin, Feed, Identity, Mode, Nominal, NotJudged, Regulator, RegulatorId,
     RegulatorKind, Roles,

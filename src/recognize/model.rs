@@ -118,6 +118,8 @@ pub struct Divider {
 pub struct Feed {
     /// Resistors in series from the supply to the cathode (anode for a negative one).
     pub resistors: Vec<DeviceId>,
+    /// Further branches from the same supply, each in series order.
+    pub parallel: Vec<Vec<DeviceId>>,
     /// The supply they come from.
     pub from: NetId,
 }

@@ -2,7 +2,9 @@
 
 #![allow(clippy::unwrap_used, clippy::indexing_slicing, reason = "a test that meets what it does not expect fails")]
 
+mod archive;
 mod netlist_corpus;
 mod netlist_hostile;
+mod recognition_symbols;
 mod reference_tokens;
 mod shared;

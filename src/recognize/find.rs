@@ -1,0 +1,319 @@
+//! Finding the regulators and references of a board.
+
+use std::collections::BTreeSet;
+
+use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId, supply_name};
+use crate::knowledge::{Family, Knowledge, RoleName, Sign};
+use crate::quantity::Grade;
+
+use super::divider::{self, Ends};
+use super::family_match::Matcher;
+use super::feed;
+use super::identity::{self, Known};
+use super::kind::{Candidate, worth_looking};
+use super::model::{Design, Divider, Mode, Nominal, NotJudged, Regulator, RegulatorKind, Roles};
+use super::nominal::{self, Told};
+use super::order::natural;
+use super::outputs::{Rail, rails, roles_of};
+use super::pin_name::{self, PinName, Word};
+use super::roles::{self, Hints};
+use super::words;
+
+/// What the board file says about single parts.
+pub trait Overrides {
+    /// The name of the family that a part is declared to be of.
+    fn family(&self, reference: &str) -> Option<&str>;
+    /// Whether a part is to be left out.
+    fn ignored(&self, reference: &str) -> bool;
+    /// The output voltage that is declared for a net, in volts.
+    fn output_voltage(&self, net: &str) -> Option<f64>;
+}
+
+/// Nothing is declared.
+impl Overrides for () {
+    fn family(&self, _: &str) -> Option<&str> {
+        None
+    }
+
+    fn ignored(&self, _: &str) -> bool {
+        false
+    }
+
+    fn output_voltage(&self, _: &str) -> Option<f64> {
+        None
+    }
+}
+
+/// Finds every packaged regulator and reference of a board, with its pins, nets, divider and feed.
+#[must_use]
+pub fn recognize(circuit: Circuit, overrides: &dyn Overrides, knowledge: &Knowledge) -> Design {
+    let matcher = Matcher::new(&knowledge.families);
+    let mut regulators = Vec::new();
+    let mut not_judged = Vec::new();
+    for id in circuit.devices() {
+        let device = circuit.device(id);
+        if !device.is_fitted() || !worth_looking(device.kind) || device.pins.len() < 2 {
+            continue;
+        }
+        if overrides.ignored(&device.reference) {
+            not_judged.push(NotJudged { device: id, reason: "ignored by the board file".to_owned() });
+            continue;
+        }
+        let finder = Finder { circuit: &circuit, id, device, overrides, knowledge };
+        finder.find(&matcher, &mut regulators, &mut not_judged);
+    }
+    let order = |id: DeviceId| natural(&circuit.device(id).reference);
+    regulators.sort_by_cached_key(|regulator: &Regulator| (order(regulator.device), regulator.output_index));
+    not_judged.sort_by_cached_key(|each| order(each.device));
+    Design { regulators, not_judged, circuit }
+}
+
+struct Finder<'a> {
+    circuit: &'a Circuit,
+    id: DeviceId,
+    device: &'a Device,
+    overrides: &'a dyn Overrides,
+    knowledge: &'a Knowledge,
+}
+
+/// What is common to all outputs of a part.
+struct Part<'a> {
+    kind: RegulatorKind,
+    names: &'a [PinName],
+    roles: &'a [RoleName],
+    told: &'a Told,
+    known: &'a Known,
+    family: Option<&'a Family>,
+    sign: Option<Sign>,
+    text_fixed: bool,
+}
+
+impl Finder<'_> {
+    fn find(&self, matcher: &Matcher, regulators: &mut Vec<Regulator>, not_judged: &mut Vec<NotJudged>) {
+        let device = self.device;
+        let mut known = identity::identify(device, self.overrides.family(&device.reference), self.knowledge, matcher);
+        // Most parts of a board have neither a known name nor pins of interest; their text need not be read.
+        let names: Vec<PinName> = device.pins.iter().map(|pin| pin_name::read(&pin.name, &pin.number)).collect();
+        if known.identity.families.is_empty() && !of_interest(&names) {
+            return;
+        }
+        let text = words::read(&device.description, &device.keywords, &device.library);
+        let candidate = Candidate { circuit: self.circuit, id: self.id, names, text, known: known.clone() };
+        let Some(kind) = candidate.kind(self.knowledge) else { return };
+        let family = known.identity.families.first().and_then(|index| self.knowledge.families.get(*index));
+        let told = nominal::read(device, &known, &candidate.text, self.knowledge);
+        known.identity.remarks.extend(told.remark.clone());
+        let hints = Hints {
+            kind,
+            fixed: !told.volts.is_empty() && !told.adjustable || candidate.text.fixed && !told.adjustable,
+            adjustable: told.adjustable,
+            family,
+            nominal: told.volts.first().map(|nominal| nominal.volts),
+        };
+        let roles = roles::assign(self.circuit, self.id, &candidate.names, hints);
+        let sign = nominal::sign(device, &known, &candidate.text, family);
+        let part = Part {
+            kind,
+            names: &candidate.names,
+            roles: &roles,
+            told: &told,
+            known: &known,
+            family,
+            sign,
+            text_fixed: candidate.text.fixed,
+        };
+        if kind == RegulatorKind::Shunt {
+            self.shunt(&part, regulators, not_judged);
+        } else {
+            self.series(&part, regulators, not_judged);
+        }
+    }
+
+    fn nets(&self, pins: &[usize]) -> Vec<NetId> {
+        let mut nets: Vec<NetId> = Vec::new();
+        for net in pins.iter().filter_map(|index| self.device.pins.get(*index)?.net) {
+            if !nets.contains(&net) {
+                nets.push(net);
+            }
+        }
+        nets
+    }
+
+    fn series(&self, part: &Part<'_>, regulators: &mut Vec<Regulator>, not_judged: &mut Vec<NotJudged>) {
+        let mut found = rails(self.device, part.names, part.roles, RoleName::Output);
+        if found.is_empty() && part.kind == RegulatorKind::Switching {
+            found.push(Rail { pins: Vec::new(), label: None, net: None });
+        }
+        if part.kind == RegulatorKind::Switching {
+            not_judged.push(NotJudged { device: self.id, reason: "switching converter".to_owned() });
+        }
+        for (index, rail) in found.iter().enumerate() {
+            let roles = roles_of(rail, &found, part.names, part.roles, RoleName::Output);
+            if part.kind != RegulatorKind::Switching && roles.input.is_empty() && roles.adjust.is_empty() {
+                continue;
+            }
+            regulators.push(self.series_output(part, index, found.len(), rail, roles));
+        }
+    }
+
+    fn series_output(&self, part: &Part<'_>, index: usize, count: usize, rail: &Rail, roles: Roles) -> Regulator {
+        let grounds = self.nets(&roles.ground);
+        let mut output_net = rail.net;
+        let divider = self.divider(&roles, output_net, &grounds);
+        if output_net.is_none() && part.kind == RegulatorKind::Switching {
+            output_net = divider.as_ref().and_then(|divider| divider.senses).or_else(|| self.beyond_inductor(part));
+        }
+        let mode = self.mode(part, &roles, divider.as_ref());
+        let sign = self.sign(part, rail, count, output_net);
+        let nominal = if mode == Mode::Fixed { self.nominal(part, index, count, sign, output_net) } else { None };
+        let ground_net = pick_ground(self.circuit, &grounds)
+            .or_else(|| divider.as_ref().filter(|_| roles.ground.is_empty()).and_then(|divider| divider.returns));
+        Regulator {
+            device: self.id,
+            output_index: index,
+            identity: part.known.identity.clone(),
+            kind: part.kind,
+            polarity: sign,
+            mode,
+            pass: part.family.and_then(|family| family.pass.as_ref()).map(|pass| pass.value),
+            nominal,
+            input_net: self.nets(&roles.input).first().copied(),
+            output_net,
+            ground_net,
+            divider: divider.filter(|_| mode == Mode::Adjustable),
+            feed: None,
+            roles,
+        }
+    }
+
+    fn divider(&self, roles: &Roles, output: Option<NetId>, grounds: &[NetId]) -> Option<Divider> {
+        let adjust = self.nets(&roles.adjust).first().copied()?;
+        let ends = Ends { output, grounds, has_ground: !roles.ground.is_empty() };
+        Some(divider::read(self.circuit, adjust, ends))
+    }
+
+    /// Fixed or adjustable. A part whose voltage is told is adjustable only where resistors set it: dual-mode parts have
+    /// their set pin on ground, on the output or on an internal tap to be fixed.
+    fn mode(&self, part: &Part<'_>, roles: &Roles, divider: Option<&Divider>) -> Mode {
+        let Some(divider) = divider else {
+            return if roles.adjust.is_empty() || !part.told.volts.is_empty() { Mode::Fixed } else { Mode::Adjustable };
+        };
+        if divider::has_resistors(divider) {
+            return Mode::Adjustable;
+        }
+        let told = !part.told.volts.is_empty() || part.text_fixed && !part.told.adjustable;
+        if told { Mode::Fixed } else { Mode::Adjustable }
+    }
+
+    fn sign(&self, part: &Part<'_>, rail: &Rail, count: usize, output: Option<NetId>) -> Sign {
+        // A part with a positive and a negative output names them so.
+        if count > 1 && part.names.iter().any(|name| name.label == Some('N')) {
+            return if rail.label == Some('N') { Sign::Negative } else { Sign::Positive };
+        }
+        part.sign.unwrap_or_else(|| {
+            let named = output.and_then(|net| supply_name(&self.circuit.net(net).name)).map(|name| name.volts);
+            if named.is_some_and(|volts| volts < 0.0) { Sign::Negative } else { Sign::Positive }
+        })
+    }
+
+    /// The nominal voltage of a fixed output: declared, told by the part, or last by the net's name.
+    fn nominal(&self, part: &Part<'_>, index: usize, count: usize, sign: Sign, output: Option<NetId>) -> Option<Nominal> {
+        let signed = |volts: f64| if sign == Sign::Negative { -volts.abs() } else { volts.abs() };
+        let told = if part.told.volts.len() == count.max(1) {
+            part.told.volts.get(index)
+        } else {
+            part.told.volts.first().filter(|_| count <= 1 || part.told.volts.len() == 1)
+        };
+        if let Some(told) = told {
+            return Some(Nominal { volts: signed(told.volts), ..told.clone() });
+        }
+        let name = &self.circuit.net(output?).name;
+        if let Some(volts) = self.overrides.output_voltage(name) {
+            return Some(Nominal { volts, grade: Grade::Declared, source: format!("declared for {name}") });
+        }
+        let named = supply_name(name)?;
+        Some(Nominal { volts: named.volts, grade: Grade::Inferred, source: format!("net name {name}") })
+    }
+
+    /// The rail of a switching part without an output pin: the net beyond the inductor on its switch node.
+    fn beyond_inductor(&self, part: &Part<'_>) -> Option<NetId> {
+        let switch = part.names.iter().zip(&self.device.pins).filter(|(name, _)| name.is(Word::Switching));
+        let nets: BTreeSet<NetId> = switch.filter_map(|(_, pin)| pin.net).collect();
+        let inputs: Vec<NetId> = self.nets(&pins_of(part.roles, RoleName::Input));
+        nets.iter().find_map(|net| {
+            let inductor = |device: &DeviceId| self.circuit.device(*device).kind == DeviceKind::Inductor;
+            self.circuit
+                .neighbours(*net)
+                .find(|(device, other)| inductor(device) && !inputs.contains(other) && !nets.contains(other))
+                .map(|(_, other)| other)
+        })
+    }
+
+    fn shunt(&self, part: &Part<'_>, regulators: &mut Vec<Regulator>, not_judged: &mut Vec<NotJudged>) {
+        let cathodes = pins_of(part.roles, RoleName::Cathode);
+        let anodes = pins_of(part.roles, RoleName::Anode);
+        let (cathode, anode) = (self.nets(&cathodes).first().copied(), self.nets(&anodes).first().copied());
+        // With the cathode on ground and the anode not, it holds a negative rail.
+        let grounded = |net: Option<NetId>| net.is_some_and(|net| self.circuit.net(net).ground);
+        let negative = grounded(cathode) && !grounded(anode);
+        let output = if negative { RoleName::Anode } else { RoleName::Cathode };
+        let (output_net, ground_net) = if negative { (anode, cathode) } else { (cathode, anode) };
+        let rail = Rail { pins: if negative { anodes } else { cathodes }, label: None, net: output_net };
+        let roles = roles_of(&rail, &[], part.names, part.roles, output);
+        let grounds: Vec<NetId> = ground_net.into_iter().collect();
+        let divider = self.divider(&roles, output_net, &grounds);
+        if let Some(reason) = self.comparator(divider.as_ref(), output_net) {
+            not_judged.push(NotJudged { device: self.id, reason });
+            return;
+        }
+        let mode = self.mode(part, &roles, divider.as_ref());
+        let sign = if negative { Sign::Negative } else { Sign::Positive };
+        let mut apart = grounds;
+        apart.extend(self.nets(&roles.adjust));
+        let feed = output_net.and_then(|net| feed::read(self.circuit, net, &apart));
+        let nominal = if mode == Mode::Fixed { self.nominal(part, 0, 1, sign, output_net) } else { None };
+        regulators.push(Regulator {
+            device: self.id,
+            output_index: 0,
+            identity: part.known.identity.clone(),
+            kind: RegulatorKind::Shunt,
+            polarity: sign,
+            mode,
+            pass: None,
+            nominal,
+            input_net: feed.as_ref().map(|feed| feed.from),
+            output_net,
+            ground_net,
+            divider: divider.filter(|_| mode == Mode::Adjustable),
+            feed,
+            roles,
+        });
+    }
+
+    /// A programmable shunt whose divider senses another net than the one it holds is a comparator or an error
+    /// amplifier; it regulates something that is not seen here.
+    fn comparator(&self, divider: Option<&Divider>, held: Option<NetId>) -> Option<String> {
+        let senses = divider?.senses?;
+        if Some(senses) == held {
+            return None;
+        }
+        let name = &self.circuit.net(senses).name;
+        Some(format!("used as a comparator or error amplifier: its divider senses {name}"))
+    }
+}
+
+fn pins_of(roles: &[RoleName], role: RoleName) -> Vec<usize> {
+    roles.iter().enumerate().filter(|(_, each)| **each == role).map(|(index, _)| index).collect()
+}
+
+/// Of several grounded nets the one that is a ground by name.
+fn pick_ground(circuit: &Circuit, nets: &[NetId]) -> Option<NetId> {
+    nets.iter().find(|net| circuit.net(**net).ground).or(nets.first()).copied()
+}
+
+/// Whether any pin name is that of a regulator; a cheap test before text is read. Parts without pin names pass.
+fn of_interest(names: &[PinName]) -> bool {
+    let output = |name: &PinName| name.is(Word::Output) || name.is(Word::ReferenceOutput) || name.is(Word::Cathode);
+    let other = |name: &PinName| name.is(Word::Plus) || name.is(Word::Unnamed) || name.is(Word::Switching) || name.is(Word::Adjust);
+    names.iter().any(output) || names.iter().any(other)
+}

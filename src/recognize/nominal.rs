@@ -1,0 +1,164 @@
+//! The nominal output voltage of a part, from its texts.
+
+use crate::circuit::Device;
+use crate::knowledge::{Family, Knowledge, Sign};
+use crate::quantity::Grade;
+
+use super::family_match::{Code, reduced};
+use super::identity::{Known, Place, names_part};
+use super::model::Nominal;
+use super::voltage_code::{Arbiters, Chosen, Plainness, Reading, choose, read_name};
+use super::words::TextSigns;
+
+/// What the texts say of a part's output voltages, signs not applied.
+#[derive(Debug, Clone, Default, PartialEq)]
+pub(super) struct Told {
+    /// For each output in order; one entry where all are meant or only one is told.
+    pub(super) volts: Vec<Nominal>,
+    /// The name or text says that the part is adjustable.
+    pub(super) adjustable: bool,
+    /// Worth a remark: name and description contradict each other.
+    pub(super) remark: Option<String>,
+}
+
+/// The texts that may carry a voltage code, in order of trust, with where each stands and how far it is trusted.
+fn texts<'a>(device: &'a Device, known: &'a Known) -> Vec<(&'a str, &'static str, Grade)> {
+    let value = device.value.trim();
+    let mut texts = Vec::new();
+    if !value.is_empty() {
+        texts.push((value, "value", Grade::Drawn));
+    }
+    if known.place == Place::Number {
+        texts.push((known.identity.name.as_str(), "part number", Grade::Drawn));
+    }
+    // Another part number in the value means that the symbol's name is not that of the part.
+    if known.symbol_agrees {
+        texts.push((device.symbol(), "symbol", Grade::Described));
+    } else if !known.value_names_part {
+        texts.push((device.symbol(), "symbol", Grade::Inferred));
+    }
+    texts
+}
+
+/// Whether a name says that the part is adjustable.
+fn says_adjustable(name: &str) -> bool {
+    let name = reduced(name);
+    name.match_indices("ADJ").next().is_some() || name.split(['-', ' ']).skip(1).any(|part| part == "A" || part == "AD")
+}
+
+/// Reads what the texts say. `negative` is what is known of the sign.
+pub(super) fn read(device: &Device, known: &Known, text: &TextSigns, knowledge: &Knowledge) -> Told {
+    let family = known.identity.families.first().and_then(|index| knowledge.families.get(*index));
+    let mut told = Told::default();
+    // A description speaks of the symbol's part; under another part's number it says nothing.
+    let described = known.symbol_agrees || !known.value_names_part;
+    let stated: &[_] = if described { &text.volts } else { &[] };
+    for (name, place, grade) in texts(device, known) {
+        if told.volts.is_empty() && says_adjustable(name) {
+            told.adjustable = true;
+            return told;
+        }
+        let code = known.hit.filter(|_| name == known.identity.name).and_then(|hit| hit.code);
+        if code == Some(Code::Adjustable) {
+            told.adjustable = true;
+            return told;
+        }
+        let Some(chosen) = chosen(name, known, family, code, stated) else { continue };
+        let grade = if chosen.sure { grade } else { grade.weaker(Grade::Inferred) };
+        told.volts = vec![Nominal { volts: chosen.volts, grade, source: format!("{place} {name}") }];
+        if chosen.contradicted && described {
+            told.remark = Some(format!("{name} is taken for {} V, its description says otherwise", chosen.volts));
+        }
+        break;
+    }
+    let several = stated.len() >= 2 && text.volts.len() == 2;
+    if described && (told.volts.is_empty() || several && family.is_none()) {
+        from_description(&mut told, device, known, text);
+    }
+    if told.volts.is_empty()
+        && let Some(family) = family
+        && let [only] = family.voltages.as_slice()
+        && family.adjust.is_none()
+    {
+        let source = format!("the only voltage of {}", family.name);
+        told.volts = vec![Nominal { volts: *only, grade: known.identity.grade.weaker(Grade::Published), source }];
+    }
+    told.adjustable |= told.volts.is_empty() && text.adjustable && described;
+    told
+}
+
+fn chosen(
+    name: &str,
+    known: &Known,
+    family: Option<&Family>,
+    code: Option<Code>,
+    stated: &[super::voltage_code::Stated],
+) -> Option<Chosen> {
+    let made_for = family.map_or(&[][..], |family| family.voltages.as_slice());
+    let own_name = name == known.identity.name;
+    if let (Some(Code::Volts(volts)), Some(family)) = (code, family) {
+        // Only where one code spells two voltages of the family the description may decide.
+        let other = made_for.iter().find(|other| {
+            let ratio = **other / volts;
+            ((ratio - 10.0).abs() < 1e-6 || (ratio - 0.1).abs() < 1e-6) && family.codes.is_empty()
+        });
+        let says = |volts: f64| stated.iter().any(|each| (each.volts - volts).abs() < 1e-6);
+        let volts = other.copied().filter(|other| says(*other) && !says(volts) && !name.contains('.')).unwrap_or(volts);
+        let contradicted = !stated.is_empty() && !stated.iter().any(|each| (each.volts / volts - 1.0).abs() < 0.05);
+        return Some(Chosen { volts, sure: true, contradicted });
+    }
+    let base = known.hit.filter(|_| own_name).map_or(0, |hit| hit.base);
+    let mut readings: Vec<Reading> = read_name(&reduced(name), base);
+    if !names_part(name) {
+        // In free text digits are anything; only a spelled voltage is one.
+        readings.retain(|reading| reading.plainness == Plainness::Spelled);
+    }
+    choose(&readings, Arbiters { made_for, stated })
+}
+
+/// The description's own voltages, where the name says nothing: one, or one for each output.
+fn from_description(told: &mut Told, device: &Device, known: &Known, text: &TextSigns) {
+    let grade = if known.symbol_agrees { Grade::Described } else { Grade::Inferred };
+    let mut stated = text.volts.clone();
+    if stated.len() > 2 && stated.iter().any(|each| each.output) {
+        stated.retain(|each| each.output);
+    }
+    let mut same = stated.clone();
+    same.dedup_by(|one, other| (one.volts - other.volts).abs() < 1e-9);
+    let chosen = match (stated.len(), same.as_slice()) {
+        (_, [only]) if stated.len() != 2 => vec![*only],
+        (2, _) => stated,
+        _ => same.iter().filter(|each| each.output).take(1).copied().collect(),
+    };
+    if chosen.is_empty() {
+        return;
+    }
+    let source = format!("description of symbol {}", device.symbol());
+    told.volts = chosen.into_iter().map(|each| Nominal { volts: each.volts, grade, source: source.clone() }).collect();
+}
+
+/// Whether names or text say that the output is negative. `None` where nothing is said.
+pub(super) fn sign(device: &Device, known: &Known, text: &TextSigns, family: Option<&Family>) -> Option<Sign> {
+    if let Some(family) = family {
+        return Some(family.polarity);
+    }
+    // The 79 series is negative by number: `L79L05`, `MC7912`, `79M08`.
+    let name = reduced(&known.identity.name);
+    let number = name.trim_start_matches(|each: char| each.is_ascii_alphabetic());
+    let letters = name.len() - number.len();
+    let behind = number.strip_prefix("79").map(|rest| rest.trim_start_matches(|each: char| each.is_ascii_alphabetic()));
+    let code = behind.map(|rest| rest.chars().take_while(char::is_ascii_digit).collect::<String>());
+    if letters <= 3 && code.as_deref().is_some_and(|code| code.len() == 2 && code.parse::<u8>().is_ok_and(|code| code >= 5)) {
+        return Some(Sign::Negative);
+    }
+    let described = known.symbol_agrees || !known.value_names_part || !names_part(device.symbol());
+    if !described {
+        return None;
+    }
+    match (text.negative, text.positive) {
+        (true, false) => Some(Sign::Negative),
+        (false, true) => Some(Sign::Positive),
+        _ if text.volts.iter().any(|each| each.negative && each.output) => Some(Sign::Negative),
+        _ => None,
+    }
+}

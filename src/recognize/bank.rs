@@ -89,10 +89,8 @@ impl Search<'_> {
                 DeviceKind::Ferrite | DeviceKind::Inductor | DeviceKind::Fuse | DeviceKind::NetTie => {
                     self.go_on(device, net, through, behind_diode, queue);
                 }
-                DeviceKind::Diode | DeviceKind::Schottky if self.side == Side::Input => {
-                    if self.feeds(device, net) {
-                        self.go_on(device, net, through, true, queue);
-                    }
+                DeviceKind::Diode | DeviceKind::Schottky if self.side == Side::Input && self.feeds(device, net) => {
+                    self.go_on(device, net, through, true, queue);
                 }
                 DeviceKind::Connector if !behind_diode => self.bank.leaves_board = true,
                 _ => {}
@@ -129,7 +127,14 @@ impl Search<'_> {
         }
     }
 
-    fn resistor(&mut self, device: DeviceId, net: NetId, through: &[DeviceId], behind: bool, queue: &mut VecDeque<Step>) {
+    fn resistor(
+        &mut self,
+        device: DeviceId,
+        net: NetId,
+        through: &[DeviceId],
+        behind: bool,
+        queue: &mut VecDeque<Step>,
+    ) {
         let Some(ohms) = self.ohms(device) else { return };
         let Some(other) = self.circuit.other_end(device, net) else { return };
         if ohms <= SERIES_OHMS
@@ -143,7 +148,14 @@ impl Search<'_> {
         }
     }
 
-    fn go_on(&mut self, device: DeviceId, net: NetId, through: &[DeviceId], behind: bool, queue: &mut VecDeque<Step>) {
+    fn go_on(
+        &mut self,
+        device: DeviceId,
+        net: NetId,
+        through: &[DeviceId],
+        behind: bool,
+        queue: &mut VecDeque<Step>,
+    ) {
         let Some(other) = self.circuit.other_end(device, net) else { return };
         let open = through.len() < DEEPEST && self.seen.len() < MOST_NETS && !self.is_return(other);
         if open && self.seen.insert(other) {
@@ -168,9 +180,11 @@ impl Search<'_> {
 
     /// The only other part on a net, where it is of this kind.
     fn partner(&self, net: NetId, than: DeviceId, kind: DeviceKind) -> Option<DeviceId> {
-        let mut others = self.circuit.devices_on(net).take(8).filter(|device| {
-            *device != than && self.circuit.device(*device).is_fitted()
-        });
+        let mut others = self
+            .circuit
+            .devices_on(net)
+            .take(8)
+            .filter(|device| *device != than && self.circuit.device(*device).is_fitted());
         let partner = others.next().filter(|device| self.circuit.device(*device).kind == kind)?;
         others.next().is_none().then_some(partner)
     }
@@ -200,10 +214,15 @@ impl Search<'_> {
     fn feeds(&self, diode: DeviceId, net: NetId) -> bool {
         let device = self.circuit.device(diode);
         let on_net = |names: &[&str]| {
-            device.pins.iter().any(|pin| pin.net == Some(net) && names.iter().any(|name| pin.name.eq_ignore_ascii_case(name)))
+            device
+                .pins
+                .iter()
+                .any(|pin| pin.net == Some(net) && names.iter().any(|name| pin.name.eq_ignore_ascii_case(name)))
         };
-        let named = device.pins.iter().any(|pin| ["K", "A", "C"].iter().any(|name| pin.name.eq_ignore_ascii_case(name)));
-        let negative = crate::circuit::supply_name(&self.circuit.net(self.start).name).is_some_and(|name| name.volts < 0.0);
+        let named =
+            device.pins.iter().any(|pin| ["K", "A", "C"].iter().any(|name| pin.name.eq_ignore_ascii_case(name)));
+        let negative =
+            crate::circuit::supply_name(&self.circuit.net(self.start).name).is_some_and(|name| name.volts < 0.0);
         match (named, negative) {
             // Symbols without pin names number the cathode first.
             (false, false) => device.pins.first().is_some_and(|pin| pin.net == Some(net)),

@@ -113,7 +113,9 @@ fn spellings(volts: f64) -> Vec<String> {
     let mut found = vec![format!("{volts}"), format!("{volts:.1}"), format!("{volts:.2}"), format!("{volts:.3}")];
     found.extend([format!("{volts:.1}"), format!("{volts:.2}")].map(|text| text.replace('.', "V")));
     found.extend([format!("{volts:.1}"), format!("{volts:.2}")].map(|text| text.replace('.', "P")));
-    found.extend([format!("{volts:.1}"), format!("{volts:.2}"), format!("{volts:.3}")].map(|text| text.replace('.', "")));
+    found.extend(
+        [format!("{volts:.1}"), format!("{volts:.2}"), format!("{volts:.3}")].map(|text| text.replace('.', "")),
+    );
     found.extend([format!("{volts:.1}"), format!("{volts:.2}")].map(|text| text.replace('.', "-")));
     let tenths = (volts * 10.0).round();
     // Microchip's four digits: tenths and the tolerance class.
@@ -146,9 +148,10 @@ fn codes_of(family: &Family) -> Vec<(String, Code)> {
 impl Matcher {
     /// Prepares the patterns of all families.
     pub(super) fn new(families: &[Family]) -> Self {
-        let patterns = families.iter().enumerate().flat_map(|(index, family)| {
-            family.names.iter().map(move |name| compile(index, name))
-        });
+        let patterns = families
+            .iter()
+            .enumerate()
+            .flat_map(|(index, family)| family.names.iter().map(move |name| compile(index, name)));
         Self { patterns: patterns.collect(), codes: families.iter().map(codes_of).collect() }
     }
 
@@ -182,7 +185,8 @@ impl Matcher {
         let mut found: Vec<Hit> = Vec::new();
         for pattern in &self.patterns {
             let goes_on = |rest: &str| rest.starts_with(|each: char| each.is_ascii_digit());
-            let fits = pattern.squeezed.len() >= 5 && name.strip_prefix(&pattern.squeezed).is_some_and(|rest| !goes_on(rest));
+            let fits = pattern.squeezed.len() >= 5
+                && name.strip_prefix(&pattern.squeezed).is_some_and(|rest| !goes_on(rest));
             if fits && !found.iter().any(|hit| hit.family == pattern.family) {
                 found.push(Hit { family: pattern.family, literal: pattern.literal, base: 0, code: None });
             }
@@ -230,7 +234,9 @@ fn walk(pattern: &Pattern, name: &[char], codes: &[(String, Code)]) -> Option<(u
         }
     }
     // What follows the name behind a separator (`/NOPB`, a package, a remark) is no part of it.
-    let ends = |at: usize| name.get(at).is_none_or(|each| is_separator(*each) || matches!(each, '(' | ';' | '+' | '#' | '@'));
+    let ends = |at: usize| {
+        name.get(at).is_none_or(|each| is_separator(*each) || matches!(each, '(' | ';' | '+' | '#' | '@'))
+    };
     let (_, code) = reached.into_iter().find(|(at, _)| ends(*at))?;
     let bytes = name.iter().take(base).map(|each| each.len_utf8()).sum();
     Some((bytes, code))
@@ -274,8 +280,10 @@ mod tests {
     use super::*;
 
     fn codes(voltages: &[f64]) -> Vec<(String, Code)> {
-        let mut codes: Vec<(String, Code)> =
-            voltages.iter().flat_map(|volts| spellings(*volts).into_iter().map(|text| (text, Code::Volts(*volts)))).collect();
+        let mut codes: Vec<(String, Code)> = voltages
+            .iter()
+            .flat_map(|volts| spellings(*volts).into_iter().map(|text| (text, Code::Volts(*volts))))
+            .collect();
         codes.push(("ADJ".to_owned(), Code::Adjustable));
         codes.sort_by(|one, other| other.0.len().cmp(&one.0.len()).then(one.0.cmp(&other.0)));
         codes

@@ -105,10 +105,10 @@ impl Finder<'_> {
         known.identity.remarks.extend(told.remark.clone());
         let hints = Hints {
             kind,
-            fixed: !told.volts.is_empty() && !told.adjustable || candidate.text.fixed && !told.adjustable,
+            fixed: !told.adjustable && (told.volts.is_some() || candidate.text.fixed),
             adjustable: told.adjustable,
             family,
-            nominal: told.volts.first().map(|nominal| nominal.volts),
+            nominal: told.volts.as_ref().map(|nominal| nominal.volts),
         };
         let roles = roles::assign(self.circuit, self.id, &candidate.names, hints);
         let sign = nominal::sign(device, &known, &candidate.text, family);
@@ -196,12 +196,12 @@ impl Finder<'_> {
     /// their set pin on ground, on the output or on an internal tap to be fixed.
     fn mode(&self, part: &Part<'_>, roles: &Roles, divider: Option<&Divider>) -> Mode {
         let Some(divider) = divider else {
-            return if roles.adjust.is_empty() || !part.told.volts.is_empty() { Mode::Fixed } else { Mode::Adjustable };
+            return if roles.adjust.is_empty() || part.told.volts.is_some() { Mode::Fixed } else { Mode::Adjustable };
         };
         if divider::has_resistors(divider) {
             return Mode::Adjustable;
         }
-        let told = !part.told.volts.is_empty() || part.text_fixed && !part.told.adjustable;
+        let told = part.told.volts.is_some() || part.text_fixed && !part.told.adjustable;
         if told { Mode::Fixed } else { Mode::Adjustable }
     }
 
@@ -217,13 +217,17 @@ impl Finder<'_> {
     }
 
     /// The nominal voltage of a fixed output: declared, told by the part, or last by the net's name.
-    fn nominal(&self, part: &Part<'_>, index: usize, count: usize, sign: Sign, output: Option<NetId>) -> Option<Nominal> {
+    fn nominal(
+        &self,
+        part: &Part<'_>,
+        index: usize,
+        count: usize,
+        sign: Sign,
+        output: Option<NetId>,
+    ) -> Option<Nominal> {
         let signed = |volts: f64| if sign == Sign::Negative { -volts.abs() } else { volts.abs() };
-        let told = if part.told.volts.len() == count.max(1) {
-            part.told.volts.get(index)
-        } else {
-            part.told.volts.first().filter(|_| count <= 1 || part.told.volts.len() == 1)
-        };
+        let pair = part.told.pair.as_ref().filter(|_| count == 2).and_then(|pair| pair.get(index));
+        let told = pair.or(part.told.volts.as_ref());
         if let Some(told) = told {
             return Some(Nominal { volts: signed(told.volts), ..told.clone() });
         }
@@ -314,6 +318,8 @@ fn pick_ground(circuit: &Circuit, nets: &[NetId]) -> Option<NetId> {
 /// Whether any pin name is that of a regulator; a cheap test before text is read. Parts without pin names pass.
 fn of_interest(names: &[PinName]) -> bool {
     let output = |name: &PinName| name.is(Word::Output) || name.is(Word::ReferenceOutput) || name.is(Word::Cathode);
-    let other = |name: &PinName| name.is(Word::Plus) || name.is(Word::Unnamed) || name.is(Word::Switching) || name.is(Word::Adjust);
+    let other = |name: &PinName| {
+        name.is(Word::Plus) || name.is(Word::Unnamed) || name.is(Word::Switching) || name.is(Word::Adjust)
+    };
     names.iter().any(output) || names.iter().any(other)
 }

@@ -9,8 +9,24 @@ use super::model::Identity;
 
 /// Field names that hold a maker's part number. Order numbers of distributors name no part.
 const NUMBER_FIELDS: &[&str] = &[
-    "MPN", "MFPN", "MFR_PN", "MFR PN", "MFG_PN", "MANUFACTURER_PART_NUMBER", "MANUFACTURER PART NUMBER", "PART NUMBER",
-    "PARTNUMBER", "PART_NUMBER", "MANF#", "MANUFACTURER_PN", "MFR PART NUMBER", "MP", "PN", "MANUFACTURER PN", "MFGPN", "PART",
+    "MPN",
+    "MFPN",
+    "MFR_PN",
+    "MFR PN",
+    "MFG_PN",
+    "MANUFACTURER_PART_NUMBER",
+    "MANUFACTURER PART NUMBER",
+    "PART NUMBER",
+    "PARTNUMBER",
+    "PART_NUMBER",
+    "MANF#",
+    "MANUFACTURER_PN",
+    "MFR PART NUMBER",
+    "MP",
+    "PN",
+    "MANUFACTURER PN",
+    "MFGPN",
+    "PART",
 ];
 
 /// Where a name stands.
@@ -174,9 +190,9 @@ fn families(hits: &[Hit], maker: &str, knowledge: &Knowledge) -> Vec<usize> {
 
 /// What the fields say of the maker, lower case.
 fn maker(device: &Device) -> String {
-    const FIELDS: &[&str] = &["MANUFACTURER", "MFR", "MFG", "MAKER", "MANUFACTURER_NAME", "MANUFACTURER NAME", "VENDOR", "MF"];
-    let named = |name: &&str| device.field(name);
-    FIELDS.iter().find_map(|name| named(name)).unwrap_or("").to_lowercase()
+    const FIELDS: &[&str] =
+        &["MANUFACTURER", "MFR", "MFG", "MAKER", "MANUFACTURER_NAME", "MANUFACTURER NAME", "VENDOR", "MF"];
+    FIELDS.iter().find_map(|name| device.field(name)).unwrap_or("").to_lowercase()
 }
 
 /// The value names one part and the symbol another: worth a remark, and the value wins.
@@ -225,7 +241,9 @@ mod tests {
 
     #[test]
     fn part_numbers_are_told_from_free_text() {
-        for text in ["LM1117-3.3", "AP2114H-3.3", "78L05", "L7805", "XC6206P332MR", "R-78E5.0-0.5", "uA7805", "MIC5504-3.3"] {
+        for text in
+            ["LM1117-3.3", "AP2114H-3.3", "78L05", "L7805", "XC6206P332MR", "R-78E5.0-0.5", "uA7805", "MIC5504-3.3"]
+        {
             assert!(names_part(text), "{text}");
         }
         for text in ["LDO", "3.3V", "5V REG", "497-18013-1-ND", "LDO3V3", "", "VOLTAGE REGULATOR"] {

@@ -35,8 +35,8 @@ fn drawn_discrete(kind: DeviceKind) -> bool {
 
 /// Reference prefixes of parts that are no regulators: connectors, filters, oscillators, switches, microphones, motors.
 const FOREIGN_PREFIXES: &[&str] = &[
-    "J", "P", "X", "CN", "CON", "K", "RLY", "L", "FL", "FB", "F", "Y", "XTAL", "MK", "MIC", "SW", "S", "RV", "RN", "R", "C",
-    "BT", "BAT", "TP", "H", "MH", "LS", "BZ", "ANT", "AE", "LED", "ISO", "OK", "JP", "M",
+    "J", "P", "X", "CN", "CON", "K", "RLY", "L", "FL", "FB", "F", "Y", "XTAL", "MK", "MIC", "SW", "S", "RV", "RN",
+    "R", "C", "BT", "BAT", "TP", "H", "MH", "LS", "BZ", "ANT", "AE", "LED", "ISO", "OK", "JP", "M",
 ];
 
 /// How much must speak for a part that no text calls a regulator. Strong pin names and one more sign are enough.
@@ -99,6 +99,7 @@ impl Candidate<'_> {
             match name.words.first() {
                 Some(Word::Cathode | Word::Anode | Word::Plus | Word::Minus) => {}
                 Some(Word::Reference | Word::Adjust) => controlled = true,
+                Some(Word::Auxiliary | Word::Unknown) if self.text.reference || self.text.shunt => {}
                 _ => return false,
             }
         }
@@ -149,11 +150,7 @@ impl Candidate<'_> {
     fn reference_or_series(&self) -> RegulatorKind {
         let text = &self.text;
         // A reference may call itself "low dropout"; a regulator seldom calls itself a reference.
-        if text.reference && !text.regulator || text.reference && text.linear && !text.regulator {
-            RegulatorKind::Reference
-        } else {
-            RegulatorKind::Series
-        }
+        if text.reference && !text.regulator { RegulatorKind::Reference } else { RegulatorKind::Series }
     }
 
     /// Pins that say nothing, in a part that its text calls a regulator: electrical types or the nets must tell.
@@ -229,8 +226,13 @@ impl Candidate<'_> {
         if self.names.iter().any(|name| name.enable().is_some()) || optional.iter().any(|word| self.has(*word)) {
             score += 0.5;
         }
+        // Power switches have the pins of a regulator; a fault flag is the one pin that regulators seldom have.
         if self.has(Word::FaultFlag) {
-            score -= 1.5;
+            score -= 3.0;
+        }
+        let library = self.circuit.device(self.id).library.to_ascii_lowercase();
+        if library.contains("switch") || library.contains("power_management") {
+            score -= 1.0;
         }
         score -= 0.75 * (self.count(Word::Unknown) as f64);
         if self.names.len() > 16 {

@@ -13,8 +13,10 @@ use super::words::TextSigns;
 /// What the texts say of a part's output voltages, signs not applied.
 #[derive(Debug, Clone, Default, PartialEq)]
 pub(super) struct Told {
-    /// For each output in order; one entry where all are meant or only one is told.
-    pub(super) volts: Vec<Nominal>,
+    /// The one output voltage, or that of all outputs.
+    pub(super) volts: Option<Nominal>,
+    /// The voltages of a part with two outputs, in order.
+    pub(super) pair: Option<[Nominal; 2]>,
     /// The name or text says that the part is adjustable.
     pub(super) adjustable: bool,
     /// Worth a remark: name and description contradict each other.
@@ -43,7 +45,8 @@ fn texts<'a>(device: &'a Device, known: &'a Known) -> Vec<(&'a str, &'static str
 /// Whether a name says that the part is adjustable.
 fn says_adjustable(name: &str) -> bool {
     let name = reduced(name);
-    name.match_indices("ADJ").next().is_some() || name.split(['-', ' ']).skip(1).any(|part| part == "A" || part == "AD")
+    name.match_indices("ADJ").next().is_some()
+        || name.split(['-', ' ']).skip(1).any(|part| part == "A" || part == "AD")
 }
 
 /// Reads what the texts say. `negative` is what is known of the sign.
@@ -54,7 +57,7 @@ pub(super) fn read(device: &Device, known: &Known, text: &TextSigns, knowledge: 
     let described = known.symbol_agrees || !known.value_names_part;
     let stated: &[_] = if described { &text.volts } else { &[] };
     for (name, place, grade) in texts(device, known) {
-        if told.volts.is_empty() && says_adjustable(name) {
+        if says_adjustable(name) {
             told.adjustable = true;
             return told;
         }
@@ -65,25 +68,24 @@ pub(super) fn read(device: &Device, known: &Known, text: &TextSigns, knowledge: 
         }
         let Some(chosen) = chosen(name, known, family, code, stated) else { continue };
         let grade = if chosen.sure { grade } else { grade.weaker(Grade::Inferred) };
-        told.volts = vec![Nominal { volts: chosen.volts, grade, source: format!("{place} {name}") }];
+        told.volts = Some(Nominal { volts: chosen.volts, grade, source: format!("{place} {name}") });
         if chosen.contradicted && described {
             told.remark = Some(format!("{name} is taken for {} V, its description says otherwise", chosen.volts));
         }
         break;
     }
-    let several = stated.len() >= 2 && text.volts.len() == 2;
-    if described && (told.volts.is_empty() || several && family.is_none()) {
+    if described {
         from_description(&mut told, device, known, text);
     }
-    if told.volts.is_empty()
+    if told.volts.is_none()
         && let Some(family) = family
         && let [only] = family.voltages.as_slice()
         && family.adjust.is_none()
     {
         let source = format!("the only voltage of {}", family.name);
-        told.volts = vec![Nominal { volts: *only, grade: known.identity.grade.weaker(Grade::Published), source }];
+        told.volts = Some(Nominal { volts: *only, grade: known.identity.grade.weaker(Grade::Published), source });
     }
-    told.adjustable |= told.volts.is_empty() && text.adjustable && described;
+    told.adjustable |= told.volts.is_none() && text.adjustable && described;
     told
 }
 
@@ -103,7 +105,8 @@ fn chosen(
             ((ratio - 10.0).abs() < 1e-6 || (ratio - 0.1).abs() < 1e-6) && family.codes.is_empty()
         });
         let says = |volts: f64| stated.iter().any(|each| (each.volts - volts).abs() < 1e-6);
-        let volts = other.copied().filter(|other| says(*other) && !says(volts) && !name.contains('.')).unwrap_or(volts);
+        let volts =
+            other.copied().filter(|other| says(*other) && !says(volts) && !name.contains('.')).unwrap_or(volts);
         let contradicted = !stated.is_empty() && !stated.iter().any(|each| (each.volts / volts - 1.0).abs() < 0.05);
         return Some(Chosen { volts, sure: true, contradicted });
     }
@@ -116,25 +119,28 @@ fn chosen(
     choose(&readings, Arbiters { made_for, stated })
 }
 
-/// The description's own voltages, where the name says nothing: one, or one for each output.
+/// The description's own voltages: the only one, or the one that it calls the output, where the name says nothing; and
+/// the two of a part with two outputs.
 fn from_description(told: &mut Told, device: &Device, known: &Known, text: &TextSigns) {
     let grade = if known.symbol_agrees { Grade::Described } else { Grade::Inferred };
-    let mut stated = text.volts.clone();
-    if stated.len() > 2 && stated.iter().any(|each| each.output) {
-        stated.retain(|each| each.output);
+    let source = format!("description of symbol {}", device.symbol());
+    let nominal = |volts: f64| Nominal { volts, grade, source: source.clone() };
+    if let [first, second] = text.volts.as_slice() {
+        told.pair = Some([nominal(first.volts), nominal(second.volts)]);
     }
-    let mut same = stated.clone();
-    same.dedup_by(|one, other| (one.volts - other.volts).abs() < 1e-9);
-    let chosen = match (stated.len(), same.as_slice()) {
-        (_, [only]) if stated.len() != 2 => vec![*only],
-        (2, _) => stated,
-        _ => same.iter().filter(|each| each.output).take(1).copied().collect(),
-    };
-    if chosen.is_empty() {
+    if told.volts.is_some() {
         return;
     }
-    let source = format!("description of symbol {}", device.symbol());
-    told.volts = chosen.into_iter().map(|each| Nominal { volts: each.volts, grade, source: source.clone() }).collect();
+    let mut distinct: Vec<f64> = Vec::new();
+    let called_output = text.volts.iter().any(|each| each.output);
+    for each in text.volts.iter().filter(|each| each.output || !called_output) {
+        if !distinct.iter().any(|volts| (volts - each.volts).abs() < 1e-9) {
+            distinct.push(each.volts);
+        }
+    }
+    if let [only] = distinct.as_slice() {
+        told.volts = Some(nominal(*only));
+    }
 }
 
 /// Whether names or text say that the output is negative. `None` where nothing is said.
@@ -146,9 +152,12 @@ pub(super) fn sign(device: &Device, known: &Known, text: &TextSigns, family: Opt
     let name = reduced(&known.identity.name);
     let number = name.trim_start_matches(|each: char| each.is_ascii_alphabetic());
     let letters = name.len() - number.len();
-    let behind = number.strip_prefix("79").map(|rest| rest.trim_start_matches(|each: char| each.is_ascii_alphabetic()));
+    let behind =
+        number.strip_prefix("79").map(|rest| rest.trim_start_matches(|each: char| each.is_ascii_alphabetic()));
     let code = behind.map(|rest| rest.chars().take_while(char::is_ascii_digit).collect::<String>());
-    if letters <= 3 && code.as_deref().is_some_and(|code| code.len() == 2 && code.parse::<u8>().is_ok_and(|code| code >= 5)) {
+    if letters <= 3
+        && code.as_deref().is_some_and(|code| code.len() == 2 && code.parse::<u8>().is_ok_and(|code| code >= 5))
+    {
         return Some(Sign::Negative);
     }
     let described = known.symbol_agrees || !known.value_names_part || !names_part(device.symbol());

@@ -55,7 +55,13 @@ fn order(label: char) -> (u8, char) {
 }
 
 /// The pins of one rail by role: those with its label, and those that belong to no rail in particular.
-pub(super) fn roles_of(rail: &Rail, rails: &[Rail], names: &[PinName], roles: &[RoleName], shunt_output: RoleName) -> Roles {
+pub(super) fn roles_of(
+    rail: &Rail,
+    rails: &[Rail],
+    names: &[PinName],
+    roles: &[RoleName],
+    shunt_output: RoleName,
+) -> Roles {
     let mut found = Roles { output: rail.pins.clone(), ..Roles::default() };
     let labels: Vec<char> = rails.iter().filter_map(|rail| rail.label).collect();
     for (index, role) in roles.iter().enumerate() {

@@ -177,16 +177,17 @@ fn word_of(text: &str, barred: bool) -> (Word, Option<char>) {
     }
     // `OUT1S`, `SENSE1`: index inside.
     let squeezed: String = text.chars().filter(|each| !each.is_ascii_digit()).collect();
-    if squeezed.len() < text.len() && squeezed.len() >= 3 {
-        if let Some(word @ (Word::Output | Word::Sense | Word::Input)) = look_up(&squeezed, barred) {
-            return (word, text.chars().find(char::is_ascii_digit));
-        }
+    if squeezed.len() < text.len()
+        && squeezed.len() >= 3
+        && let Some(word @ (Word::Output | Word::Sense | Word::Input)) = look_up(&squeezed, barred)
+    {
+        return (word, text.chars().find(char::is_ascii_digit));
     }
     // A barred or `N`-prefixed logic word.
-    if let Some(rest) = text.strip_prefix('N') {
-        if let Some(word @ (Word::Enable(_) | Word::PowerGood)) = look_up(rest, true) {
-            return (word, None);
-        }
+    if let Some(rest) = text.strip_prefix('N')
+        && let Some(word @ (Word::Enable(_) | Word::PowerGood)) = look_up(rest, true)
+    {
+        return (word, None);
     }
     (fallback(text), None)
 }
@@ -204,7 +205,9 @@ fn suffixed(text: &str, barred: bool) -> Option<(Word, char)> {
     match word {
         // `IN+` and `IN-` are the inputs of an amplifier.
         Word::Input if text.ends_with(['+', '-']) => (stem.starts_with('V')).then_some((word, label)),
-        Word::Input | Word::Output | Word::Adjust | Word::Enable(_) | Word::Bypass | Word::Sense => Some((word, label)),
+        Word::Input | Word::Output | Word::Adjust | Word::Enable(_) | Word::Bypass | Word::Sense => {
+            Some((word, label))
+        }
         _ => None,
     }
 }
@@ -239,8 +242,31 @@ const SUPPLY: &[&str] = &[
     "AVCC", "+VS", "VS+", "VCC+", "+VCC", "VBUS", "PWR", "POWER", "VDDA",
 ];
 const OUTPUT: &[&str] = &[
-    "OUT", "VOUT", "VO", "OUTPUT", "VOUTPUT", "Q", "O", "REGOUT", "VREG", "REG", "OUTF", "VOUTF", "OUTFORCE",
-    "VOUTFORCE", "+VOUT", "VOUT+", "UOUT", "UA", "LDOOUT", "VLDO", "OUTLDO", "-VOUT", "VOF", "OUT+", "OUT-",
+    "OUT",
+    "VOUT",
+    "VO",
+    "OUTPUT",
+    "VOUTPUT",
+    "Q",
+    "O",
+    "REGOUT",
+    "VREG",
+    "REG",
+    "OUTF",
+    "VOUTF",
+    "OUTFORCE",
+    "VOUTFORCE",
+    "+VOUT",
+    "VOUT+",
+    "UOUT",
+    "UA",
+    "LDOOUT",
+    "VLDO",
+    "OUTLDO",
+    "-VOUT",
+    "VOF",
+    "OUT+",
+    "OUT-",
 ];
 const REFERENCE_OUTPUT: &[&str] = &["VREF", "REFOUT", "VREFOUT", "VREFF", "REFF", "VR"];
 const GROUND: &[&str] = &[
@@ -252,37 +278,169 @@ const ADJUST: &[&str] = &[
     "OUTFB", "ADJV", "VOUTSET", "RADJ", "VOSET",
 ];
 const ENABLE: &[&str] = &[
-    "EN", "ENA", "ENABLE", "CE", "ON", "INH", "INHIBIT", "CTRL", "CONT", "CONTROL", "VEN", "ENBL", "VDIS", "CHIPENABLE",
-    "ONOFF", "REMOTE", "ENUV", "ENUVLO", "RUN", "VCE", "ENLDO", "LDOEN",
+    "EN",
+    "ENA",
+    "ENABLE",
+    "CE",
+    "ON",
+    "INH",
+    "INHIBIT",
+    "CTRL",
+    "CONT",
+    "CONTROL",
+    "VEN",
+    "ENBL",
+    "VDIS",
+    "CHIPENABLE",
+    "ONOFF",
+    "REMOTE",
+    "ENUV",
+    "ENUVLO",
+    "RUN",
+    "VCE",
+    "ENLDO",
+    "LDOEN",
 ];
 const DISABLE: &[&str] = &[
-    "SHDN", "SHUTDOWN", "SD", "SHTD", "SHDWN", "SHUTDN", "OFF", "DIS", "DISABLE", "STBY", "STANDBY", "SLEEP", "SLP",
-    "SHD", "SHUT", "PD", "PDN", "POWERDOWN", "PWRDN", "OFFON",
+    "SHDN",
+    "SHUTDOWN",
+    "SD",
+    "SHTD",
+    "SHDWN",
+    "SHUTDN",
+    "OFF",
+    "DIS",
+    "DISABLE",
+    "STBY",
+    "STANDBY",
+    "SLEEP",
+    "SLP",
+    "SHD",
+    "SHUT",
+    "PD",
+    "PDN",
+    "POWERDOWN",
+    "PWRDN",
+    "OFFON",
 ];
 const SENSE: &[&str] = &[
-    "SENSE", "SNS", "VSENSE", "OUTS", "OUTSENSE", "VOSNS", "VOS", "KELVIN", "SENS", "VSNS", "VOUTS", "VOUTSNS",
-    "VOUTSENSE", "S", "OUTSNS", "VREFS", "REFS", "VSENS", "+SENSE", "SENSE+", "VOSENSE", "KELVINSENSE",
+    "SENSE",
+    "SNS",
+    "VSENSE",
+    "OUTS",
+    "OUTSENSE",
+    "VOSNS",
+    "VOS",
+    "KELVIN",
+    "SENS",
+    "VSNS",
+    "VOUTS",
+    "VOUTSNS",
+    "VOUTSENSE",
+    "S",
+    "OUTSNS",
+    "VREFS",
+    "REFS",
+    "VSENS",
+    "+SENSE",
+    "SENSE+",
+    "VOSENSE",
+    "KELVINSENSE",
 ];
 const BYPASS: &[&str] = &[
-    "BYP", "BYPASS", "BP", "NR", "CBYP", "CN", "NOISE", "NOISEREDUCTION", "SS", "SOFTSTART", "CNR", "CSS", "FILT",
-    "FILTER", "COMP", "CC", "CREF", "CNOISE", "FC", "NP", "CAP", "BPS", "CBP", "REFBYP", "NRSS", "VCAP", "CP", "CB",
-    "BYPS", "REFCAP", "FF", "CFF", "CNRSS",
+    "BYP",
+    "BYPASS",
+    "BP",
+    "NR",
+    "CBYP",
+    "CN",
+    "NOISE",
+    "NOISEREDUCTION",
+    "SS",
+    "SOFTSTART",
+    "CNR",
+    "CSS",
+    "FILT",
+    "FILTER",
+    "COMP",
+    "CC",
+    "CREF",
+    "CNOISE",
+    "FC",
+    "NP",
+    "CAP",
+    "BPS",
+    "CBP",
+    "REFBYP",
+    "NRSS",
+    "VCAP",
+    "CP",
+    "CB",
+    "BYPS",
+    "REFCAP",
+    "FF",
+    "CFF",
+    "CNRSS",
 ];
 const BIAS: &[&str] = &["BIAS", "VBIAS", "VCONTROL", "VC", "VCNTL", "VCTRL", "CNTL", "VL", "VCONT", "VB", "VINBIAS"];
 const POWER_GOOD: &[&str] = &[
-    "PG", "PGOOD", "POK", "PWRGD", "PWROK", "RESET", "RST", "ERROR", "ERR", "LBO", "RO", "VDET", "OK", "POR", "NPOR",
-    "POWERGOOD", "PWRGOOD", "PGD", "RESOUT", "ERRFLAG", "PF", "POWEROK", "VOK", "DROPOUT", "PGO",
+    "PG",
+    "PGOOD",
+    "POK",
+    "PWRGD",
+    "PWROK",
+    "RESET",
+    "RST",
+    "ERROR",
+    "ERR",
+    "LBO",
+    "RO",
+    "VDET",
+    "OK",
+    "POR",
+    "NPOR",
+    "POWERGOOD",
+    "PWRGOOD",
+    "PGD",
+    "RESOUT",
+    "ERRFLAG",
+    "PF",
+    "POWEROK",
+    "VOK",
+    "DROPOUT",
+    "PGO",
 ];
 const FAULT_FLAG: &[&str] = &["FLG", "FLAG", "FAULT", "FLT", "OC", "OCB", "FAUL", "STATUS", "DIAG", "FAULTB"];
 const NOT_CONNECTED: &[&str] = &["NC", "DNC", "TP", "IC", "NU", "DNU", "RSVD", "RES", "NOCONNECT", "RFU", "N/C"];
 const TAB: &[&str] = &[
-    "EP", "PAD", "TAB", "EPAD", "DAP", "TPAD", "PPAD", "THERMAL", "THERMALPAD", "HEATSINK", "HS", "EXP", "SLUG", "MP",
-    "EXPOSEDPAD", "EPGND", "TH", "THPAD", "TABOUT", "MTAB", "SHIELD", "CASE", "EXPPAD",
+    "EP",
+    "PAD",
+    "TAB",
+    "EPAD",
+    "DAP",
+    "TPAD",
+    "PPAD",
+    "THERMAL",
+    "THERMALPAD",
+    "HEATSINK",
+    "HS",
+    "EXP",
+    "SLUG",
+    "MP",
+    "EXPOSEDPAD",
+    "EPGND",
+    "TH",
+    "THPAD",
+    "TABOUT",
+    "MTAB",
+    "SHIELD",
+    "CASE",
+    "EXPPAD",
 ];
 const AUXILIARY: &[&str] = &[
     "TRIM", "TEMP", "TEMPER", "VTEMP", "DELAY", "CDELAY", "CT", "CD", "TIMEOUT", "D", "ILIM", "IMON", "VIOC", "PGFB",
-    "TEST", "MR", "SEQ", "TAP", "VTAP", "LIMIT", "ILIMIT", "REFIN", "LBI", "VTC", "HOLD", "SSCTRL", "VMON", "CL", "CS",
-    "CSEN", "VZ", "SI", "SO", "WD", "WI", "WDI", "RADJ", "DLY", "RR", "PGDLY", "CDLY", "MODE", "GS", "SEL",
+    "TEST", "MR", "SEQ", "TAP", "VTAP", "LIMIT", "ILIMIT", "REFIN", "LBI", "VTC", "HOLD", "SSCTRL", "VMON", "CL",
+    "CS", "CSEN", "VZ", "SI", "SO", "WD", "WI", "WDI", "RADJ", "DLY", "RR", "PGDLY", "CDLY", "MODE", "GS", "SEL",
 ];
 const CATHODE: &[&str] = &["K", "CATHODE", "CATH", "KATHODE", "C", "CAT"];
 const ANODE: &[&str] = &["A", "ANODE", "AN", "ANOD"];
@@ -292,16 +450,99 @@ const SWITCHING: &[&str] = &[
     "SWC", "SWE", "DRC", "IPK", "FX", "CBST", "TG", "BG", "RON", "SWB", "COIL", "RTCLK",
 ];
 const PUMP: &[&str] = &[
-    "C+", "C-", "CAP+", "CAP-", "C1+", "C1-", "C2+", "C2-", "CP+", "CP-", "CPP", "CPN", "CFLY+", "CFLY-", "CF+", "CF-",
-    "C1P", "C1N", "C2P", "C2N", "CFLYP", "CFLYN", "LV", "OSC", "CAPP", "CAPN", "C3+", "C3-", "FC+", "FC-",
+    "C+", "C-", "CAP+", "CAP-", "C1+", "C1-", "C2+", "C2-", "CP+", "CP-", "CPP", "CPN", "CFLY+", "CFLY-", "CF+",
+    "CF-", "C1P", "C1N", "C2P", "C2N", "CFLYP", "CFLYN", "LV", "OSC", "CAPP", "CAPN", "C3+", "C3-", "FC+", "FC-",
 ];
 const ALIEN: &[&str] = &[
-    "+IN", "-IN", "IN+", "IN-", "+INA", "-INA", "+INB", "-INB", "INA+", "INA-", "INB+", "INB-", "SDA", "SCL", "MOSI",
-    "MISO", "SCK", "SCLK", "CLK", "DATA", "TX", "RX", "TXD", "RXD", "D+", "D-", "DP", "DM", "CHG", "CHRG", "STAT", "PROG",
-    "TS", "NTC", "ISET", "GATE", "DRAIN", "SOURCE", "QOD", "SDI", "SDO", "SCKI", "SDTI", "SDTO", "RXI", "TXO", "VIO",
-    "CHGIN", "ISENSE", "THM", "TMR", "EOC", "ACPR", "RS+", "RS-", "VBST", "IREF", "CS+", "CS-", "XTAL", "XIN", "XOUT",
-    "DOUT", "DIN", "DO", "DI", "ADDR", "A0", "A1", "SWCLK", "SWDIO", "TCK", "TDI", "TDO", "TMS", "INT", "IRQ", "DISCH",
-    "THR", "THRES", "TRIG", "TR", "DISCHARGE", "CV", "E", "B", "COLLECTOR", "EMITTER", "BASE",
+    "+IN",
+    "-IN",
+    "IN+",
+    "IN-",
+    "+INA",
+    "-INA",
+    "+INB",
+    "-INB",
+    "INA+",
+    "INA-",
+    "INB+",
+    "INB-",
+    "SDA",
+    "SCL",
+    "MOSI",
+    "MISO",
+    "SCK",
+    "SCLK",
+    "CLK",
+    "DATA",
+    "TX",
+    "RX",
+    "TXD",
+    "RXD",
+    "D+",
+    "D-",
+    "DP",
+    "DM",
+    "CHG",
+    "CHRG",
+    "STAT",
+    "PROG",
+    "TS",
+    "NTC",
+    "ISET",
+    "GATE",
+    "DRAIN",
+    "SOURCE",
+    "QOD",
+    "SDI",
+    "SDO",
+    "SCKI",
+    "SDTI",
+    "SDTO",
+    "RXI",
+    "TXO",
+    "VIO",
+    "CHGIN",
+    "ISENSE",
+    "THM",
+    "TMR",
+    "EOC",
+    "ACPR",
+    "RS+",
+    "RS-",
+    "VBST",
+    "IREF",
+    "CS+",
+    "CS-",
+    "XTAL",
+    "XIN",
+    "XOUT",
+    "DOUT",
+    "DIN",
+    "DO",
+    "DI",
+    "ADDR",
+    "A0",
+    "A1",
+    "SWCLK",
+    "SWDIO",
+    "TCK",
+    "TDI",
+    "TDO",
+    "TMS",
+    "INT",
+    "IRQ",
+    "DISCH",
+    "THR",
+    "THRES",
+    "TRIG",
+    "TR",
+    "DISCHARGE",
+    "CV",
+    "E",
+    "B",
+    "COLLECTOR",
+    "EMITTER",
+    "BASE",
 ];
 
 /// Looks a reduced word up; `barred` matters to logic words only.
@@ -363,7 +604,8 @@ mod tests {
 
     #[test]
     fn enable_polarity_follows_word_and_bar() {
-        for name in ["EN", "ENABLE", "CE", "~{SHDN}", "ON/~{OFF}", "~{SD}", "INH", "Vdis", "EN/UV", "~{OFF}(~{STBY})"] {
+        for name in ["EN", "ENABLE", "CE", "~{SHDN}", "ON/~{OFF}", "~{SD}", "INH", "Vdis", "EN/UV", "~{OFF}(~{STBY})"]
+        {
             assert_eq!(read(name, "3").enable(), Some(false), "{name}");
         }
         for name in ["~{EN}", "SHDN", "SHUTDOWN", "~EN", "/EN", "EN#", "nEN", "E\\N\\", "~{EN1}"] {

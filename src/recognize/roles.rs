@@ -8,6 +8,7 @@ use crate::knowledge::{Family, RoleName};
 
 use super::model::RegulatorKind;
 use super::pin_name::{PinName, Word};
+use super::walk::{Chain, chains, is_tap};
 
 /// What is known of the part before its pins are settled.
 #[derive(Debug, Clone, Copy)]
@@ -33,12 +34,15 @@ pub(super) fn assign(circuit: &Circuit, id: DeviceId, names: &[PinName], hints: 
     } else {
         assignment.series();
     }
-    assignment.from_family();
+    assignment.fill_by_family();
     if hints.kind != RegulatorKind::Shunt {
-        assignment.from_types();
-        assignment.from_nets();
+        assignment.fill_by_type();
+        assignment.fill_by_net();
     }
     assignment.double_names();
+    if hints.kind != RegulatorKind::Shunt {
+        assignment.feedback();
+    }
     assignment.tabs();
     assignment.roles.into_iter().map(|role| role.unwrap_or(RoleName::Other)).collect()
 }
@@ -139,7 +143,7 @@ impl Assignment<'_> {
     }
 
     /// Pins whose names say nothing get the role of the family's pin table, by package.
-    fn from_family(&mut self) {
+    fn fill_by_family(&mut self) {
         let Some(family) = self.hints.family else { return };
         let footprint = normal(&self.device.footprint);
         let symbol = normal(&self.device.part);
@@ -175,7 +179,7 @@ impl Assignment<'_> {
     }
 
     /// Electrical types, for pins that are still open.
-    fn from_types(&mut self) {
+    fn fill_by_type(&mut self) {
         let lacks_output = !self.has(RoleName::Output);
         let lacks_input = !self.has(RoleName::Input);
         for index in 0..self.names.len() {
@@ -195,8 +199,9 @@ impl Assignment<'_> {
 
     /// Nets, for the pins of small parts whose names and types say nothing: the pin on ground is the ground, a supply of
     /// the part's own voltage is the output, the other supply the input.
-    fn from_nets(&mut self) {
-        let open: Vec<usize> = (0..self.names.len()).filter(|index| self.open(*index) && !self.is_double(*index)).collect();
+    fn fill_by_net(&mut self) {
+        let open: Vec<usize> =
+            (0..self.names.len()).filter(|index| self.open(*index) && !self.is_double(*index)).collect();
         if open.is_empty() || self.names.len() > 6 || self.has(RoleName::Input) && self.has(RoleName::Output) {
             return;
         }
@@ -217,7 +222,8 @@ impl Assignment<'_> {
             };
             // Of two supplies the lower one is the output of a series part.
             let lower = || {
-                let mut known: Vec<(f64, usize)> = open.iter().filter_map(|index| Some((volts(self, *index)?, *index))).collect();
+                let mut known: Vec<(f64, usize)> =
+                    open.iter().filter_map(|index| Some((volts(self, *index)?, *index))).collect();
                 known.sort_by(|one, other| one.0.total_cmp(&other.0));
                 (known.len() >= 2).then(|| known.first().map(|(_, index)| *index)).flatten()
             };
@@ -259,7 +265,8 @@ impl Assignment<'_> {
         let adjust = name.is(Word::Adjust) || name.is(Word::Reference);
         if adjust && name.is(Word::Ground) {
             // Resistors on the pin say that it is used for adjusting, whatever the name says.
-            let adjusted = !self.hints.fixed && (self.hints.adjustable || !grounded) || !grounded && self.has_resistors(net);
+            let adjusted =
+                !self.hints.fixed && (self.hints.adjustable || !grounded) || !grounded && self.has_resistors(net);
             return Some(if adjusted { RoleName::Adjust } else { RoleName::Ground });
         }
         if adjust && name.is(Word::Sense) {
@@ -271,7 +278,8 @@ impl Assignment<'_> {
             let other = if name.is(Word::Bypass) { RoleName::Bypass } else { RoleName::NotConnected };
             return Some(if adjusted { RoleName::Adjust } else { other });
         }
-        let first = name.words.iter().find(|word| !matches!(word, Word::Tab | Word::Auxiliary | Word::NotConnected))?;
+        let first =
+            name.words.iter().find(|word| !matches!(word, Word::Tab | Word::Auxiliary | Word::NotConnected))?;
         Some(match first {
             Word::Input | Word::Supply => RoleName::Input,
             Word::Output | Word::ReferenceOutput => RoleName::Output,
@@ -292,6 +300,32 @@ impl Assignment<'_> {
                 matches!(self.circuit.device(device).kind, DeviceKind::Resistor | DeviceKind::Potentiometer)
             })
         })
+    }
+
+    /// Sense and feedback pins are called by each other's names: a fixed part's feedback on its own output is its sense,
+    /// and the sense pin of an adjustable part in the middle of a divider is its adjust pin.
+    fn feedback(&mut self) {
+        let outputs = self.nets_of(RoleName::Output);
+        let adjustable = self.has(RoleName::Adjust);
+        for index in 0..self.roles.len() {
+            let Some(net) = self.net(index) else { continue };
+            let on_output = outputs.contains(&net);
+            match self.roles.get(index).copied().flatten() {
+                Some(RoleName::Adjust) if on_output && self.hints.fixed => self.set(index, RoleName::Sense),
+                Some(RoleName::Sense) if !adjustable && !on_output && self.in_divider(net) => {
+                    self.set(index, RoleName::Adjust);
+                }
+                _ => {}
+            }
+        }
+    }
+
+    /// Resistors lead from the net to ground and elsewhere.
+    fn in_divider(&self, net: NetId) -> bool {
+        let grounds = self.nets_of(RoleName::Ground);
+        let chains = if is_tap(self.circuit, net) { chains(self.circuit, net, &grounds) } else { Vec::new() };
+        let down = |chain: &Chain| grounds.contains(&chain.end) || self.circuit.net(chain.end).ground;
+        chains.iter().any(down) && chains.iter().any(|chain| !down(chain))
     }
 
     /// A tab takes the role of the net it lies on; a tab alone on its net is nothing.

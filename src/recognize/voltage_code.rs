@@ -51,7 +51,8 @@ static PACKAGE: LazyLock<Regex> = LazyLock::new(|| {
         (?: $ | [_\-/\x20)] )",
     )
 });
-static SPELLED_V: LazyLock<Regex> = LazyLock::new(|| regex(r"(\d{1,2})V(\d{1,3})|(\d{1,2})P(\d{1,2})(?:V|$|[^A-Z0-9])"));
+static SPELLED_V: LazyLock<Regex> =
+    LazyLock::new(|| regex(r"(\d{1,2})V(\d{1,3})|(\d{1,2})P(\d{1,2})(?:V|$|[^A-Z0-9])"));
 static POINT: LazyLock<Regex> = LazyLock::new(|| regex(r"(\d{1,4})\.(\d{1,3})"));
 static VOLTS: LazyLock<Regex> = LazyLock::new(|| regex(r"(?:^|[^0-9.])(\d{1,2})V(?:DC)?(?:$|[^A-Z0-9])"));
 static SEVENTY: LazyLock<Regex> =
@@ -100,7 +101,7 @@ pub(super) fn read_name(name: &str, base: usize) -> Vec<Reading> {
     if has_spelled && readings.iter().any(|reading| reading.plainness == Plainness::Spelled) {
         readings.retain(|reading| reading.plainness == Plainness::Spelled);
     }
-    readings.sort_by(|one, other| one.plainness.cmp(&other.plainness));
+    readings.sort_by_key(|reading| reading.plainness);
     let mut seen: Vec<Reading> = Vec::new();
     for reading in readings {
         if !seen.iter().any(|other| (other.volts - reading.volts).abs() < 1e-9) {
@@ -156,7 +157,8 @@ fn digits(code: &str, plainness: Plainness, readings: &mut Vec<Reading>) {
         1 => add(number, 0),
         2 => {
             // Fixed voltages from 5 V up are written whole where the digits cannot be tenths of a common voltage.
-            let whole = matches!(code, "05" | "06" | "09" | "10" | "24") || code == "15" && plainness == Plainness::Spelled;
+            let whole =
+                matches!(code, "05" | "06" | "09" | "10" | "24") || code == "15" && plainness == Plainness::Spelled;
             if whole {
                 add(number, 0);
                 add(number / 10.0, 1);
@@ -167,10 +169,14 @@ fn digits(code: &str, plainness: Plainness, readings: &mut Vec<Reading>) {
         }
         3 => {
             add(number / 100.0, 2);
-            // `331`: tenths, then a letter's worth of tolerance.
-            if let Ok(tenths) = code.get(..2).unwrap_or("").parse::<f64>() {
+            // `331`: tenths, then the tolerance class.
+            if let Ok(tenths) = code.get(..2).unwrap_or("").parse::<f64>()
+                && code.ends_with(['1', '2'])
+            {
                 add(tenths / 10.0, 1);
             }
+            // `120` for 12 V among parts that count in tenths.
+            add(number / 10.0, 1);
         }
         4 => {
             // `3302`: tenths and the tolerance class.
@@ -235,19 +241,17 @@ fn tail(run: &str, readings: &mut Vec<Reading>) {
         return;
     }
     let plainness = if run.len() >= 5 { Plainness::Tail } else { Plainness::Faint };
-    for length in [2, 3] {
-        if run.len() >= length + 3 || length == 2 {
-            if let Some(code) = run.get(run.len() - length..) {
-                let divisor = if length == 2 { 10.0 } else { 100.0 };
-                if let Ok(number) = code.parse::<f64>() {
-                    let decimals = if length == 2 { 1 } else { 2 };
-                    readings.push(Reading { volts: number / divisor, decimals, plainness });
-                    if length == 2 {
-                        readings.push(Reading { volts: number, decimals: 0, plainness: Plainness::Faint });
-                    }
-                }
-            }
+    let mut add = |length: usize, decimals: i32, plainness: Plainness| {
+        let code = run.len().checked_sub(length).and_then(|at| run.get(at..)).unwrap_or("");
+        if let Ok(number) = code.parse::<f64>() {
+            readings.push(Reading { volts: number / 10_f64.powi(decimals), decimals, plainness });
         }
+    };
+    add(2, 1, plainness);
+    add(2, 0, Plainness::Faint);
+    // Three digits of voltage leave at least three for the part.
+    if run.len() >= 6 {
+        add(3, 2, plainness);
     }
 }
 
@@ -263,7 +267,9 @@ pub(super) struct Stated {
 }
 
 static STATED: LazyLock<Regex> = LazyLock::new(|| {
-    regex(r"(?i)(?P<lead>.{0,14}?)(?P<sign>[+\-\u{2212}\u{2013}]?)(?P<number>\d+(?:[.,]\d+)?)\s?V(?:DC|olts?)?(?P<rest>[^a-z0-9].{0,18}|$)")
+    regex(
+        r"(?i)(?P<lead>.{0,14}?)(?P<sign>[+\-\u{2212}\u{2013}]?)(?P<number>\d+(?:[.,]\d+)?)\s?V(?:DC|olts?)?(?P<rest>[^a-z0-9].{0,18}|$)",
+    )
 });
 static RANGE: LazyLock<Regex> = LazyLock::new(|| {
     regex(
@@ -287,8 +293,12 @@ pub(super) fn read_description(text: &str) -> Vec<Stated> {
         // A digit or point right before means that the number was cut in half.
         let whole = !lead.ends_with(|each: char| each.is_ascii_digit() || each == '.');
         if whole && let Ok(volts) = number.parse::<f64>() {
-            let output = lead.contains("output") || lead.contains("fixed") || lead.contains("vo") || behind.contains("output")
-                || behind.contains("fixed") || behind.contains("reference");
+            let output = lead.contains("output")
+                || lead.contains("fixed")
+                || lead.trim_end().ends_with("vo")
+                || behind.contains("output")
+                || behind.contains("fixed")
+                || behind.contains("reference");
             let negative = !matches!(group_named(&hit, "sign"), "" | "+");
             if SENSIBLE.contains(&volts) {
                 found.push(Stated { volts, negative, output });
@@ -342,7 +352,8 @@ pub(super) fn choose(readings: &[Reading], arbiters: Arbiters<'_>) -> Option<Cho
         let near = |volts: &&f64| stands_for(reading, **volts);
         arbiters.made_for.iter().find(near).copied().unwrap_or(reading.volts)
     };
-    let stated = |reading: &Reading| arbiters.stated.iter().map(|each| each.volts).find(|volts| stands_for(reading, *volts));
+    let stated =
+        |reading: &Reading| arbiters.stated.iter().map(|each| each.volts).find(|volts| stands_for(reading, *volts));
     // Which of two readings that the family is made for (12 V, 1.2 V) the description decides.
     let family: Vec<&Reading> =
         readings.iter().filter(|reading| reading.plainness < Plainness::Faint).filter(made).collect();
@@ -351,7 +362,8 @@ pub(super) fn choose(readings: &[Reading], arbiters: Arbiters<'_>) -> Option<Cho
         return Some(Chosen { volts: exact(reading), sure: true, contradicted });
     }
     // The plainest reading that the description confirms; a more precise statement is the better figure.
-    if let Some((reading, volts)) = readings.iter().find_map(|reading| stated(reading).map(|volts| (reading, volts))) {
+    if let Some((reading, volts)) = readings.iter().find_map(|reading| stated(reading).map(|volts| (reading, volts)))
+    {
         let spelled = readings.iter().any(|other| other.plainness == Plainness::Spelled);
         if !spelled || reading.plainness == Plainness::Spelled {
             return Some(Chosen { volts, sure: true, contradicted: false });
@@ -363,16 +375,25 @@ pub(super) fn choose(readings: &[Reading], arbiters: Arbiters<'_>) -> Option<Cho
         Plainness::Spelled | Plainness::Coded => Some(Chosen { volts: best.volts, sure: true, contradicted }),
         Plainness::Glued => {
             let group = readings.iter().filter(|reading| reading.plainness == Plainness::Glued);
-            let near = nearest(group.clone(), arbiters.stated).or_else(|| group.clone().find(|each| typical(each.volts)).copied());
-            let volts = near.map_or(best.volts, |reading| reading.volts);
-            Some(Chosen { volts, sure: typical(volts), contradicted })
+            let near = nearest(group.clone(), arbiters.stated)
+                .or_else(|| group.clone().find(|each| typical(each.volts)).copied());
+            // Digits that are no common voltage and far from what is described are something else.
+            let volts = match near {
+                Some(reading) => reading.volts,
+                None if contradicted => return None,
+                None => best.volts,
+            };
+            Some(Chosen { volts, sure: typical(volts) || contradicted, contradicted })
         }
         Plainness::Tail => {
             let group = readings.iter().filter(|reading| reading.plainness == Plainness::Tail);
             if contradicted {
                 // The part's own number: only a reading close to what is described can be a voltage at all.
-                return nearest(group, arbiters.stated)
-                    .map(|reading| Chosen { volts: reading.volts, sure: true, contradicted });
+                return nearest(group, arbiters.stated).map(|reading| Chosen {
+                    volts: reading.volts,
+                    sure: true,
+                    contradicted,
+                });
             }
             group.clone().find(|each| typical(each.volts)).map(|reading| Chosen {
                 volts: reading.volts,
@@ -389,7 +410,10 @@ fn nearest<'a>(readings: impl Iterator<Item = &'a Reading>, stated: &[Stated]) -
     let distance = |reading: &Reading| {
         stated.iter().map(|each| (each.volts / reading.volts - 1.0).abs()).fold(f64::INFINITY, f64::min)
     };
-    readings.copied().filter(|reading| distance(reading) < 0.1).min_by(|one, other| distance(one).total_cmp(&distance(other)))
+    readings
+        .copied()
+        .filter(|reading| distance(reading) < 0.1)
+        .min_by(|one, other| distance(one).total_cmp(&distance(other)))
 }
 
 #[cfg(test)]
@@ -408,12 +432,33 @@ mod tests {
     #[test]
     fn spelled_and_dashed_codes_are_read_without_help() {
         for (name, volts) in [
-            ("LM1117-3.3", 3.3), ("MIC5205-2.85YM5", 2.85), ("LP5907MFX-3.3/NOPB", 3.3), ("AMS1117-3V3", 3.3),
-            ("TLV1117-33", 3.3), ("MCP1700T-3302E/TT", 3.3), ("MCP1703A-500xxDB", 5.0), ("SPX3819M5-L-3-3", 3.3),
-            ("L7805", 5.0), ("78L05", 5.0), ("L7885", 8.5), ("MC7905.2", 5.2), ("L78L33_SO8", 3.3), ("uA7812", 12.0),
-            ("LD1117S33TR_SOT223", 3.3), ("LF33_TO220", 3.3), ("NCP1117ST33T3G", 3.3), ("LD39150DT18", 1.8),
-            ("IFX25401TBV50", 5.0), ("LM336Z2.5", 2.5), ("LM4040DBZ-2.5", 2.5), ("ME6211C33M5G", 3.3),
-            ("RT9193-33GB", 3.3), ("LM2940CT-12", 1.2), ("LM7805_TO220", 5.0), ("XC6220B331MR", 3.3), ("AP2127K-4.75", 4.75),
+            ("LM1117-3.3", 3.3),
+            ("MIC5205-2.85YM5", 2.85),
+            ("LP5907MFX-3.3/NOPB", 3.3),
+            ("AMS1117-3V3", 3.3),
+            ("TLV1117-33", 3.3),
+            ("MCP1700T-3302E/TT", 3.3),
+            ("MCP1703A-500xxDB", 5.0),
+            ("SPX3819M5-L-3-3", 3.3),
+            ("L7805", 5.0),
+            ("78L05", 5.0),
+            ("L7885", 8.5),
+            ("MC7905.2", 5.2),
+            ("L78L33_SO8", 3.3),
+            ("uA7812", 12.0),
+            ("LD1117S33TR_SOT223", 3.3),
+            ("LF33_TO220", 3.3),
+            ("NCP1117ST33T3G", 3.3),
+            ("LD39150DT18", 1.8),
+            ("IFX25401TBV50", 5.0),
+            ("LM336Z2.5", 2.5),
+            ("LM4040DBZ-2.5", 2.5),
+            ("ME6211C33M5G", 3.3),
+            ("RT9193-33GB", 3.3),
+            ("LM2940CT-12", 1.2),
+            ("LM7805_TO220", 5.0),
+            ("XC6220B331MR", 3.3),
+            ("AP2127K-4.75", 4.75),
         ] {
             assert_eq!(alone(name), Some(volts), "{name}");
         }
@@ -421,7 +466,9 @@ mod tests {
 
     #[test]
     fn model_numbers_are_no_voltages() {
-        for name in ["LM1117", "MCP1702", "ADP3335", "NCP4620", "LM317T", "REF192", "MAX603", "TL431", "LT3080", "LM4128"] {
+        for name in
+            ["LM1117", "MCP1702", "ADP3335", "NCP4620", "LM317T", "REF192", "MAX603", "TL431", "LT3080", "LM4128"]
+        {
             assert_eq!(alone(name), None, "{name}");
         }
     }

@@ -47,7 +47,9 @@ fn far_ends(circuit: &Circuit, device: DeviceId, net: NetId) -> Vec<NetId> {
     }
     // Three nets: from the wiper the current can reach both ends; from an end what counts is the wiper.
     let pins = &circuit.device(device).pins;
-    let wiper = |name: &str, number: &str| number == "2" || name.eq_ignore_ascii_case("W") || name.eq_ignore_ascii_case("WIPER");
+    let wiper = |name: &str, number: &str| {
+        number == "2" || name.eq_ignore_ascii_case("W") || name.eq_ignore_ascii_case("WIPER")
+    };
     let wiper_net = pins.iter().find(|pin| wiper(&pin.name, &pin.number)).and_then(|pin| pin.net);
     if wiper_net == Some(net) {
         let mut ends: Vec<NetId> = pins.iter().filter_map(|pin| pin.net).filter(|other| *other != net).collect();

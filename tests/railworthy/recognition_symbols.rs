@@ -20,7 +20,8 @@ type Row = BTreeMap<String, String>;
 fn rows(text: &str) -> Vec<Row> {
     let mut lines = text.lines();
     let head: Vec<&str> = lines.next().unwrap().split('\t').collect();
-    let row = |line: &str| head.iter().zip(line.split('\t')).map(|(name, cell)| ((*name).into(), cell.into())).collect();
+    let row =
+        |line: &str| head.iter().zip(line.split('\t')).map(|(name, cell)| ((*name).into(), cell.into())).collect();
     lines.map(row).collect()
 }
 
@@ -69,7 +70,11 @@ fn faults(row: &Row, design: &Design) -> Vec<String> {
     for (volts, each) in row["vout_nominal"].split('/').filter(|volts| !volts.is_empty()).zip(&found) {
         let volts: f64 = volts.parse().unwrap();
         let nominal = each.nominal.as_ref().map(|nominal| nominal.volts);
-        check("nominal", nominal.is_some_and(|found| (found - volts).abs() < 0.0015 * volts.abs()), format!("{nominal:?}"));
+        check(
+            "nominal",
+            nominal.is_some_and(|found| (found - volts).abs() < 0.0015 * volts.abs()),
+            format!("{nominal:?}"),
+        );
     }
     let named = |ids: &[railworthy::circuit::DeviceId]| {
         ids.iter().map(|id| circuit.device(*id).reference.clone()).collect::<Vec<_>>().join("+")
@@ -77,9 +82,15 @@ fn faults(row: &Row, design: &Design) -> Vec<String> {
     for text in row["divider"].split("; ").filter(|text| text.contains('/')) {
         let (upper, lower) = text.split(':').next().unwrap().split_once('/').unwrap();
         let fits = |each: &&Regulator| {
-            each.divider.as_ref().is_some_and(|divider| named(&divider.upper) == upper && named(&divider.lower) == lower)
+            each.divider
+                .as_ref()
+                .is_some_and(|divider| named(&divider.upper) == upper && named(&divider.lower) == lower)
         };
-        check("divider", found.iter().any(fits), format!("{:?}", found.iter().map(|each| &each.divider).collect::<Vec<_>>()));
+        check(
+            "divider",
+            found.iter().any(fits),
+            format!("{:?}", found.iter().map(|each| &each.divider).collect::<Vec<_>>()),
+        );
     }
     if !row["series_resistor"].is_empty() {
         let feed = first.feed.as_ref().map(|feed| named(&feed.resistors));

@@ -79,6 +79,7 @@ pub(super) fn read_capacitor(root: &mut Table<'_>, key: &'static str, cite: &Cit
     let (ceramic_only, ceramic_allowed, if_far) = (flag("ceramic_only"), flag("ceramic_allowed"), flag("if_far"));
     let demand = CapacitorDemand {
         minimum,
+        minimum_electrolytic: farads(&mut table, "minimum_electrolytic"),
         kind,
         basis: basis.unwrap_or(Basis::Nominal),
         by_output: steps.unwrap_or_default().into_iter().map(|(limit, step)| (limit, step.value.nominal())).collect(),
@@ -89,7 +90,10 @@ pub(super) fn read_capacitor(root: &mut Table<'_>, key: &'static str, cite: &Cit
         maximum: farads(&mut table, "maximum"),
         with_bypass: farads(&mut table, "with_bypass"),
     };
-    cite.check_keys(&table, &["minimum", "by_output", "esr", "esr_min", "esr_max", "maximum", "with_bypass"]);
+    cite.check_keys(
+        &table,
+        &["minimum", "minimum_electrolytic", "by_output", "esr", "esr_min", "esr_max", "maximum", "with_bypass"],
+    );
     check_demand(&table, &demand);
     table.finish();
     Some(demand)

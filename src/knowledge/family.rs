@@ -50,6 +50,7 @@ fn empty(name: &str, kind: FamilyKind, file: &str) -> Family {
         names: Vec::new(),
         voltages: Vec::new(),
         codes: BTreeMap::new(),
+        adjust_codes: Vec::new(),
         kind,
         polarity: Sign::Positive,
         pass: None,
@@ -111,9 +112,11 @@ fn read_names(root: &mut Table<'_>, family: &mut Family) {
     }
     if let Some(mut codes) = root.table("codes") {
         for value in codes.entries() {
-            let volts = value.text().and_then(|text| read_range(&text, Dimension::VOLTAGE));
-            if let Some(volts) = volts {
-                family.codes.insert(value.key().to_ascii_uppercase(), volts.nominal());
+            let (code, text) = (value.key().to_ascii_uppercase(), value.text());
+            if text.is_some_and(|text| text.as_str() == "adjustable") {
+                family.adjust_codes.push(code);
+            } else if let Some(volts) = text.and_then(|text| read_range(&text, Dimension::VOLTAGE)) {
+                family.codes.insert(code, volts.nominal());
             }
         }
     }

@@ -2,6 +2,7 @@
 
 use std::collections::BTreeMap;
 use std::path::PathBuf;
+use std::sync::OnceLock;
 
 use super::Knowledge;
 use super::family::family_of;
@@ -16,6 +17,13 @@ impl Knowledge {
     #[must_use]
     pub fn built_in() -> Self {
         read_all(Files::built_in(), &mut Vec::new())
+    }
+
+    /// What is compiled in, read once for the whole run.
+    #[must_use]
+    pub fn shared() -> &'static Self {
+        static SHARED: OnceLock<Knowledge> = OnceLock::new();
+        SHARED.get_or_init(Self::built_in)
     }
 
     /// What is compiled in, with the files of extra folders: a later file of the same name, and a later check folder of

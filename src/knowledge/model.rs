@@ -147,6 +147,8 @@ pub struct EsrWindow {
 pub struct CapacitorDemand {
     /// Minimum capacitance in farads; `None` where the sheet names none.
     pub minimum: Option<Cited<f64>>,
+    /// Minimum in farads where the capacitor is an aluminium electrolytic, where the sheet asks for more then.
+    pub minimum_electrolytic: Option<Cited<f64>>,
     /// How binding it is.
     pub kind: MinimumKind,
     /// Which capacitance it speaks of.
@@ -311,8 +313,10 @@ pub struct Family {
     pub names: Vec<String>,
     /// Output voltages (magnitudes, volts) that are made in fixed versions; settles what a voltage code means.
     pub voltages: Vec<f64>,
-    /// Voltage codes that do not spell their voltage: code without separators, upper case, to volts.
+    /// Voltage codes that do not spell their voltage, upper case, to volts.
     pub codes: BTreeMap<String, f64>,
+    /// Codes in the place of a voltage code that mean an adjustable version, upper case, beside `ADJ`.
+    pub adjust_codes: Vec<String>,
     /// Series, shunt, reference …
     pub kind: FamilyKind,
     /// The sign of its output.

@@ -17,6 +17,7 @@ fn told(problem: &Problem) -> String {
 fn every_built_in_file_loads_without_a_problem() {
     let (knowledge, problems) = Knowledge::load(&[]);
     assert_eq!(problems.iter().map(told).collect::<Vec<_>>(), Vec::<String>::new());
-    assert!(knowledge.families.len() >= 10);
+    assert!(knowledge.families.len() >= 150);
+    assert!(knowledge.technologies.len() == 6 && knowledge.supplies.len() >= 25);
     assert_eq!(knowledge.families.len(), Knowledge::built_in().families.len());
 }

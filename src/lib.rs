@@ -14,3 +14,5 @@ pub mod circuit;
 pub mod facts;
 pub mod knowledge;
 pub mod recognize;
+
+pub mod checks;

@@ -297,11 +297,18 @@ impl Quantity {
     /// The magnitude.
     #[must_use]
     pub fn magnitude(&self) -> Self {
-        // |x| = max(x, -x) holds for crossing bounds too, and falls back to x where the sign is certain.
         if self.worst.is_not_negative() && self.kind.is_not_negative() {
             return self.clone();
         }
-        self.greatest(&self.negated())
+        // |x| = max(x, -x) holds for crossing bounds too, but loses that it is nowhere below zero.
+        let mut figure = self.greatest(&self.negated());
+        let up = |pair: Pair| (pair.low().max(0.0), pair.high().max(0.0));
+        let ((low, high), (likely_low, likely_high), (kind_low, kind_high)) =
+            (up(figure.worst), up(figure.likely), up(figure.kind));
+        figure.worst = Pair::new(low, high);
+        figure.likely = Pair::new(likely_low, likely_high);
+        figure.kind = Pair::kind(kind_low, kind_high);
+        figure
     }
 
     /// The figure multiplied by a plain number.

@@ -113,14 +113,19 @@ fn judged(answer: Answer) -> Option<Judged> {
 /// The worst of several, or the best; among equals the first, or the one with the least slack where units agree.
 fn choose(answers: impl Iterator<Item = Judged>, worst: bool) -> Answer {
     let mut guessed = false;
+    let mut guess_settle: Vec<Settle> = Vec::new();
     let mut chosen: Option<Judged> = None;
     for one in answers {
         guessed |= one.decision.guessed;
+        if one.decision.guessed && one.verdict == Verdict::Holds {
+            guess_settle.extend(one.decision.settle.iter().cloned());
+        }
         let better = chosen.as_ref().is_none_or(|known| {
-            let order = one.verdict.cmp(&known.verdict).then_with(|| match (one.decision.slack, known.decision.slack) {
-                (Some((a, unit)), Some((b, other))) if unit == other => a.total_cmp(&b),
-                _ => std::cmp::Ordering::Equal,
-            });
+            let order =
+                one.verdict.cmp(&known.verdict).then_with(|| match (one.decision.slack, known.decision.slack) {
+                    (Some((a, unit)), Some((b, other))) if unit == other => a.total_cmp(&b),
+                    _ => std::cmp::Ordering::Equal,
+                });
             if worst { order.is_lt() } else { order.is_gt() }
         });
         if better {
@@ -130,6 +135,8 @@ fn choose(answers: impl Iterator<Item = Judged>, worst: bool) -> Answer {
     let Some(mut chosen) = chosen else { return Answer::NotAsked };
     if worst {
         chosen.decision.guessed |= guessed;
+        guess_settle.retain(|settle| !chosen.decision.settle.contains(settle));
+        chosen.decision.settle.extend(guess_settle);
     }
     Answer::Judged(chosen)
 }
@@ -229,13 +236,14 @@ impl Walk<'_> {
 }
 
 /// The value of a path in a context.
-pub(crate) fn value(context: Context<'_>, path: &Path) -> Value {
+pub(in crate::checks) fn value(context: Context<'_>, path: &Path) -> Value {
     Walk { context, guard: false }.value(path)
 }
 
 /// Whether a fact with a range stands behind figures of two of the sides.
 fn shares_a_fact(sides: &[Judged]) -> bool {
-    let figures = |judged: &Judged| judged.decision.figures.iter().map(|(_, figure)| figure.clone()).collect::<Vec<_>>();
+    let figures =
+        |judged: &Judged| judged.decision.figures.iter().map(|(_, figure)| figure.clone()).collect::<Vec<_>>();
     let sides: Vec<Vec<Quantity>> = sides.iter().map(figures).collect();
     sides.iter().enumerate().any(|(index, one)| {
         let others = sides.iter().skip(index + 1).flatten();

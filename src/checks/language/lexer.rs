@@ -8,7 +8,7 @@ pub const MAX_TOKENS: usize = 600;
 
 /// What a token is.
 #[derive(Debug, Clone, PartialEq)]
-pub enum Token {
+pub(super) enum Token {
     /// A number with its unit, as written: `0.5`, `2 V`, `4u7`.
     Number(String),
     /// A name or keyword; dots join the parts of a name.
@@ -32,7 +32,7 @@ const SIGNS: &[&str] = &[
 ///
 /// # Errors
 /// At the first character that the language does not know, an open quote, or past [`MAX_TOKENS`].
-pub fn tokens(text: &str) -> Result<Vec<(Token, Span)>, Refusal> {
+pub(super) fn tokens(text: &str) -> Result<Vec<(Token, Span)>, Refusal> {
     let mut found = Vec::new();
     let mut at = 0;
     while let Some(rest) = text.get(at..).filter(|rest| !rest.is_empty()) {
@@ -62,7 +62,8 @@ fn next(rest: &str, first: char) -> Result<(Token, usize), String> {
         return Ok((Token::Number(written.to_owned()), length));
     }
     if first.is_alphabetic() || first == '_' {
-        let length = rest.find(|c: char| !(c.is_alphanumeric() || c == '_' || c == '.' || c == '-')).unwrap_or(rest.len());
+        let length =
+            rest.find(|c: char| !(c.is_alphanumeric() || c == '_' || c == '.' || c == '-')).unwrap_or(rest.len());
         let word = rest.get(..length).unwrap_or("");
         // `..` and a trailing dot are signs; a hyphen belongs to a word only between letters (`npn-follower`), and
         // names have none, so that `a - b` needs its spaces.

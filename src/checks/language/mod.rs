@@ -10,6 +10,7 @@ mod typed;
 mod types;
 mod units;
 
+pub(in crate::checks) use eval::value;
 pub use eval::{Answer, Context, Decision, Judged};
 pub use lexer::{KEYWORDS, MAX_TOKENS};
 pub use names::{Figures, Names};
@@ -18,3 +19,4 @@ pub use refusal::Refusal;
 pub use syntax::{Each, Function, Node, NodeKind, Operator, Sentence};
 pub use typed::{Condition, Figure, Loop, Path, Relation, Requirement};
 pub use types::{Scope, noun};
+pub use units::constant;

@@ -20,7 +20,7 @@ pub trait Figures {
     fn label(&self, subject: Subject) -> String;
 }
 
-impl<C: ?Sized> Names for [Definition<C>] {
+impl<C: ?Sized> Names for &[Definition<C>] {
     fn kind(&self, of: SubjectKind, name: &str) -> Option<ValueKind> {
         self.iter().find(|entry| entry.of == of && entry.name == name).map(|entry| entry.kind)
     }
@@ -30,7 +30,7 @@ impl<C: ?Sized> Names for [Definition<C>] {
     }
 }
 
-impl Names for [(SubjectKind, &str, ValueKind)] {
+impl Names for &[(SubjectKind, &str, ValueKind)] {
     fn kind(&self, of: SubjectKind, name: &str) -> Option<ValueKind> {
         self.iter().find(|entry| entry.0 == of && entry.1 == name).map(|entry| entry.2)
     }
@@ -41,7 +41,7 @@ impl Names for [(SubjectKind, &str, ValueKind)] {
 }
 
 /// Names from several tables, the first that knows a name wins.
-impl Names for [&dyn Names] {
+impl Names for &[&dyn Names] {
     fn kind(&self, of: SubjectKind, name: &str) -> Option<ValueKind> {
         self.iter().find_map(|names| names.kind(of, name))
     }

@@ -170,7 +170,11 @@ impl Parser {
     fn node(&mut self, least: u8) -> Result<Node, Refusal> {
         self.nesting += 1;
         if self.nesting > MAX_DEPTH {
-            return Err(Refusal::new(self.span(), format!("the expression nests deeper than {MAX_DEPTH}"), "too deep"));
+            return Err(Refusal::new(
+                self.span(),
+                format!("the expression nests deeper than {MAX_DEPTH}"),
+                "too deep",
+            ));
         }
         let mut left = self.prefix()?;
         loop {

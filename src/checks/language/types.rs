@@ -47,14 +47,20 @@ impl Scope<'_> {
             let kind = match self.names.kind(self.about, &each.group) {
                 Some(ValueKind::Group(kind)) => kind,
                 Some(_) => {
-                    return Err(Refusal::new(each.group_span, format!("`{}` is no group", each.group), "not a group"));
+                    return Err(Refusal::new(
+                        each.group_span,
+                        format!("`{}` is no group", each.group),
+                        "not a group",
+                    ));
                 }
                 None => return Err(self.unknown(&each.group, each.group_span, self.about, "")),
             };
             let taken = self.names.kind(self.about, &each.variable).is_some();
             if taken || each.variable.contains('.') || self.settings.contains_key(&each.variable) {
                 let message = format!("`{}` has a meaning already", each.variable);
-                return Err(Refusal::new(each.variable_span, message, "taken").help("choose another name for the loop"));
+                return Err(
+                    Refusal::new(each.variable_span, message, "taken").help("choose another name for the loop")
+                );
             }
             self.each = Some(Loop { variable: each.variable.clone(), group: each.group.clone(), kind });
         }
@@ -121,7 +127,8 @@ impl Scope<'_> {
         let made = |figure, dimension| Ok(Typed { figure, dimension, bare: false });
         match &node.kind {
             NodeKind::Number(text) => {
-                let (value, dimension) = units::constant(text).map_err(|refusal| refusal.shifted(node.span.start()))?;
+                let (value, dimension) =
+                    units::constant(text).map_err(|refusal| refusal.shifted(node.span.start()))?;
                 let bare = text.ends_with(|c: char| c.is_ascii_digit()) && dimension == Dimension::ONE;
                 Ok(Typed { figure: Figure::Constant(value, dimension), dimension, bare })
             }
@@ -148,7 +155,8 @@ impl Scope<'_> {
             same(&one, left.span, &other, right.span)?;
             let (dimension, bare) = (one.dimension, one.bare && other.bare);
             let (one, other) = (Box::new(one.figure), Box::new(other.figure));
-            let figure = if operator == Operator::Plus { Figure::Sum(one, other) } else { Figure::Difference(one, other) };
+            let figure =
+                if operator == Operator::Plus { Figure::Sum(one, other) } else { Figure::Difference(one, other) };
             return Ok(Typed { figure, dimension, bare });
         }
         if operator != Operator::Times && operator != Operator::Over {
@@ -157,7 +165,8 @@ impl Scope<'_> {
         let (one, other) = (self.typed(left)?, self.typed(right)?);
         let bare = one.bare && other.bare;
         let product = operator == Operator::Times;
-        let dimension = if product { one.dimension.times(other.dimension) } else { one.dimension.over(other.dimension) };
+        let dimension =
+            if product { one.dimension.times(other.dimension) } else { one.dimension.over(other.dimension) };
         if !product && matches!(other.figure, Figure::Constant(0.0, _)) {
             return Err(Refusal::new(right.span, "nothing can be divided by zero", "zero"));
         }
@@ -218,7 +227,9 @@ impl Scope<'_> {
                 (path, ValueKind::Word(words)) => Ok((path, words)),
                 (_, ValueKind::Flag) => Err(Refusal::new(node.span, format!("`{name}` is a yes or no"), "no word")
                     .help(format!("write `{name}` or `not {name}`"))),
-                (_, kind) => Err(Refusal::new(node.span, format!("`{name}` is {} and no word", noun(kind)), "no word")),
+                (_, kind) => {
+                    Err(Refusal::new(node.span, format!("`{name}` is {} and no word", noun(kind)), "no word"))
+                }
             };
         }
         Err(Refusal::new(node.span, "a name that stands for a word is needed here", "no name"))
@@ -309,7 +320,8 @@ fn member(words: &'static [&'static str], word: &str, span: Span) -> Result<Stri
     if words.is_empty() || words.contains(&word) {
         return Ok(word.to_owned());
     }
-    let near = nearest(word, words.iter().copied()).map(|near| format!("did you mean `{near}`? ")).unwrap_or_default();
+    let near =
+        nearest(word, words.iter().copied()).map(|near| format!("did you mean `{near}`? ")).unwrap_or_default();
     Err(Refusal::new(span, format!("`{word}` is none of the words that can stand here"), "unknown word")
         .help(format!("{near}the words are {}", words.join(", "))))
 }

@@ -1,0 +1,270 @@
+//! Asks every check of every subject that it is about.
+
+use std::cmp::Ordering;
+use std::collections::BTreeMap;
+
+use super::check::{Check, Rule};
+use super::finding::{Counts, Finding, Judgement, Outcome, Point};
+use super::language::{Answer, Condition, Context, Decision, Figures, Judged, Path, value};
+use super::set::Checks;
+use super::verdict::{Level, Verdict};
+use super::wording::{Filling, missing};
+use crate::facts::{Subject, Value};
+
+/// Asks every check of every subject that it is about.
+#[must_use]
+pub fn judge(checks: &Checks, subjects: &[Subject], figures: &dyn Figures) -> Judgement {
+    let mut subjects: Vec<(String, Subject)> =
+        subjects.iter().map(|subject| (figures.label(*subject), *subject)).collect();
+    subjects.sort_by(|one, other| natural(&one.0, &other.0).then_with(|| one.1.cmp(&other.1)));
+    let mut judged: Vec<(Outcome, Option<Finding>)> = Vec::new();
+    for check in checks.iter() {
+        for (_, subject) in subjects.iter().filter(|(_, subject)| subject.kind() == check.about) {
+            judged.extend(ask(check, *subject, figures));
+        }
+    }
+    suppress(checks, &mut judged);
+    let mut outcomes = Vec::new();
+    let mut findings = Vec::new();
+    for (outcome, finding) in judged {
+        findings.extend(finding.filter(|_| outcome.suppressed_by.is_none()));
+        outcomes.push(outcome);
+    }
+    // Stable: within a level the order of checks, then of subjects, stays.
+    findings.sort_by_key(|finding: &Finding| finding.level);
+    let findings = merge(findings, figures);
+    Judgement { findings, counts: Counts::of(&outcomes), outcomes }
+}
+
+/// Asks one check of one subject; `None` where it does not apply.
+#[must_use]
+pub fn ask(check: &Check, subject: Subject, figures: &dyn Figures) -> Option<(Outcome, Option<Finding>)> {
+    let context = Context { figures, settings: &check.settings, subject, member: None };
+    let gate = Gate::of(check.when.as_ref(), context)?;
+    let mut worst: Option<(usize, &Rule, Judged)> = None;
+    for (index, rule) in check.requires.iter().enumerate() {
+        let Some(inner) = Gate::of(rule.when.as_ref(), context) else { continue };
+        let Answer::Judged(judged) = rule.holds.evaluate(context) else { continue };
+        let mut judged = inner.pass(gate.pass(judged));
+        for cap in [rule.at_most, check.at_most].into_iter().flatten() {
+            judged.verdict = judged.verdict.at_most(cap);
+        }
+        if worst.as_ref().is_none_or(|(_, _, known)| judged.verdict < known.verdict) {
+            worst = Some((index, rule, judged));
+        }
+    }
+    let (index, rule, judged) = worst?;
+    let outcome = Outcome { check: check.name.clone(), subject, verdict: judged.verdict, suppressed_by: None };
+    Some((outcome, say(check, index, rule, judged, context)))
+}
+
+/// Whether something is asked, and how surely.
+#[derive(Debug)]
+struct Gate {
+    verdict: Verdict,
+    decision: Decision,
+}
+
+impl Gate {
+    /// `None` where it is not asked: the condition does not apply, or speaks against it with guesses at nominal.
+    fn of(when: Option<&Condition>, context: Context<'_>) -> Option<Self> {
+        let Some(when) = when else {
+            return Some(Self { verdict: Verdict::Holds, decision: Decision::default() });
+        };
+        match when.guards(context) {
+            Answer::Judged(Judged { verdict: Verdict::Fails | Verdict::Doubtful, .. }) | Answer::NotAsked => None,
+            Answer::Judged(Judged { verdict, decision }) => Some(Self { verdict, decision }),
+        }
+    }
+
+    /// What a requirement comes to behind the gate: where a guess opened it, it cannot fail; where it is unknown
+    /// whether it is open, what breaks is unknown.
+    fn pass(&self, mut judged: Judged) -> Judged {
+        let guessed = self.decision.guessed || self.verdict == Verdict::Tight;
+        if judged.verdict == Verdict::Holds || (!guessed && self.verdict != Verdict::Unknown) {
+            return judged;
+        }
+        if self.verdict == Verdict::Unknown {
+            judged.verdict = Verdict::Unknown;
+            judged.decision.missing.extend(self.decision.missing.iter().cloned());
+        } else {
+            judged.verdict = judged.verdict.at_most(Verdict::Doubtful);
+        }
+        for settle in &self.decision.settle {
+            if !judged.decision.settle.contains(settle) {
+                judged.decision.settle.push(settle.clone());
+            }
+        }
+        judged
+    }
+}
+
+fn say(check: &Check, index: usize, rule: &Rule, judged: Judged, context: Context<'_>) -> Option<Finding> {
+    let Judged { verdict, decision } = judged;
+    let level = verdict.level()?;
+    let context = Context { member: decision.member, ..context };
+    let filling = Filling { context, verdict, decision: &decision };
+    let template = rule.says.sentence(verdict).or_else(|| check.says.sentence(verdict));
+    let message = template.map_or_else(
+        || {
+            format!(
+                "{} of {} cannot be judged: {}",
+                check.name,
+                context.figures.label(context.subject),
+                missing(&decision)
+            )
+        },
+        |template| template.fill(filling).text,
+    );
+    let hints = if rule.hints.is_empty() { &check.hints } else { &rule.hints };
+    // What to change is known only where something breaks; what is unknown is to be declared first.
+    let hints = hints.iter().filter(|_| verdict != Verdict::Unknown).map(|hint| hint.fill(filling));
+    let mut lines: Vec<String> = Vec::new();
+    for hint in hints.filter(|hint| hint.whole) {
+        if !lines.contains(&hint.text) {
+            lines.push(hint.text);
+        }
+    }
+    let mut quantities = decision.figures.clone();
+    for path in template.into_iter().flat_map(super::template::Template::figures) {
+        let name = path.written();
+        if let Value::Figure(figure) = value(context, path)
+            && !matches!(path, Path::Setting(_))
+            && quantities.iter().all(|(known, _)| *known != name)
+        {
+            quantities.push((name, figure));
+        }
+    }
+    Some(Finding {
+        check: check.name.clone(),
+        verdict,
+        level,
+        subject: context.subject,
+        member: decision.member,
+        requirement: index,
+        message,
+        hints: lines,
+        slack: decision.slack,
+        quantities,
+        settle: decision.settle,
+        missing: decision.missing.iter().map(|evidence| evidence.key.clone()).collect(),
+        primary: point(&check.points.primary, context),
+        also: check.points.also.iter().flat_map(|name| point(name, context)).collect(),
+        merged: Vec::new(),
+        suppresses: Vec::new(),
+    })
+}
+
+/// What a name of `[points]` stands for.
+fn point(name: &str, context: Context<'_>) -> Vec<Point> {
+    if name == "subject" {
+        return vec![Point::Subject(context.subject)];
+    }
+    match context.figures.value(context.subject, name) {
+        Value::Word(word) if !word.word.is_empty() => vec![Point::Named { role: name.to_owned(), name: word.word }],
+        Value::Group(members) => members.into_iter().map(Point::Subject).collect(),
+        Value::Inapplicable(_) => context.member.map(Point::Subject).into_iter().collect(),
+        _ => Vec::new(),
+    }
+}
+
+/// Marks what another finding about the same subject makes superfluous: a milder or equal verdict beside one that
+/// fails or is doubtful.
+fn suppress(checks: &Checks, judged: &mut [(Outcome, Option<Finding>)]) {
+    let known: BTreeMap<(String, Subject), Verdict> =
+        judged.iter().map(|(outcome, _)| ((outcome.check.clone(), outcome.subject), outcome.verdict)).collect();
+    let mut told: Vec<(String, Subject, String)> = Vec::new();
+    for (outcome, finding) in judged.iter_mut().filter(|(_, finding)| finding.is_some()) {
+        let others = checks.get(&outcome.check).map_or(&[][..], |check| &check.suppressed_by);
+        let by = others.iter().find(|other| {
+            let verdict = known.get(&((*other).clone(), outcome.subject));
+            verdict.is_some_and(|verdict| *verdict <= Verdict::Doubtful && *verdict <= outcome.verdict)
+        });
+        if let Some(by) = by {
+            told.push((by.clone(), outcome.subject, outcome.check.clone()));
+            outcome.suppressed_by = Some(by.clone());
+            *finding = None;
+        }
+    }
+    for (by, subject, check) in told {
+        let finding = judged.iter_mut().find(|(outcome, _)| outcome.check == by && outcome.subject == subject);
+        if let Some((_, Some(finding))) = finding {
+            finding.suppresses.push(check);
+        }
+    }
+}
+
+/// One note for what the same missing figures leave unknown: the first finding tells the others.
+fn merge(findings: Vec<Finding>, figures: &dyn Figures) -> Vec<Finding> {
+    let mut kept: Vec<Finding> = Vec::new();
+    let mut by_missing: BTreeMap<Vec<crate::quantity::Key>, usize> = BTreeMap::new();
+    for finding in findings {
+        let mut key = finding.missing.clone();
+        key.sort();
+        key.dedup();
+        let mergeable = finding.verdict == Verdict::Unknown && !key.is_empty();
+        if let Some(first) = by_missing.get(&key).filter(|_| mergeable).and_then(|index| kept.get_mut(*index)) {
+            first.merged.push((finding.check, finding.subject));
+            continue;
+        }
+        if mergeable {
+            by_missing.insert(key, kept.len());
+        }
+        kept.push(finding);
+    }
+    for finding in kept.iter_mut().filter(|finding| !finding.merged.is_empty()) {
+        let mut by_check: Vec<(&str, Vec<String>)> = Vec::new();
+        for (check, subject) in &finding.merged {
+            let label = figures.label(*subject);
+            match by_check.iter_mut().find(|(known, _)| known == check) {
+                Some((_, labels)) => labels.push(label),
+                None => by_check.push((check, vec![label])),
+            }
+        }
+        let told: Vec<String> =
+            by_check.iter().map(|(check, labels)| format!("{check} of {}", labels.join(", "))).collect();
+        finding.message.push_str(&format!("; nor can {}", told.join("; ")));
+    }
+    kept
+}
+
+/// Compares labels as people sort them: runs of digits by their value (`U2` before `U10`).
+#[must_use]
+pub fn natural(one: &str, other: &str) -> Ordering {
+    let (mut a, mut b) = (one, other);
+    loop {
+        let (left, right) = (digits(a), digits(b));
+        let order = match (left, right) {
+            (0, 0) => match (a.chars().next(), b.chars().next()) {
+                (None, None) => return one.cmp(other),
+                (None, Some(_)) => return Ordering::Less,
+                (Some(_), None) => return Ordering::Greater,
+                (Some(x), Some(y)) => {
+                    (a, b) = (a.get(x.len_utf8()..).unwrap_or(""), b.get(y.len_utf8()..).unwrap_or(""));
+                    x.cmp(&y)
+                }
+            },
+            (0, _) => a.chars().next().map_or(Ordering::Less, |x| x.cmp(&'0')),
+            (_, 0) => b.chars().next().map_or(Ordering::Greater, |y| '0'.cmp(&y)),
+            _ => {
+                let (x, y) = (a.get(..left).unwrap_or(""), b.get(..right).unwrap_or(""));
+                (a, b) = (a.get(left..).unwrap_or(""), b.get(right..).unwrap_or(""));
+                let (x, y) = (x.trim_start_matches('0'), y.trim_start_matches('0'));
+                x.len().cmp(&y.len()).then_with(|| x.cmp(y))
+            }
+        };
+        if order != Ordering::Equal {
+            return order;
+        }
+    }
+}
+
+fn digits(text: &str) -> usize {
+    text.bytes().take_while(u8::is_ascii_digit).count()
+}
+
+/// The level of the worst finding.
+#[must_use]
+pub fn worst_level(findings: &[Finding]) -> Option<Level> {
+    findings.iter().map(|finding| finding.level).min()
+}

@@ -1,0 +1,25 @@
+//! Checks as files: the language they are written in, what they ask, and the verdicts.
+
+mod amount;
+mod check;
+mod finding;
+mod judge;
+pub mod language;
+mod load;
+mod set;
+mod template;
+mod verdict;
+mod wording;
+
+pub use check::{Check, Citation, Points, Rule, Says};
+pub use finding::{Counts, Finding, Judgement, Outcome, Point};
+pub use judge::{ask, judge, natural, worst_level};
+pub use language::{Figures, Names};
+pub use load::read;
+pub use set::{Checks, Override};
+pub use template::Template;
+pub use verdict::{Level, Verdict};
+pub use wording::{Filling, Sentence, missing};
+
+#[cfg(test)]
+mod tests;

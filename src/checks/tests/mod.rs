@@ -1,0 +1,7 @@
+//! Tests of the room: a table of names, made-up boards, load errors, verdicts and the laws.
+
+mod built_in;
+mod fake;
+mod laws;
+mod load;
+mod verdicts;

@@ -42,8 +42,15 @@ impl<'a> Reader<'a> {
         let suppressed_by = root.texts("suppressed_by").iter().map(|text| text.as_str().to_owned()).collect();
         let (settings, settings_text) = self.settings(&mut root);
         let sources = self.sources(&mut root);
-        // Without its kind of subject no name can be looked up: what is above is all that can be said.
-        self.about = about?;
+        let Some(about) = about else {
+            // Without its kind of subject no name can be looked up: what is not a key is all that can still be said.
+            for key in ["holds", "requires", "says", "points", "hints"] {
+                root.take(key);
+            }
+            root.finish();
+            return None;
+        };
+        self.about = about;
         let dimensions = settings.iter().map(|(name, value): (&String, &Quantity)| (name.clone(), value.dimension()));
         let dimensions: BTreeMap<String, Dimension> = dimensions.collect();
         let when = when.and_then(|text| self.guard(&text, &dimensions));
@@ -51,7 +58,8 @@ impl<'a> Reader<'a> {
         let says = root.table("says").map(|table| self.says(table, &dimensions, None)).unwrap_or_default();
         let hints = self.hints(&mut root, &dimensions);
         let points = self.points(&mut root, &requires);
-        if !says.speaks() && requires.iter().any(|rule| !rule.says.speaks()) {
+        let silent = !says.speaks() && requires.iter().any(|rule| !rule.says.speaks());
+        if silent && !self.document.has_problems() {
             root.refuse(
                 "the check has no sentence for what it finds",
                 "`[says]` is missing or empty",

@@ -246,7 +246,12 @@ impl Scope<'_> {
                     Some(kind) => Ok((Path::Member(variable.to_owned(), inner.to_owned()), kind)),
                     None => Err(self.unknown(inner, span, each.kind, &format!("{variable}."))),
                 },
-                _ => Err(Refusal::new(span, format!("`{variable}` is no variable of a loop here"), "unknown name")),
+                _ if self.names.kind(self.about, variable).is_some() => {
+                    Err(Refusal::new(span, format!("`{variable}` has no part `{inner}`"), "unknown part")
+                        .help(format!("in sentences: `{variable}.low`, `{variable}.nominal`, `{variable}.high`")))
+                }
+                _ => Err(Refusal::new(span, format!("`{variable}` is no variable of a loop here"), "unknown name")
+                    .help("a loop is begun by `for each name in group:`")),
             };
         }
         match self.names.kind(self.about, name) {

@@ -219,9 +219,8 @@ proptest! {
         let said = verdict(&condition, &leaves);
         let picked = |within: bool| -> Vec<Leaf> {
             let pick = |(leaf, share): (&Leaf, &f64)| {
-                let beyond = if within { 0.0 } else { 1.0 };
-                let low = leaf.low - (leaf.beyond[0] * beyond).min(50.0);
-                let high = leaf.high + (leaf.beyond[1] * beyond).min(50.0);
+                let beyond = leaf.beyond.map(|beyond| if within { 0.0 } else { beyond.min(50.0) });
+                let (low, high) = (leaf.low - beyond[0], leaf.high + beyond[1]);
                 let value = if leaf.state == State::Fact { leaf.nominal } else { low + (high - low) * share };
                 Leaf { low: value, nominal: value, high: value, beyond: [0.0, 0.0], state: State::Fact }
             };

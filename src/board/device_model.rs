@@ -222,6 +222,13 @@ impl DeviceModel {
         }
     }
 
+    /// Gives a parameter that is there another value.
+    pub(super) fn replace(&mut self, name: &str, range: Range) {
+        if let Some(known) = self.parameters.get_mut(name) {
+            *known = range;
+        }
+    }
+
     /// What it stands for.
     #[must_use]
     pub fn kind(&self) -> ModelKind {

@@ -24,4 +24,11 @@ impl TextFault {
     ) -> Self {
         Self { place, message: message.into(), label: label.into(), help: help.into() }
     }
+
+    /// The same fault of a text that holds this one from `offset` on.
+    #[must_use]
+    pub(super) fn shifted(mut self, offset: usize) -> Self {
+        self.place = self.place.start + offset..self.place.end + offset;
+        self
+    }
 }

@@ -1,16 +1,25 @@
 //! What a netlist cannot hold: the board file, the house file above it, and facts in fields on symbols.
 //!
-//! [`find`] tells where the two files lie, [`read_source`] reads one, [`Board::merge`] lays one over the other, and
-//! the `resolve` and `check` functions look up the names that they use. Every value is a [`Declared`] and knows its
-//! place.
+//! [`Board::open`] does it all for a netlist: [`find`] tells where the two files lie, [`read_source`] reads one, [`Board::read`] understands it,
+//! [`Board::merge`] lays one over the other, [`Board::with_symbol_fields`] adds what the fields tell, and the
+//! `resolve` and `check` functions look up the names that they use. Every value is a [`Declared`] and knows its place.
 
 mod declared;
 mod device_model;
 mod fault;
+mod fields;
 mod files;
 mod merge;
 mod model;
+mod read;
+mod read_entries;
+mod read_part;
+mod reader;
 mod resolve;
+mod simulation;
+#[cfg(test)]
+mod tests;
+mod texts;
 
 pub use declared::{Declared, Place};
 pub use device_model::{Allowed, DeviceModel, ModelKind};
@@ -20,3 +29,4 @@ pub use model::{
     Accept, Board, Esr, LoadEntry, LoadKind, PartEntry, RailEntry, SettingValue, Slack, Standard, StandardVoltage,
     SupplyEntry, SupplyNodes,
 };
+pub use read::Options;

@@ -84,7 +84,7 @@ impl SupplyNodes {
 pub struct Standard {
     /// Its name as written.
     pub name: String,
-    /// Its voltage, once it has been looked up with `Board::resolve_standards`.
+    /// Its voltage, once it has been looked up with [`Board::resolve`].
     pub found: Option<StandardVoltage>,
 }
 
@@ -177,7 +177,7 @@ pub struct Esr {
 pub struct PartEntry {
     /// Reference designator.
     pub reference: Declared<String>,
-    /// Capacitor technology or dielectric: lower case, single spaces; the canonical name after `Board::resolve_technologies`
+    /// Capacitor technology or dielectric: lower case, single spaces; the canonical name after [`Board::resolve`]
     /// stands in `technology_name`.
     pub technology: Option<Declared<String>>,
     /// The technology's own name (`ceramic-1` …), once it has been looked up.

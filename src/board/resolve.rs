@@ -4,6 +4,7 @@
 use std::collections::BTreeSet;
 
 use crate::circuit::Circuit;
+use crate::knowledge::Knowledge;
 use crate::quantity::{Dimension, Grade, Quantity};
 use crate::source::Problem;
 use crate::source::toml::nearest;
@@ -12,6 +13,23 @@ use super::declared::{Declared, Place};
 use super::model::{Board, Standard, StandardVoltage, SupplyEntry};
 
 impl Board {
+    /// Looks up every standard supply, capacitor technology and part family that is named.
+    #[must_use]
+    pub fn resolve(&mut self, knowledge: &Knowledge) -> Vec<Problem> {
+        let standard = |name: &str| {
+            let voltage = &knowledge.supply(name)?.voltage;
+            let (range, source) = (voltage.value, voltage.source.clone());
+            Some(StandardVoltage { range, source, recalled: voltage.recalled })
+        };
+        let technology = |words: &str| knowledge.technology(words).map(|found| found.name.clone());
+        let words = knowledge.technologies.iter().flat_map(|one| std::iter::once(&one.name).chain(&one.words));
+        let mut problems = self.resolve_standards(standard, knowledge.supplies.iter().map(|one| one.name.as_str()));
+        problems.extend(self.resolve_technologies(technology, words.map(String::as_str)));
+        let families = knowledge.families.iter().map(|one| one.name.as_str());
+        problems.extend(self.check_families(|name| knowledge.family(name).is_some(), families));
+        problems
+    }
+
     /// Looks up every standard supply that is named. `names` are the names to offer for an unknown one.
     #[must_use]
     pub fn resolve_standards<'a>(
@@ -50,13 +68,16 @@ impl Board {
         problems
     }
 
-    /// Every part family that is named and not among `names`.
+    /// Every part family that is named and that `knows` does not know; `names` are the names to offer.
     #[must_use]
-    pub fn check_families<'a>(&self, names: impl IntoIterator<Item = &'a str> + Clone) -> Vec<Problem> {
-        let known: BTreeSet<&str> = names.clone().into_iter().collect();
+    pub fn check_families<'a>(
+        &self,
+        knows: impl Fn(&str) -> bool,
+        names: impl IntoIterator<Item = &'a str> + Clone,
+    ) -> Vec<Problem> {
         let families = self.parts.iter().filter_map(|part| part.family.as_ref());
         families
-            .filter(|family| !known.contains(family.value.as_str()))
+            .filter(|family| !knows(&family.value))
             .map(|family| {
                 let message = format!("`{}` is no part family that is known", family.value);
                 unknown(message, "not known", &family.value, names.clone(), family)

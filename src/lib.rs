@@ -3,16 +3,23 @@
 //! Data flows one way through the modules below, in the order in which they are listed: each uses only those
 //! before it.
 
+// Blank lines keep this order, which is that of the flow.
 pub mod source;
 
 pub mod quantity;
 
 pub mod netlist;
 
-pub mod board;
 pub mod circuit;
-pub mod facts;
+
 pub mod knowledge;
+
+pub mod board;
+
 pub mod recognize;
 
+pub mod facts;
+
 pub mod checks;
+
+pub mod review;

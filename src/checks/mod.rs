@@ -2,6 +2,7 @@
 
 mod amount;
 mod check;
+mod figures;
 mod finding;
 mod judge;
 pub mod language;
@@ -12,6 +13,7 @@ mod verdict;
 mod wording;
 
 pub use check::{Check, Citation, Points, Rule, Says};
+pub use figures::DefinedNames;
 pub use finding::{Counts, Finding, Judgement, Outcome, Point};
 pub use judge::{ask, judge, natural, worst_level};
 pub use language::{Figures, Names};

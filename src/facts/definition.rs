@@ -1,6 +1,6 @@
 //! What a name means: one entry for each figure, in the file that computes it.
 
-use super::{Subject, SubjectKind, Value};
+use super::{Facts, Subject, SubjectKind, Value};
 use crate::quantity::Dimension;
 
 /// What a name stands for, for every subject.
@@ -16,9 +16,9 @@ pub enum ValueKind {
     Group(SubjectKind),
 }
 
-/// A name of the check language. `C` is what it is computed from.
+/// A name of the check language.
 #[derive(Debug)]
-pub struct Definition<C: ?Sized> {
+pub struct Definition {
     /// The name, lower case with underscores.
     pub name: &'static str,
     /// What it is a figure of.
@@ -30,5 +30,5 @@ pub struct Definition<C: ?Sized> {
     /// The source file that computes it.
     pub defined_in: &'static str,
     /// Computes it.
-    pub compute: fn(&C, Subject) -> Value,
+    pub compute: fn(&Facts<'_>, Subject) -> Value,
 }

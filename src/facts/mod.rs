@@ -1,7 +1,53 @@
 //! The figures about one subject, each computed once, on demand.
+//!
+//! A figure is one [`Definition`] in the file that computes it, and that file one line in [`DEFINITIONS`].
 
+mod capacitance;
+mod capacitor;
+mod circuit_values;
+mod context;
 mod definition;
+mod demand;
+mod dropout;
+mod enable;
+mod esr;
+mod family_figure;
+mod feeds;
+mod headroom;
+mod identity;
+mod load;
+mod output;
+mod rails;
+mod shunt;
+mod startup;
+mod target;
+mod technology;
 mod value;
 
+pub use context::Facts;
 pub use definition::{Definition, ValueKind};
+pub use rails::{Rail, RailOrigin};
 pub use value::{Flag, Subject, SubjectKind, Value, Word};
+
+/// Every name of the check language, by the file that computes it.
+pub const DEFINITIONS: &[&[Definition]] = &[
+    identity::DEFINITIONS,
+    output::DEFINITIONS,
+    target::DEFINITIONS,
+    load::DEFINITIONS,
+    headroom::DEFINITIONS,
+    dropout::DEFINITIONS,
+    capacitance::DEFINITIONS,
+    demand::DEFINITIONS,
+    esr::DEFINITIONS,
+    capacitor::DEFINITIONS,
+    enable::DEFINITIONS,
+    shunt::DEFINITIONS,
+    startup::DEFINITIONS,
+];
+
+/// The definition of a name for a kind of subject.
+#[must_use]
+pub fn definition(of: SubjectKind, name: &str) -> Option<&'static Definition> {
+    DEFINITIONS.iter().flat_map(|file| file.iter()).find(|entry| entry.of == of && entry.name == name)
+}

@@ -294,6 +294,47 @@ impl Quantity {
         Self::monotone(self.dimension, &[(self, Slope::Rising), (other, Slope::Rising)], |v| first(v).max(second(v)))
     }
 
+    /// One of two figures, of which this one bounds it below and the other above: which of them it is nobody tells,
+    /// so the range between is a fact's. The nominal value is the upper one's.
+    #[must_use]
+    pub fn hull(&self, upper: &Self) -> Self {
+        let mut figure = self.least(upper);
+        figure.worst = Pair::new(self.worst.low(), upper.worst.high());
+        figure.likely = Pair::new(self.likely().low(), upper.likely().high());
+        figure.kind = Pair::kind(self.kind.low(), upper.kind.high());
+        figure.nominal = upper.nominal;
+        figure
+    }
+
+    /// The figure at the upper end of its facts. Guesses in it stay what they are, so nothing stronger can be said.
+    #[must_use]
+    pub fn at_high(&self) -> Self {
+        self.at_end(Pair::high)
+    }
+
+    /// The figure at the lower end of its facts.
+    #[must_use]
+    pub fn at_low(&self) -> Self {
+        self.at_end(Pair::low)
+    }
+
+    fn at_end(&self, end: fn(Pair) -> f64) -> Self {
+        // Where guesses rule, the reversed pair crosses: its ends are the guesses', not the facts'.
+        if self.is_missing() || self.kind.width() < 0.0 {
+            return self.clone();
+        }
+        let mut figure = self.clone();
+        let only = |pair: Pair| Pair::new(end(pair), end(pair));
+        figure.worst = if self.guesses.is_empty() { only(self.worst) } else { self.worst };
+        figure.likely = only(self.likely());
+        figure.kind = only(self.kind);
+        if self.guesses.is_empty() {
+            figure.nominal = end(self.worst);
+        }
+        figure.ranged_facts.clear();
+        figure
+    }
+
     /// The magnitude.
     #[must_use]
     pub fn magnitude(&self) -> Self {

@@ -7,6 +7,7 @@
 //! parts stand in family files, never here.
 
 mod bank;
+mod declared;
 mod divider;
 mod family_match;
 mod feed;

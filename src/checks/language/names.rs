@@ -1,6 +1,6 @@
 //! The names that an expression may use, and where their values come from.
 
-use crate::facts::{Definition, Subject, SubjectKind, Value, ValueKind};
+use crate::facts::{Subject, SubjectKind, Value, ValueKind};
 
 /// The names that are defined, for typing.
 pub trait Names {
@@ -18,16 +18,6 @@ pub trait Figures {
 
     /// How a message names a subject: its reference or net.
     fn label(&self, subject: Subject) -> String;
-}
-
-impl<C: ?Sized> Names for &[Definition<C>] {
-    fn kind(&self, of: SubjectKind, name: &str) -> Option<ValueKind> {
-        self.iter().find(|entry| entry.of == of && entry.name == name).map(|entry| entry.kind)
-    }
-
-    fn known(&self, of: SubjectKind) -> Vec<&str> {
-        self.iter().filter(|entry| entry.of == of).map(|entry| entry.name).collect()
-    }
 }
 
 impl Names for &[(SubjectKind, &str, ValueKind)] {

@@ -1,0 +1,208 @@
+//! What figures are computed from, and the memory of those that were.
+
+use std::cell::{OnceCell, RefCell};
+use std::collections::HashMap;
+use std::rc::Rc;
+
+use super::rails::{self, Rails};
+use super::{Subject, Value, definition};
+use crate::board::Board;
+use crate::circuit::{Circuit, Device, DeviceId, NetId};
+use crate::knowledge::{Family, Knowledge};
+use crate::quantity::{Dimension, Evidence, Grade, Quantity, Range};
+use crate::recognize::{Bank, Design, Regulator, RegulatorId, Side, bank_to};
+
+/// Where no ambient is declared (°C).
+const AMBIENT: (f64, f64) = (-10.0, 50.0);
+/// The temperature at which sheets state their typical figures (°C).
+const ROOM: f64 = 25.0;
+
+/// The figures of a board, each computed once, on demand.
+#[derive(Debug)]
+pub struct Facts<'a> {
+    design: &'a Design,
+    board: &'a Board,
+    knowledge: &'a Knowledge,
+    rails: OnceCell<Rails>,
+    // Never gone through in order: only looked up.
+    values: RefCell<HashMap<(Subject, &'static str), Value>>,
+    banks: RefCell<HashMap<(NetId, Option<NetId>, Side), Rc<Bank>>>,
+    index: OnceCell<Index>,
+}
+
+/// Regulators by where they lie; looked up, never gone through in order.
+#[derive(Debug, Default)]
+struct Index {
+    by_input: HashMap<NetId, Vec<usize>>,
+    by_output: HashMap<NetId, Vec<usize>>,
+    by_device: HashMap<DeviceId, Vec<usize>>,
+}
+
+impl<'a> Facts<'a> {
+    /// Figures of a design under what is declared and known.
+    #[must_use]
+    pub fn new(design: &'a Design, board: &'a Board, knowledge: &'a Knowledge) -> Self {
+        Self {
+            design,
+            board,
+            knowledge,
+            rails: OnceCell::new(),
+            values: RefCell::new(HashMap::new()),
+            banks: RefCell::new(HashMap::new()),
+            index: OnceCell::new(),
+        }
+    }
+
+    /// The design.
+    #[must_use]
+    pub fn design(&self) -> &'a Design {
+        self.design
+    }
+
+    /// What is declared.
+    #[must_use]
+    pub fn board(&self) -> &'a Board {
+        self.board
+    }
+
+    /// What is known.
+    #[must_use]
+    pub fn knowledge(&self) -> &'a Knowledge {
+        self.knowledge
+    }
+
+    /// The circuit.
+    #[must_use]
+    pub fn circuit(&self) -> &'a Circuit {
+        &self.design.circuit
+    }
+
+    /// Every regulator as a subject, in order.
+    pub fn regulators(&self) -> impl Iterator<Item = (RegulatorId, &'a Regulator)> + use<'a> {
+        self.design.regulators.iter().enumerate().map(|(index, regulator)| (RegulatorId(index), regulator))
+    }
+
+    /// The regulator that a subject is.
+    #[must_use]
+    pub fn regulator(&self, subject: Subject) -> Option<&'a Regulator> {
+        match subject {
+            Subject::Regulator(id) => self.design.regulators.get(id.0),
+            _ => None,
+        }
+    }
+
+    /// The part of a regulator.
+    #[must_use]
+    pub fn part_of(&self, regulator: &Regulator) -> &'a Device {
+        self.circuit().device(regulator.device)
+    }
+
+    /// The families that a regulator may be, the best first.
+    pub fn families<'r>(&'r self, regulator: &'r Regulator) -> impl Iterator<Item = &'a Family> + 'r {
+        let knowledge = self.knowledge;
+        regulator.identity.families.iter().filter_map(move |index| knowledge.families.get(*index))
+    }
+
+    /// What a name stands for, for one subject; names that are not defined do not apply.
+    #[must_use]
+    pub fn value(&self, subject: Subject, name: &str) -> Value {
+        let Some(definition) = definition(subject.kind(), name) else {
+            return Value::inapplicable(format!("{name} is not defined for a {}", subject.kind().name()));
+        };
+        if let Some(value) = self.values.borrow().get(&(subject, definition.name)) {
+            return value.clone();
+        }
+        let value = (definition.compute)(self, subject);
+        self.values.borrow_mut().insert((subject, definition.name), value.clone());
+        value
+    }
+
+    /// A figure by name; `None` where it does not apply.
+    #[must_use]
+    pub fn figure(&self, subject: Subject, name: &str) -> Option<Quantity> {
+        match self.value(subject, name) {
+            Value::Figure(quantity) => Some(quantity),
+            _ => None,
+        }
+    }
+
+    /// The voltages of the supply nets.
+    pub(super) fn rails(&self) -> &Rails {
+        self.rails.get_or_init(|| rails::propagate(self))
+    }
+
+    /// The voltage of a net against ground, with where it comes from.
+    #[must_use]
+    pub fn rail(&self, net: NetId) -> rails::Rail {
+        self.rails().rail(self, net)
+    }
+
+    fn index(&self) -> &Index {
+        self.index.get_or_init(|| {
+            let mut index = Index::default();
+            for (id, regulator) in self.regulators() {
+                index.by_device.entry(regulator.device).or_default().push(id.0);
+                if let Some(input) = regulator.input_net {
+                    index.by_input.entry(input).or_default().push(id.0);
+                }
+                if let Some(output) = regulator.output_net {
+                    index.by_output.entry(output).or_default().push(id.0);
+                }
+            }
+            index
+        })
+    }
+
+    /// The regulators whose input lies on a net, in order.
+    pub(super) fn fed_by(&self, net: NetId) -> impl Iterator<Item = &'a Regulator> + use<'_, 'a> {
+        let found = self.index().by_input.get(&net).map_or(&[][..], Vec::as_slice);
+        found.iter().filter_map(|at| self.design.regulators.get(*at))
+    }
+
+    /// The regulators whose output lies on a net, in order.
+    pub(super) fn feeding(&self, net: NetId) -> impl Iterator<Item = &'a Regulator> + use<'_, 'a> {
+        let found = self.index().by_output.get(&net).map_or(&[][..], Vec::as_slice);
+        found.iter().filter_map(|at| self.design.regulators.get(*at))
+    }
+
+    /// The regulators in a part, one for each output.
+    pub(super) fn in_part(&self, device: DeviceId) -> impl Iterator<Item = &'a Regulator> + use<'_, 'a> {
+        let found = self.index().by_device.get(&device).map_or(&[][..], Vec::as_slice);
+        found.iter().filter_map(|at| self.design.regulators.get(*at))
+    }
+
+    /// The capacitors at a regulator's input or output, to ground or to the net of its ground pin.
+    pub(super) fn bank_of(&self, regulator: &Regulator, side: Side) -> Option<Rc<Bank>> {
+        let net = match side {
+            Side::Input => regulator.input_net,
+            Side::Output => regulator.output_net,
+        };
+        net.map(|net| self.bank_at(net, regulator.ground_net, side))
+    }
+
+    /// The capacitors between a net and ground, or `returns`.
+    pub(super) fn bank_at(&self, net: NetId, returns: Option<NetId>, side: Side) -> Rc<Bank> {
+        let returns = returns.filter(|returns| !self.circuit().net(*returns).ground);
+        if let Some(known) = self.banks.borrow().get(&(net, returns, side)) {
+            return Rc::clone(known);
+        }
+        let found = Rc::new(bank_to(self.circuit(), net, returns.as_slice(), side));
+        self.banks.borrow_mut().insert((net, returns, side), Rc::clone(&found));
+        found
+    }
+
+    /// Ambient temperature, °C; a guess where none is declared.
+    #[must_use]
+    pub fn ambient(&self) -> Quantity {
+        match &self.board.ambient {
+            Some(declared) => declared.quantity(Dimension::TEMPERATURE, "ambient"),
+            None => {
+                let evidence = Evidence::new(Grade::Assumed, "ambient", "no ambient declared").settled_by(
+                    crate::quantity::Settle::new(crate::quantity::Table::Board, "", "ambient", "-20 .. 55 °C"),
+                );
+                let range = Range::clamped(AMBIENT.0, ROOM, AMBIENT.1);
+                Quantity::fact(Dimension::TEMPERATURE, range, evidence)
+            }
+        }
+    }
+}

@@ -1,0 +1,239 @@
+//! The enable input: what drives it and what it asks for.
+
+use std::collections::BTreeSet;
+
+use super::identity::of;
+use super::{Definition, Facts, RailOrigin, Subject, SubjectKind, Value, ValueKind, Word};
+use crate::circuit::{DeviceId, DeviceKind, NetId, PinType};
+use crate::knowledge::{Active, Cited, EnableSpec, OpenEnable, Sign};
+use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Slope};
+use crate::recognize::{EnablePin, Regulator};
+
+/// Enable threshold of a part whose sheet is not known, volts: low, nominal, high (common practice: logic levels).
+const THRESHOLD: (f64, f64, f64) = (0.4, 1.2, 2.0);
+
+const HERE: &str = file!();
+
+pub(super) const DEFINITIONS: &[Definition] = &[
+    flag("enable_open", "the enable input is left open", |facts, subject| {
+        with_enable(facts, subject, |_, _, drive| Value::flag(matches!(drive, Drive::Open)))
+    }),
+    flag(
+        "enable_from_own_output",
+        "the enable input is fed from nothing but the output that it controls",
+        |facts, subject| with_enable(facts, subject, |_, _, drive| Value::flag(matches!(drive, Drive::OwnOutput))),
+    ),
+    Definition {
+        name: "enable_voltage",
+        of: SubjectKind::Regulator,
+        kind: ValueKind::Figure(Dimension::VOLTAGE),
+        meaning: "the voltage at the enable input where rails and resistors alone set it",
+        defined_in: HERE,
+        compute: |facts, subject| {
+            with_enable(facts, subject, |regulator, _, drive| match drive {
+                // The sheets of negative parts state their levels against ground in either sense.
+                Drive::Level(level) if regulator.polarity == Sign::Negative => Value::Figure(level.magnitude()),
+                Drive::Level(level) => Value::Figure(level.clone()),
+                Drive::Open => Value::inapplicable("the enable input is open"),
+                Drive::OwnOutput => Value::inapplicable("the enable input hangs on the part's own output"),
+                Drive::Elsewhere(by) => Value::inapplicable(format!("the enable input is driven by {by}")),
+            })
+        },
+    },
+    threshold("enable_on", "the level at which the part is certainly on", |facts, subject| {
+        with_enable(facts, subject, |regulator, _, _| {
+            Value::Figure(facts.threshold(regulator, |spec| spec.on.as_ref()))
+        })
+    }),
+    threshold("enable_off", "the level at which the part is certainly off", |facts, subject| {
+        with_enable(facts, subject, |regulator, _, _| {
+            Value::Figure(facts.threshold(regulator, |spec| spec.off.as_ref()))
+        })
+    }),
+    Definition {
+        name: "enable_active",
+        of: SubjectKind::Regulator,
+        kind: ValueKind::Word(&["high", "low"]),
+        meaning: "the level that switches the part on",
+        defined_in: HERE,
+        compute: |facts, subject| {
+            with_enable(facts, subject, |regulator, pin, _| {
+                let told = facts.first_family(regulator, |family| family.enable.as_ref().map(|spec| spec.active));
+                let low = told.map_or(pin.active_low, |(_, active)| active == Active::Low);
+                Value::word(if low { "low" } else { "high" })
+            })
+        },
+    },
+    Definition {
+        name: "enable_when_open",
+        of: SubjectKind::Regulator,
+        kind: ValueKind::Word(&["on", "off", "undefined", "unknown"]),
+        meaning: "what an open enable input does",
+        defined_in: HERE,
+        compute: |facts, subject| with_enable(facts, subject, |regulator, _, _| facts.when_open(regulator)),
+    },
+];
+
+const fn flag(name: &'static str, meaning: &'static str, compute: fn(&Facts<'_>, Subject) -> Value) -> Definition {
+    Definition { name, of: SubjectKind::Regulator, kind: ValueKind::Flag, meaning, defined_in: HERE, compute }
+}
+
+const fn threshold(
+    name: &'static str,
+    meaning: &'static str,
+    compute: fn(&Facts<'_>, Subject) -> Value,
+) -> Definition {
+    let kind = ValueKind::Figure(Dimension::VOLTAGE);
+    Definition { name, of: SubjectKind::Regulator, kind, meaning, defined_in: HERE, compute }
+}
+
+/// What sets the level of an enable input.
+#[derive(Debug, Clone)]
+enum Drive {
+    /// Nothing.
+    Open,
+    /// Only the output that it controls.
+    OwnOutput,
+    /// Rails and resistors: the level in volts.
+    Level(Quantity),
+    /// Something that a netlist does not tell the level of.
+    Elsewhere(String),
+}
+
+fn with_enable(
+    facts: &Facts<'_>,
+    subject: Subject,
+    compute: impl FnOnce(&Regulator, &EnablePin, &Drive) -> Value,
+) -> Value {
+    of(facts, subject, |regulator| {
+        let pins = &regulator.roles.enable;
+        // A part with one enable input for each output lists them in the order of its outputs.
+        let Some(pin) = pins.get(regulator.output_index).or_else(|| pins.first()) else {
+            return Value::inapplicable("no enable input");
+        };
+        compute(regulator, pin, &facts.drive(regulator, pin))
+    })
+}
+
+impl Facts<'_> {
+    fn drive(&self, regulator: &Regulator, pin: &EnablePin) -> Drive {
+        let Some(net) = self.circuit().net_of(regulator.device, pin.pin) else { return Drive::Open };
+        if Some(net) == regulator.output_net && regulator.input_net != regulator.output_net {
+            return Drive::OwnOutput;
+        }
+        let rail = self.rail(net);
+        if rail.origin != RailOrigin::Unknown {
+            return Drive::Level(rail.voltage);
+        }
+        if regulator.input_net == Some(net) {
+            // On its own input: whatever that is worth, it is what the part runs from.
+            return Drive::Level(rail.voltage);
+        }
+        match self.pulls(regulator, net) {
+            Ok(pulls) => self.pulled(regulator, &pulls),
+            Err(by) => Drive::Elsewhere(by),
+        }
+    }
+
+    /// The resistors from a net to rails. An error names a part that drives the net in a way that no netlist tells.
+    fn pulls(&self, regulator: &Regulator, net: NetId) -> Result<Vec<(DeviceId, NetId)>, String> {
+        let circuit = self.circuit();
+        let mut pulls = Vec::new();
+        for (device, pin) in circuit.fitted_on(net) {
+            let part = circuit.device(device);
+            if device == regulator.device || self.is_enable_of_another(device, pin) {
+                continue;
+            }
+            match part.kind {
+                DeviceKind::Capacitor | DeviceKind::Mechanical | DeviceKind::Led | DeviceKind::Zener => {}
+                DeviceKind::Resistor if self.is_resistor(device) => {
+                    if let Some(far) = circuit.other_end(device, net) {
+                        pulls.push((device, far));
+                    }
+                }
+                _ => {
+                    let listens = part.pins.get(pin).is_some_and(|pin| pin.kind == PinType::Input);
+                    if !listens {
+                        return Err(part.reference.clone());
+                    }
+                }
+            }
+        }
+        Ok(pulls)
+    }
+
+    fn is_enable_of_another(&self, device: DeviceId, pin: usize) -> bool {
+        self.in_part(device).any(|other| other.roles.enable.iter().any(|enable| enable.pin == pin))
+    }
+
+    /// The level that resistors to one rail and to ground set; several rails are told by nothing.
+    fn pulled(&self, regulator: &Regulator, pulls: &[(DeviceId, NetId)]) -> Drive {
+        let circuit = self.circuit();
+        let rails: BTreeSet<NetId> =
+            pulls.iter().map(|(_, far)| *far).filter(|far| !circuit.net(*far).ground).collect();
+        let branches = |ground: bool| -> Option<Quantity> {
+            let chosen: Vec<Vec<DeviceId>> = pulls
+                .iter()
+                .filter(|(_, far)| circuit.net(*far).ground == ground)
+                .map(|(device, _)| vec![*device])
+                .collect();
+            let (first, rest) = chosen.split_first()?;
+            self.network(first, rest)
+        };
+        let mut rails = rails.into_iter();
+        match (rails.next(), rails.next()) {
+            (None, _) if pulls.is_empty() => Drive::Open,
+            (None, _) => Drive::Level(Quantity::constant(Dimension::VOLTAGE, 0.0)),
+            (Some(one), Some(_)) => Drive::Elsewhere(circuit.net(one).name.clone()),
+            (Some(rail), None) if Some(rail) == regulator.output_net => Drive::OwnOutput,
+            (Some(rail), None) => {
+                let voltage = self.rail(rail).voltage;
+                match (branches(false), branches(true)) {
+                    (Some(upper), Some(lower)) => Drive::Level(divided(&voltage, &upper, &lower)),
+                    _ => Drive::Level(voltage),
+                }
+            }
+        }
+    }
+
+    fn threshold(&self, regulator: &Regulator, pick: fn(&EnableSpec) -> Option<&Cited<f64>>) -> Quantity {
+        let what = self.about(regulator, "enable threshold");
+        let found = self.first_family(regulator, |family| family.enable.as_ref().and_then(pick));
+        let (range, evidence) = match found {
+            Some((_, cited)) => {
+                (Range::exactly(cited.value), self.cited(regulator, &cited.source, cited.recalled, what))
+            }
+            None => {
+                let (low, nominal, high) = THRESHOLD;
+                let evidence = Evidence::new(Grade::Assumed, what, "no data sheet known")
+                    .settled_by(self.which_family(regulator));
+                (Range::clamped(low, nominal, high), evidence)
+            }
+        };
+        Quantity::given(Dimension::VOLTAGE, range, Pair::ANY, evidence)
+    }
+
+    fn when_open(&self, regulator: &Regulator) -> Value {
+        let found = self.first_family(regulator, |family| family.enable.as_ref().map(|spec| &spec.open));
+        let Some((_, open)) = found else { return Value::word("unknown") };
+        let word = match open.value {
+            OpenEnable::On => "on",
+            OpenEnable::Off => "off",
+            OpenEnable::Undefined => "undefined",
+            OpenEnable::Unknown => "unknown",
+        };
+        let what = self.about(regulator, "open enable input");
+        let evidence = self.cited(regulator, &open.source, open.recalled, what);
+        Value::Word(Word { word: word.to_owned(), evidence: Some(evidence) })
+    }
+}
+
+/// `V lower / (upper + lower)`.
+fn divided(voltage: &Quantity, upper: &Quantity, lower: &Quantity) -> Quantity {
+    let ratio = Quantity::monotone(Dimension::ONE, &[(upper, Slope::Falling), (lower, Slope::Rising)], |v| match v {
+        [upper, lower] if lower.is_infinite() && upper.is_finite() => 1.0,
+        [upper, lower] if upper + lower > 0.0 => lower / (upper + lower),
+        _ => f64::NAN,
+    });
+    voltage.times(&ratio)
+}

@@ -1,0 +1,168 @@
+//! Series elements between supply nets, and what flows through them.
+
+use std::collections::HashSet;
+
+use super::Facts;
+use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId};
+use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Table};
+use crate::recognize::RegulatorKind;
+
+/// Resistors up to this many ohms are taken as part of a supply line (common practice: filter and sense resistors).
+const LINE_RESISTOR: f64 = 100.0;
+/// Series resistance of ferrites, fuses and small inductors in ohms: low, nominal, high (common practice).
+const BEAD: (f64, f64, f64) = (0.0, 0.05, 0.5);
+/// Forward drop of a Schottky diode in volts: low, nominal, high (common practice).
+const SCHOTTKY: (f64, f64, f64) = (0.15, 0.35, 0.6);
+/// Forward drop of a silicon diode in volts: low, nominal, high (common practice).
+const SILICON: (f64, f64, f64) = (0.5, 0.75, 1.1);
+/// No diode of a supply line drops more than this many volts.
+const DIODE_LIMIT: f64 = 2.0;
+/// How many loads a sum names one by one; more are one figure.
+const NAMED_LOADS: usize = 12;
+
+/// What lies between two supply nets.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) enum Element {
+    /// A closed link: no drop.
+    Link,
+    /// A resistor.
+    Resistor,
+    /// A ferrite, fuse or inductor.
+    Bead,
+    /// A diode; whether it is a Schottky diode.
+    Diode { schottky: bool },
+}
+
+/// The fitted series elements by which a supply net feeds others: the device, the fed net and what it is. A diode
+/// conducts away from a positive net and towards a negative one.
+pub(super) fn feeds(circuit: &Circuit, net: NetId, positive: bool) -> Vec<(DeviceId, NetId, Element)> {
+    circuit
+        .neighbours(net)
+        .filter(|(_, to)| !circuit.net(*to).ground)
+        .filter_map(|(device, to)| {
+            let element = element(circuit.device(device))?;
+            if matches!(element, Element::Diode { .. }) {
+                let anode_net = circuit.net_of(device, anode(circuit.device(device))?)?;
+                if (anode_net == net) != positive {
+                    return None;
+                }
+            }
+            Some((device, to, element))
+        })
+        .collect()
+}
+
+fn element(part: &Device) -> Option<Element> {
+    match part.kind {
+        DeviceKind::NetTie | DeviceKind::Switch => Some(Element::Link),
+        DeviceKind::Ferrite | DeviceKind::Fuse | DeviceKind::Inductor => Some(Element::Bead),
+        DeviceKind::Diode => Some(Element::Diode { schottky: false }),
+        DeviceKind::Schottky => Some(Element::Diode { schottky: true }),
+        DeviceKind::Resistor => {
+            let amount = part.amount.as_ref()?.amount;
+            (amount <= LINE_RESISTOR).then_some(Element::Resistor)
+        }
+        _ => None,
+    }
+}
+
+/// The index of a diode's anode pin; `None` where nothing tells it.
+pub(super) fn anode(part: &Device) -> Option<usize> {
+    let named = |name: &str| part.pins.iter().position(|pin| pin.name.eq_ignore_ascii_case(name));
+    if let Some(anode) = named("A").or_else(|| named("anode")) {
+        return Some(anode);
+    }
+    let cathode = named("K").or_else(|| named("C")).or_else(|| named("cathode"))?;
+    (0..part.pins.len()).find(|index| *index != cathode)
+}
+
+impl Facts<'_> {
+    /// The voltage behind a series element that `from` feeds.
+    pub(super) fn behind(&self, from: &Quantity, device: DeviceId, element: Element, to: NetId) -> Quantity {
+        let drop = match element {
+            Element::Link => return from.clone(),
+            Element::Resistor => self.resistance(device).times(&self.draw(to)),
+            Element::Bead => self.bead(device, to).times(&self.draw(to)),
+            Element::Diode { schottky } => self.diode_drop(device, schottky, to),
+        };
+        let positive = from.nominal().unwrap_or(0.0) >= 0.0;
+        if positive { from.minus(&drop) } else { from.plus(&drop) }
+    }
+
+    fn bead(&self, device: DeviceId, to: NetId) -> Quantity {
+        let (low, nominal, high) = BEAD;
+        let range = Range::clamped(low, nominal, high);
+        let evidence = self.assumed_of(device, "resistance", to);
+        Quantity::given(Dimension::RESISTANCE, range, Pair::NOT_NEGATIVE, evidence)
+    }
+
+    fn diode_drop(&self, device: DeviceId, schottky: bool, to: NetId) -> Quantity {
+        let (low, nominal, high) = if schottky { SCHOTTKY } else { SILICON };
+        let range = Range::clamped(low, nominal, high);
+        let evidence = self.assumed_of(device, "forward drop", to);
+        Quantity::given(Dimension::VOLTAGE, range, Pair::new(0.0, DIODE_LIMIT), evidence)
+    }
+
+    fn assumed_of(&self, device: DeviceId, noun: &str, to: NetId) -> Evidence {
+        let circuit = self.circuit();
+        let what = format!("{noun} of {}", circuit.device(device).reference);
+        let settle = Settle::new(Table::Supply, &circuit.net(to).name, "voltage", "4.75 .. 5.25 V");
+        Evidence::new(Grade::Assumed, what, "usual for its kind").settled_by(settle)
+    }
+
+    /// What flows into a net: what is declared for it and behind it, else a guess by the ratings of the regulators
+    /// that it feeds.
+    pub(super) fn draw(&self, net: NetId) -> Quantity {
+        if let Some(declared) = self.declared_draw(net) {
+            return declared;
+        }
+        let fed: Vec<_> = self
+            .fed_by(net)
+            .filter(|regulator| regulator.kind == RegulatorKind::Series)
+            .map(|regulator| self.load(regulator))
+            .collect();
+        self.sum(&fed, net)
+    }
+
+    /// The declared loads on a net, on the nets behind its series elements, and behind the linear regulators that
+    /// these feed. `None` where neither the net nor one behind a series element has a declared load.
+    pub(super) fn declared_draw(&self, net: NetId) -> Option<Quantity> {
+        let circuit = self.circuit();
+        let mut seen = HashSet::from([net]);
+        let mut queue = vec![(net, true)];
+        let (mut loads, mut direct) = (Vec::new(), false);
+        while let Some((at, near)) = queue.pop() {
+            if let Some(load) = self.declared_load(&circuit.net(at).name) {
+                loads.push(load);
+                direct |= near;
+            }
+            let behind = feeds(circuit, at, true).into_iter().map(|(_, to, _)| (to, near));
+            let regulated = self
+                .fed_by(at)
+                .filter(|regulator| regulator.kind != RegulatorKind::Switching)
+                .filter_map(|regulator| regulator.output_net)
+                .map(|to| (to, false));
+            let next: Vec<_> = behind.chain(regulated).filter(|(to, _)| seen.insert(*to)).collect();
+            queue.extend(next);
+            // Boards without declared loads need no walk at all.
+            if self.board().loads.is_empty() {
+                return None;
+            }
+        }
+        direct.then(|| self.sum(&loads, net))
+    }
+
+    fn sum(&self, loads: &[Quantity], net: NetId) -> Quantity {
+        if loads.len() <= NAMED_LOADS {
+            let zero = Quantity::constant(Dimension::CURRENT, 0.0);
+            return loads.iter().fold(zero, |sum, load| sum.plus(load));
+        }
+        let bounds = |pick: &dyn Fn(Range) -> f64| loads.iter().filter_map(Quantity::shown).map(pick).sum::<f64>();
+        let range = Range::clamped(bounds(&Range::low), bounds(&Range::nominal), bounds(&Range::high));
+        let grade = loads.iter().filter_map(Quantity::grade).max().unwrap_or(Grade::Assumed);
+        let name = &self.circuit().net(net).name;
+        let evidence = Evidence::new(grade, format!("load on {name}"), format!("{} loads", loads.len()))
+            .settled_by(Settle::new(Table::Load, name, "current", "2 .. 180 mA"));
+        Quantity::given(Dimension::CURRENT, range, Pair::NOT_NEGATIVE, evidence)
+    }
+}

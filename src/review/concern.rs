@@ -1,0 +1,59 @@
+//! The parts and nets that a finding is about, and where they stand in the netlist.
+
+use crate::checks::{Figures, Finding, Point};
+use crate::circuit::DeviceId;
+use crate::facts::{Facts, Subject};
+use crate::netlist::Netlist;
+use crate::source::Span;
+
+/// References of parts and names of nets, the subject's first, each once.
+pub(super) fn concerned(facts: &Facts<'_>, finding: &Finding) -> (Vec<String>, Vec<String>) {
+    let (mut parts, mut nets) = (Vec::new(), Vec::new());
+    let points = finding.primary.iter().chain(&finding.also).filter_map(|point| match point {
+        Point::Subject(subject) => Some(*subject),
+        Point::Named { .. } => None,
+    });
+    for subject in std::iter::once(finding.subject).chain(finding.member).chain(points) {
+        match subject {
+            Subject::Regulator(_) => {
+                let Some(regulator) = facts.regulator(subject) else { continue };
+                add(&mut parts, &facts.part_of(regulator).reference);
+                for net in [regulator.input_net, regulator.output_net].into_iter().flatten() {
+                    add(&mut nets, &facts.circuit().net(net).name);
+                }
+            }
+            Subject::Net(net) => add(&mut nets, &facts.circuit().net(net).name),
+            Subject::Capacitor { device, .. } => add(&mut parts, &facts.circuit().device(device).reference),
+        }
+    }
+    (parts, nets)
+}
+
+fn add(list: &mut Vec<String>, name: &str) {
+    if !list.iter().any(|known| known == name) {
+        list.push(name.to_owned());
+    }
+}
+
+/// The place of a subject in the netlist, and its sheet.
+pub(super) fn place(facts: &Facts<'_>, netlist: &Netlist, subject: Subject) -> (Span, String) {
+    let device: Option<DeviceId> = match subject {
+        Subject::Regulator(_) => facts.regulator(subject).map(|regulator| regulator.device),
+        Subject::Capacitor { device, .. } => Some(device),
+        Subject::Net(net) => return (facts.circuit().net(net).name_span, String::new()),
+    };
+    let component = device.and_then(|device| netlist.components.get(facts.circuit().device(device).component));
+    component.map_or_else(Default::default, |component| (component.reference_span, component.sheet.clone()))
+}
+
+/// What to mark besides the subject, with a few words each.
+pub(super) fn also(facts: &Facts<'_>, netlist: &Netlist, finding: &Finding) -> Vec<(Span, String)> {
+    let mark = |point: &Point| match point {
+        Point::Subject(subject) => Some((place(facts, netlist, *subject).0, facts.label(*subject))),
+        Point::Named { role, name } => {
+            let net = facts.circuit().net_named(name)?;
+            Some((facts.circuit().net(net).name_span, role.replace('_', " ")))
+        }
+    };
+    finding.also.iter().filter_map(mark).collect()
+}

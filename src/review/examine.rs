@@ -1,0 +1,171 @@
+//! The whole way of one board.
+
+use super::accept::{self, Accepted};
+use super::concern;
+use super::fingerprint::fingerprints;
+use super::settle::{Decisive, declare_first};
+use crate::board::{Board, Place, SettingValue};
+use crate::checks::{self, Checks, Counts, Finding, Override, Verdict};
+use crate::circuit::Circuit;
+use crate::facts::{Facts, Subject};
+use crate::knowledge::Knowledge;
+use crate::netlist::{self, Netlist};
+use crate::recognize::{Design, recognize};
+use crate::source::{Problem, Severity, Span};
+
+/// A finding as reviewed.
+#[derive(Debug, Clone)]
+pub struct Reviewed {
+    /// What was found.
+    pub finding: Finding,
+    /// Its identity; survives renumbering of parts, lines and net codes.
+    pub fingerprint: String,
+    /// Its acceptance in the board file.
+    pub accepted: Option<Accepted>,
+    /// References of the parts concerned, the subject's first.
+    pub parts: Vec<String>,
+    /// Names of the nets concerned.
+    pub nets: Vec<String>,
+    /// Human-readable sheet path of the subject, or empty.
+    pub sheet: String,
+    /// What to underline first, in the netlist.
+    pub place: Span,
+    /// What to mark besides, with a few words each.
+    pub also: Vec<(Span, String)>,
+}
+
+/// A board with everything that was found on it.
+#[derive(Debug)]
+pub struct Examination {
+    /// The netlist.
+    pub netlist: Netlist,
+    /// What is declared, symbol fields included.
+    pub board: Board,
+    /// The design.
+    pub design: Design,
+    /// Findings: errors first, then by check, then by subject.
+    pub findings: Vec<Reviewed>,
+    /// The counts; accepted findings are left out of their verdicts.
+    pub counts: Counts,
+    /// How many findings are accepted.
+    pub accepted: usize,
+    /// What was lost or odd while reading, in the order of reading.
+    pub problems: Vec<Problem>,
+    /// What to declare first.
+    pub declare_first: Vec<Decisive>,
+}
+
+impl Examination {
+    /// Whether the whole board was judged under all that was declared.
+    #[must_use]
+    pub fn is_complete(&self) -> bool {
+        self.problems.iter().all(|problem| problem.severity() < Severity::Error)
+    }
+}
+
+/// Reads and judges one board. `today` is a date as `YYYY-MM-DD`, for acceptances that run out.
+///
+/// # Errors
+/// When nothing of the netlist could be read.
+pub fn examine(
+    name: &str,
+    bytes: &[u8],
+    board: Board,
+    knowledge: &Knowledge,
+    checks: &Checks,
+    today: &str,
+) -> Result<Examination, Vec<Problem>> {
+    let mut netlist = netlist::read(name, bytes)?;
+    let mut problems = std::mem::take(&mut netlist.problems);
+    let (mut circuit, found) = Circuit::build(&netlist);
+    problems.extend(found);
+    let board = declared(board, &netlist, &mut circuit, knowledge, checks, &mut problems);
+    let (checks, found) = checks.with_settings(&overrides(&board));
+    problems.extend(found);
+    let design = recognize(circuit, &board, knowledge);
+    let (findings, counts) = judged(&design, &board, knowledge, &checks, &netlist, today);
+    let accepted = findings.iter().filter(|finding| finding.accepted.is_some()).count();
+    let declare_first = declare_first(&findings);
+    Ok(Examination { netlist, board, design, findings, counts, accepted, problems, declare_first })
+}
+
+/// Adds what symbol fields declare and looks up the names that the board file uses.
+fn declared(
+    mut board: Board,
+    netlist: &Netlist,
+    circuit: &mut Circuit,
+    knowledge: &Knowledge,
+    checks: &Checks,
+    problems: &mut Vec<Problem>,
+) -> Board {
+    problems.extend(board.with_symbol_fields(netlist, circuit));
+    problems.extend(board.resolve(knowledge));
+    let names: Vec<&str> = checks.iter().map(|check| check.name.as_str()).collect();
+    problems.extend(board.check_checks(names.iter().copied()));
+    problems.extend(board.check_against(circuit));
+    let grounds: Vec<&str> = board.grounds.iter().map(|ground| ground.value.as_str()).collect();
+    circuit.mark_ground(grounds);
+    board
+}
+
+fn judged(
+    design: &Design,
+    board: &Board,
+    knowledge: &Knowledge,
+    checks: &Checks,
+    netlist: &Netlist,
+    today: &str,
+) -> (Vec<Reviewed>, Counts) {
+    let facts = Facts::new(design, board, knowledge);
+    let subjects: Vec<Subject> = facts.regulators().map(|(id, _)| Subject::Regulator(id)).collect();
+    let judgement = checks::judge(checks, &subjects, &facts);
+    let prints = fingerprints(&facts, netlist, &judgement.findings);
+    let each = judgement.findings.into_iter().zip(prints);
+    let findings: Vec<Reviewed> =
+        each.map(|(finding, print)| reviewed(&facts, netlist, finding, print, today)).collect();
+    let counts = without_accepted(judgement.counts, &findings);
+    (findings, counts)
+}
+
+fn reviewed(facts: &Facts<'_>, netlist: &Netlist, finding: Finding, fingerprint: String, today: &str) -> Reviewed {
+    let (parts, nets) = concern::concerned(facts, &finding);
+    let (place, sheet) = concern::place(facts, netlist, finding.subject);
+    let also = concern::also(facts, netlist, &finding);
+    let mut reviewed = Reviewed { finding, fingerprint, accepted: None, parts, nets, sheet, place, also };
+    reviewed.accepted = accept::accepted(facts.board(), &reviewed, today);
+    reviewed
+}
+
+fn overrides(board: &Board) -> Vec<Override> {
+    let mut all = Vec::new();
+    for (check, settings) in &board.settings {
+        for (key, declared) in settings {
+            let text = match &declared.value {
+                SettingValue::Text(text) => text.clone(),
+                SettingValue::Number(number) => number.to_string(),
+                SettingValue::Flag(flag) => flag.to_string(),
+                SettingValue::Texts(texts) => texts.join(", "),
+            };
+            let place = match &declared.place {
+                Place::File { source, span, .. } => Some((source.clone(), *span)),
+                Place::Field { .. } => None,
+            };
+            all.push(Override { check: check.clone(), key: key.clone(), text, place });
+        }
+    }
+    all
+}
+
+fn without_accepted(mut counts: Counts, findings: &[Reviewed]) -> Counts {
+    for reviewed in findings.iter().filter(|reviewed| reviewed.accepted.is_some()) {
+        let count = match reviewed.finding.verdict {
+            Verdict::Fails => &mut counts.fails,
+            Verdict::Doubtful => &mut counts.doubtful,
+            Verdict::Tight => &mut counts.tight,
+            Verdict::Unknown => &mut counts.unknown,
+            Verdict::Holds => &mut counts.holds,
+        };
+        *count = count.saturating_sub(1);
+    }
+    counts
+}

@@ -1,0 +1,11 @@
+//! One board from its bytes to reviewed findings: what was accepted, what to declare first.
+
+mod accept;
+mod concern;
+mod examine;
+mod fingerprint;
+mod settle;
+
+pub use accept::Accepted;
+pub use examine::{Examination, Reviewed, examine};
+pub use settle::{Decisive, declare_first};

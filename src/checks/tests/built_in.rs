@@ -6,8 +6,7 @@ use std::path::Path;
 use super::fake::NAMES;
 use crate::checks::Checks;
 
-#[test]
-fn every_built_in_check_loads() {
+fn folders() -> BTreeMap<String, BTreeMap<String, String>> {
     let root = Path::new(env!("CARGO_MANIFEST_DIR")).join("rules/checks");
     let mut folders = BTreeMap::new();
     for entry in std::fs::read_dir(root).unwrap() {
@@ -16,6 +15,17 @@ fn every_built_in_check_loads() {
         let name = path.file_name().unwrap().to_string_lossy().into_owned();
         folders.insert(name, BTreeMap::from([("check.toml".to_owned(), text)]));
     }
+    folders
+}
+
+/// The built-in checks.
+pub(super) fn built_in() -> Checks {
+    Checks::load(&folders(), &NAMES).0
+}
+
+#[test]
+fn every_built_in_check_loads() {
+    let folders = folders();
     let (checks, problems) = Checks::load(&folders, &NAMES);
     let told: Vec<String> = problems
         .iter()

@@ -1,6 +1,7 @@
 //! Tests of the room: a table of names, made-up boards, load errors, verdicts and the laws.
 
 mod built_in;
+mod built_in_verdicts;
 mod fake;
 mod laws;
 mod load;

@@ -191,7 +191,7 @@ fn changed(leaf: Leaf, was: State, becomes: State) -> Option<Leaf> {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig { cases: 2000, ..ProptestConfig::default() })]
+    #![proptest_config(ProptestConfig { cases: 512, ..ProptestConfig::default() })]
 
     #[test]
     fn guesses_alone_never_fail(one in linear(), other in linear(), strict in any::<bool>()) {

@@ -85,14 +85,14 @@ impl Told {
 pub fn run(
     check: &str,
     files: &BTreeMap<String, String>,
-    mut judge: impl FnMut(&Case) -> Result<Vec<Told>, Problem>,
+    mut judge: impl FnMut(&Case) -> Result<Vec<Told>, Vec<Problem>>,
 ) -> FolderReport {
     let (cases, problems) = find(check, files);
     let mut report = FolderReport { problems, cases: Vec::new() };
     for case in &cases {
         let problems = match judge(case) {
             Ok(told) => compare(case, &told),
-            Err(problem) => vec![problem],
+            Err(problems) => problems,
         };
         report.cases.push(CaseReport { check: check.to_owned(), case: case.name.clone(), problems });
     }

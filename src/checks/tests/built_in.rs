@@ -3,8 +3,7 @@
 use std::collections::BTreeMap;
 use std::path::Path;
 
-use super::fake::NAMES;
-use crate::checks::Checks;
+use crate::checks::{Checks, DefinedNames};
 
 fn folders() -> BTreeMap<String, BTreeMap<String, String>> {
     let root = Path::new(env!("CARGO_MANIFEST_DIR")).join("rules/checks");
@@ -20,13 +19,13 @@ fn folders() -> BTreeMap<String, BTreeMap<String, String>> {
 
 /// The built-in checks.
 pub(super) fn built_in() -> Checks {
-    Checks::load(&folders(), &NAMES).0
+    Checks::load(&folders(), &DefinedNames).0
 }
 
 #[test]
 fn every_built_in_check_loads() {
     let folders = folders();
-    let (checks, problems) = Checks::load(&folders, &NAMES);
+    let (checks, problems) = Checks::load(&folders, &DefinedNames);
     let told: Vec<String> = problems
         .iter()
         .map(|problem| {

@@ -15,7 +15,7 @@ const REGULATOR: SubjectKind = SubjectKind::Regulator;
 const NET: ValueKind = ValueKind::Word(&[]);
 const MINIMUM: ValueKind = ValueKind::Word(&["required", "recommended", "recalled", "optional"]);
 
-/// The names that the built-in checks use.
+/// Names as the figures define them.
 pub(super) const NAMES: &[(SubjectKind, &str, ValueKind)] = &[
     (REGULATOR, "kind", ValueKind::Word(&["series", "shunt", "reference", "switching"])),
     (REGULATOR, "mode", ValueKind::Word(&["fixed", "adjustable"])),
@@ -28,7 +28,6 @@ pub(super) const NAMES: &[(SubjectKind, &str, ValueKind)] = &[
     (REGULATOR, "set_point_nominal", V),
     (REGULATOR, "declared_low", V),
     (REGULATOR, "declared_high", V),
-    (REGULATOR, "declared_nominal", V),
     (REGULATOR, "name_voltage", V),
     (REGULATOR, "held_output", V),
     (REGULATOR, "load", A),

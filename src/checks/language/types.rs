@@ -186,7 +186,7 @@ impl Scope<'_> {
             figures.push(typed.figure.clone());
             first = first.or(Some((typed, node.span)));
         }
-        let Some((first, span)) = first else {
+        let Some((first, _)) = first else {
             return Err(Refusal::new(Span::default(), "a function needs a figure", "empty"));
         };
         let figure = match function {
@@ -194,7 +194,6 @@ impl Scope<'_> {
             Function::Max => Figure::Greatest(figures),
             Function::Abs => Figure::Magnitude(Box::new(first.figure)),
         };
-        debug_assert!(span.end() > 0);
         Ok(Typed { figure, dimension: first.dimension, bare: first.bare })
     }
 

@@ -3,6 +3,7 @@
 mod built_in;
 mod built_in_verdicts;
 mod fake;
+mod hostile;
 mod laws;
 mod load;
 mod verdicts;

@@ -100,8 +100,7 @@ impl<'s> Cite<'s> {
             return Cited { value, source: "recalled".to_owned(), recalled: true };
         };
         let recalled = marked || !source.read;
-        let source = if recalled { format!("{} (recalled)", source.title) } else { source.title.clone() };
-        Cited { value, source, recalled }
+        Cited { value, source: source.title.clone(), recalled }
     }
 
     /// A figure: a text, or a table of `value`, `source` and `recalled`.
@@ -165,7 +164,8 @@ pub(super) fn read_range(text: &Text<'_>, dimension: Dimension) -> Option<Range>
                 None => format!("write a figure in {dimension}"),
             };
             let document = text.document();
-            document.refuse(text.part(refusal.at), refusal.message, "not readable as a figure", help);
+            let span = refusal.span();
+            document.refuse(text.part(span.start()..span.end()), refusal.message(), "not readable as a figure", help);
             None
         }
     }

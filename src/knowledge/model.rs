@@ -20,7 +20,7 @@ pub struct SourceNote {
 pub struct Cited<T> {
     /// The figure, SI units.
     pub value: T,
-    /// Title of the source, with `recalled` figures saying so.
+    /// Title of the source; of a recalled figure, what it was recalled from.
     pub source: String,
     /// Whether it was recalled and not read: then it is a guess.
     pub recalled: bool,

@@ -140,6 +140,7 @@ fn codes_of(family: &Family) -> Vec<(String, Code)> {
             }
         }
     }
+    codes.extend(family.adjust_codes.iter().map(|text| (text.clone(), Code::Adjustable)));
     codes.push(("ADJ".to_owned(), Code::Adjustable));
     codes.sort_by(|one, other| other.0.len().cmp(&one.0.len()).then(one.0.cmp(&other.0)));
     codes
@@ -196,7 +197,8 @@ impl Matcher {
     }
 }
 
-fn rank(hit: &Hit) -> (bool, usize) {
+/// How telling a hit is: a pattern with a voltage code first, then the one with most letters and digits of its own.
+pub(super) fn rank(hit: &Hit) -> (bool, usize) {
     (hit.code.is_some(), hit.literal)
 }
 

@@ -4,7 +4,7 @@ use crate::circuit::Device;
 use crate::knowledge::Knowledge;
 use crate::quantity::Grade;
 
-use super::family_match::{Hit, Matcher, reduced};
+use super::family_match::{Hit, Matcher, rank, reduced};
 use super::model::Identity;
 
 /// Field names that hold a maker's part number. Order numbers of distributors name no part.
@@ -167,11 +167,9 @@ fn families(hits: &[Hit], maker: &str, knowledge: &Knowledge) -> Vec<usize> {
     };
     let is_version = |index: usize| knowledge.families.get(index).is_some_and(|family| family.version_of.is_some());
     let Some(best) = hits.first() else { return Vec::new() };
-    let same_group = |hit: &&Hit| {
-        let group = |index: usize| knowledge.families.get(index).map(|family| (&family.group, family.kind));
-        hit.family == best.family || group(hit.family) == group(best.family) || hit.literal == best.literal
-    };
-    let mut found: Vec<usize> = hits.iter().filter(same_group).map(|hit| hit.family).collect();
+    // A more telling pattern is meant alone: TL431B is no TL431 of the wide grade, LM1117 no 1117 of an unknown maker.
+    let as_telling = |hit: &&Hit| rank(hit) == rank(best);
+    let mut found: Vec<usize> = hits.iter().filter(as_telling).map(|hit| hit.family).collect();
     let named: Vec<&str> =
         found.iter().filter_map(|index| knowledge.families.get(*index)).map(|family| family.name.as_str()).collect();
     let versions: Vec<usize> = (0..knowledge.families.len())

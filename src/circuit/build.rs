@@ -13,6 +13,7 @@ use super::kind::{Clues, nature};
 use super::model::{Circuit, Device, DeviceId, DeviceKind, Net, NetId, Node, Pin};
 use super::parts::Parts;
 use super::pins::{Connection, pins};
+use super::value::component_value;
 
 impl Circuit {
     /// Builds the board's graph. What is odd about the netlist as a circuit comes back as problems; nothing is left out
@@ -190,6 +191,7 @@ fn device(component: &Component, index: usize, part: Option<&LibraryPart>, pins:
     device.polarity = nature.polarity;
     device.polarized = nature.polarized;
     device.fitted = fitted(&device);
+    device.amount = component_value(&device);
     device
 }
 
@@ -302,6 +304,15 @@ mod tests {
         let (circuit, _) = Circuit::build(&netlist(vec![left_out], &[("A", &[("R1", "1")])]));
         let a = circuit.net_named("A").unwrap();
         assert_eq!((circuit.pins_on(a).count(), circuit.fitted_on(a).count()), (1, 0));
+    }
+
+    #[test]
+    fn a_value_is_read_for_what_the_part_is_and_a_placeholder_is_none() {
+        let parts = vec![component("R10", "R10", "R"), component("R11", "R10", "R"), component("C1", "10", "CP")];
+        let (circuit, _) = Circuit::build(&netlist(parts, &[]));
+        let amounts: Vec<_> =
+            circuit.devices().map(|id| circuit.device(id).amount.as_ref().map(|read| read.amount)).collect();
+        assert_eq!(amounts, [None, Some(0.1), Some(10e-6)]);
     }
 
     #[test]

@@ -9,6 +9,7 @@ mod model;
 mod parts;
 mod pins;
 mod supply_name;
+mod value;
 
 pub use model::{
     Circuit, ComponentValue, Device, DeviceId, DeviceKind, Fitted, Net, NetId, Pin, PinType, Polarity, Reading,

@@ -14,4 +14,7 @@ pub use evidence::{Evidence, Grade, Key, Settle, Table};
 pub use figure::{Guess, Quantity, Slope};
 pub use pair::Pair;
 pub use range::{Range, RangeError};
-pub use text::{ReadError, read_amount, read_range, read_typical_maximum};
+pub use text::{
+    ComponentKind, ComponentText, ReadError, print_amount, print_range, read_amount, read_component, read_range,
+    read_typical_maximum,
+};

@@ -126,6 +126,7 @@ impl PartEntry {
             esr: self.esr.or(below.esr),
             tolerance: self.tolerance.or(below.tolerance),
             rating: self.rating.or(below.rating),
+            effective_capacitance: self.effective_capacitance.or(below.effective_capacitance),
             heatsink: self.heatsink.or(below.heatsink),
             junction_to_ambient: self.junction_to_ambient.or(below.junction_to_ambient),
             power: self.power.or(below.power),

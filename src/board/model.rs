@@ -188,6 +188,8 @@ pub struct PartEntry {
     pub tolerance: Option<Declared<Range>>,
     /// Rated voltage, volts.
     pub rating: Option<Declared<Range>>,
+    /// Farads that are left of a capacitor at the voltage across it, by its maker's curve.
+    pub effective_capacitance: Option<Declared<Range>>,
     /// Kelvins per watt of the heat sink, to ambient. Never with `junction_to_ambient`.
     pub heatsink: Option<Declared<Range>>,
     /// Kelvins per watt from junction to ambient.
@@ -239,6 +241,7 @@ impl PartEntry {
             esr: None,
             tolerance: None,
             rating: None,
+            effective_capacitance: None,
             heatsink: None,
             junction_to_ambient: None,
             power: None,

@@ -88,6 +88,10 @@ impl Facts<'_> {
     /// off is a guess, whose limits are nothing and all.
     pub(super) fn effective_capacitance(&self, device: DeviceId, net: NetId) -> Quantity {
         let part = self.circuit().device(device);
+        let declared = self.board().part(&part.reference).and_then(|entry| entry.effective_capacitance.as_ref());
+        if let Some(declared) = declared {
+            return declared.quantity(Dimension::CAPACITANCE, format!("effective capacitance of {}", part.reference));
+        }
         let drawn = self.drawn_capacitance(device);
         let Some(amount) = &part.amount else { return drawn };
         let told = self.technology(device);

@@ -35,6 +35,14 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         of(facts, subject, |regulator| facts.window_end(regulator, End::High))
     }),
     Definition {
+        name: "esr_zero",
+        of: SubjectKind::Regulator,
+        kind: ValueKind::Figure(Dimension::FREQUENCY),
+        meaning: "where the ESR of the output's bulk capacitor makes its zero, 1 / (2 π C ESR)",
+        defined_in: file!(),
+        compute: |facts, subject| of(facts, subject, |regulator| facts.esr_zero(regulator)),
+    },
+    Definition {
         name: "bulk_is_ceramic",
         of: SubjectKind::Regulator,
         kind: ValueKind::Flag,
@@ -184,6 +192,21 @@ impl Facts<'_> {
         // Equal capacitors in parallel, their values spread alike: the first stands for all.
         let share = 1.0 / f64::from(u32::try_from(bulk.len()).unwrap_or(u32::MAX));
         Value::Figure(self.branch_esr(first).scaled(share))
+    }
+
+    /// `f = 1 / (2 π C ESR)` (TI LP2950-N data sheet); equal capacitors in parallel have the zero of one.
+    fn esr_zero(&self, regulator: &Regulator) -> Value {
+        let bulk = self.bulk(regulator);
+        let (Some(first), Some(net)) = (bulk.first(), regulator.output_net) else {
+            return Value::inapplicable("no output capacitor");
+        };
+        let esr = self.branch_esr(first);
+        let capacitance = self.effective_capacitance(first.capacitor, net);
+        let inputs = [(&esr, Slope::Falling), (&capacitance, Slope::Falling)];
+        Value::Figure(Quantity::monotone(Dimension::FREQUENCY, &inputs, |v| match v {
+            [esr, farads] => 1.0 / (std::f64::consts::TAU * esr * farads),
+            _ => f64::NAN,
+        }))
     }
 
     /// Re Z of the bank, each branch a capacitance with its ESR: the least over the band with every ESR low, the most

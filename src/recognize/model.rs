@@ -8,6 +8,14 @@ use crate::quantity::Grade;
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct RegulatorId(pub(crate) usize);
 
+impl RegulatorId {
+    /// The first regulator of a design.
+    #[must_use]
+    pub fn first() -> Self {
+        Self(0)
+    }
+}
+
 /// What a regulator is.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub enum RegulatorKind {

@@ -5,6 +5,7 @@ use super::concern;
 use super::fingerprint::fingerprints;
 use super::settle::{Decisive, declare_first};
 use crate::board::{Board, Place, SettingValue};
+use crate::checks::cases::Told;
 use crate::checks::{self, Checks, Counts, Finding, Override, Verdict};
 use crate::circuit::Circuit;
 use crate::facts::{Facts, Subject};
@@ -49,6 +50,8 @@ pub struct Examination {
     pub counts: Counts,
     /// How many findings are accepted.
     pub accepted: usize,
+    /// What every requirement came to, under the name of its subject.
+    pub told: Vec<Told>,
     /// What was lost or odd while reading, in the order of reading.
     pub problems: Vec<Problem>,
     /// What to declare first.
@@ -83,10 +86,10 @@ pub fn examine(
     let (checks, found) = checks.with_settings(&overrides(&board));
     problems.extend(found);
     let design = recognize(circuit, &board, knowledge);
-    let (findings, counts) = judged(&design, &board, knowledge, &checks, &netlist, today);
+    let (findings, counts, told) = judged(&design, &board, knowledge, &checks, &netlist, today);
     let accepted = findings.iter().filter(|finding| finding.accepted.is_some()).count();
     let declare_first = declare_first(&findings);
-    Ok(Examination { netlist, board, design, findings, counts, accepted, problems, declare_first })
+    Ok(Examination { netlist, board, design, findings, counts, accepted, told, problems, declare_first })
 }
 
 /// Adds what symbol fields declare and looks up the names that the board file uses.
@@ -115,16 +118,17 @@ fn judged(
     checks: &Checks,
     netlist: &Netlist,
     today: &str,
-) -> (Vec<Reviewed>, Counts) {
+) -> (Vec<Reviewed>, Counts, Vec<Told>) {
     let facts = Facts::new(design, board, knowledge);
     let subjects: Vec<Subject> = facts.regulators().map(|(id, _)| Subject::Regulator(id)).collect();
     let judgement = checks::judge(checks, &subjects, &facts);
+    let told = Told::of(&judgement.outcomes, &facts);
     let prints = fingerprints(&facts, netlist, &judgement.findings);
     let each = judgement.findings.into_iter().zip(prints);
     let findings: Vec<Reviewed> =
         each.map(|(finding, print)| reviewed(&facts, netlist, finding, print, today)).collect();
     let counts = without_accepted(judgement.counts, &findings);
-    (findings, counts)
+    (findings, counts, told)
 }
 
 fn reviewed(facts: &Facts<'_>, netlist: &Netlist, finding: Finding, fingerprint: String, today: &str) -> Reviewed {

@@ -3,8 +3,12 @@
 #![allow(clippy::unwrap_used, clippy::indexing_slicing, reason = "a test that meets what it does not expect fails")]
 
 mod archive;
+mod check_values;
+mod failures;
+mod judge;
 mod netlist_corpus;
 mod netlist_hostile;
 mod recognition_symbols;
 mod reference_tokens;
 mod shared;
+mod small_board;

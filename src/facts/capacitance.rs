@@ -96,15 +96,19 @@ impl Facts<'_> {
         let Some(bank) = self.bank_of(regulator, side) else { return Value::inapplicable("not connected") };
         let demand = self.first_family(regulator, |family| family.output_capacitor.as_ref());
         let ceramic_only = side == Side::Output && demand.is_some_and(|(_, demand)| demand.ceramic_only);
-        // At an input, what lies ahead of a series diode is told by a flag of its own.
-        let counted = bank.branches.iter().filter(|branch| !branch.behind_diode);
-        let parts: Vec<Quantity> = counted
-            .map(|branch| {
-                let amount = self.amount(branch.capacitor, bank.net, kind);
-                if ceramic_only { self.if_ceramic(branch.capacitor, amount) } else { amount }
-            })
-            .collect();
-        Value::Figure(self.total(bank.net, &parts, bank.leaves_board))
+        let key = (bank.net, regulator.ground_net, side, ceramic_only, kind == Kind::Drawn);
+        // Many regulators share an input, and its capacitors are then summed once.
+        Value::Figure(self.total_once(key, || {
+            // At an input, what lies ahead of a series diode is told by a flag of its own.
+            let counted = bank.branches.iter().filter(|branch| !branch.behind_diode);
+            let parts: Vec<Quantity> = counted
+                .map(|branch| {
+                    let amount = self.amount(branch.capacitor, bank.net, kind);
+                    if ceramic_only { self.if_ceramic(branch.capacitor, amount) } else { amount }
+                })
+                .collect();
+            self.total(bank.net, &parts, bank.leaves_board)
+        }))
     }
 
     fn total(&self, net: NetId, parts: &[Quantity], leaves_board: bool) -> Quantity {

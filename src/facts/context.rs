@@ -17,6 +17,9 @@ const AMBIENT: (f64, f64) = (-10.0, 50.0);
 /// The temperature at which sheets state their typical figures (°C).
 const ROOM: f64 = 25.0;
 
+/// A bank's total: net, returns, side, whether only ceramics count, whether as drawn.
+pub(super) type TotalKey = (NetId, Option<NetId>, Side, bool, bool);
+
 /// The figures of a board, each computed once, on demand.
 #[derive(Debug)]
 pub struct Facts<'a> {
@@ -27,6 +30,7 @@ pub struct Facts<'a> {
     // Never gone through in order: only looked up.
     values: RefCell<HashMap<(Subject, &'static str), Value>>,
     banks: RefCell<HashMap<(NetId, Option<NetId>, Side), Rc<Bank>>>,
+    totals: RefCell<HashMap<TotalKey, Quantity>>,
     index: OnceCell<Index>,
 }
 
@@ -49,6 +53,7 @@ impl<'a> Facts<'a> {
             rails: OnceCell::new(),
             values: RefCell::new(HashMap::new()),
             banks: RefCell::new(HashMap::new()),
+            totals: RefCell::new(HashMap::new()),
             index: OnceCell::new(),
         }
     }
@@ -189,6 +194,16 @@ impl<'a> Facts<'a> {
         let found = Rc::new(bank_to(self.circuit(), net, returns.as_slice(), side));
         self.banks.borrow_mut().insert((net, returns, side), Rc::clone(&found));
         found
+    }
+
+    /// The total capacitance of a bank, summed once.
+    pub(super) fn total_once(&self, key: TotalKey, sum: impl FnOnce() -> Quantity) -> Quantity {
+        if let Some(known) = self.totals.borrow().get(&key) {
+            return known.clone();
+        }
+        let total = sum();
+        self.totals.borrow_mut().insert(key, total.clone());
+        total
     }
 
     /// Ambient temperature, °C; a guess where none is declared.

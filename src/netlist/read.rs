@@ -66,18 +66,18 @@ fn finish(source: &Source, is_xml: bool, built: Builder<'_>) -> Result<Netlist, 
 /// The format by the version; where that is missing or not known, by whether references are quoted.
 fn format(source: &Source, is_xml: bool, version: Option<String>, problems: &mut Problems) -> (Format, String) {
     let written = version.unwrap_or_default();
-    let guessed = if source.text().contains("(ref \"") { Format::E } else { Format::D };
+    let guessed = || if source.text().contains("(ref \"") { Format::E } else { Format::D };
     let of_lists = match written.as_str() {
         "D" => Format::D,
         "E" => Format::E,
-        "" => guessed,
+        "" => guessed(),
         _ => {
             let shown: String = written.chars().take(40).collect();
             problems.push(
                 Problem::warning(format!("the format version `{shown}` is not known"))
                     .help("it is read as if it were the nearest known one; versions D and E are known"),
             );
-            guessed
+            guessed()
         }
     };
     (if is_xml { Format::Xml } else { of_lists }, written)

@@ -57,8 +57,7 @@ impl<'a> Reader<'a> {
         part.tolerance = self.parsed(table, "tolerance", read_tolerance);
         part.rating = self.single(table, "rating", Dimension::VOLTAGE, Positive);
         part.power = self.single(table, "power", Dimension::POWER, Positive);
-        part.effective_capacitance =
-            self.figure(table, "effective_capacitance", Dimension::CAPACITANCE, NotNegative);
+        part.effective_capacitance = self.figure(table, "effective_capacitance", Dimension::CAPACITANCE, NotNegative);
         part.heatsink = self.figure(table, "heatsink", Dimension::THERMAL_RESISTANCE, NotNegative);
         part.junction_to_ambient = self.figure(table, "junction_to_ambient", Dimension::THERMAL_RESISTANCE, Positive);
         self.only_one(&[

@@ -2,13 +2,16 @@
 
 use super::identity::of;
 use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
-use crate::knowledge::{Cited, DropoutAt, DropoutPoint, Family};
+use crate::knowledge::{Cited, DropoutAt, DropoutPoint, Family, Pass};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
 use crate::recognize::{Regulator, RegulatorKind};
 
-/// How far the maximum over temperature lies above a typical figure that stands alone, as a part of it (published
-/// sheets that give both: often one half to the whole).
-const ABOVE_TYPICAL: f64 = 0.75;
+/// How far the maximum over temperature lies above a typical figure that stands alone, as a part of it: likely, and at
+/// most (sheets that give both: often one half to the whole).
+const ABOVE_TYPICAL: (f64, f64) = (0.25, 0.75);
+/// The same for emitter followers, whose dropout is two or three junctions and hardly changes (common practice: 2 V in
+/// the sheet, 2.5 V on the bench).
+const ABOVE_TYPICAL_FOLLOWER: (f64, f64) = (0.25, 0.25);
 /// The range of a figure that was recalled and not read, as a multiple, and its limits.
 const RECALLED: (f64, f64) = (0.7, 1.3);
 const RECALLED_LIMITS: (f64, f64) = (0.0, 3.0);
@@ -72,7 +75,8 @@ impl Facts<'_> {
         let Some(first) = families.first() else { return self.unknown_dropout(regulator) };
         let spread = self.spread(regulator, first, output);
         let at = |load: f64| first.dropout_at(load, output).map(|cited| cited.value);
-        let curve = |load: f64, share: f64| at(load).map_or(f64::NAN, |at| between(&at, share));
+        let above = above_typical(first);
+        let curve = |load: f64, share: f64| at(load).map_or(f64::NAN, |at| between(&at, share, above));
         let figure = along(load, &spread, curve);
         match self.versions(regulator, &families, output) {
             Some(versions) => figure.times(&versions),
@@ -87,11 +91,14 @@ impl Facts<'_> {
         let rated = family.figures.get("rated_current").map_or(0.0, |cited| cited.value.high());
         let Some(cited) = family.dropout_at(rated, output) else { return Quantity::constant(Dimension::ONE, 0.0) };
         let mut evidence = self.cited(regulator, &cited.source, cited.recalled, what);
+        let mut likely = 0.0;
         if cited.value.maximum.is_none() {
+            let (usual, most) = above_typical(family);
+            likely = usual / most;
             evidence = evidence.at_most(Grade::Assumed).settled_by(self.dropout_of(regulator));
             evidence.source = format!("{}, which gives only a typical figure", cited.source);
         }
-        Quantity::given(Dimension::ONE, Range::clamped(0.0, 0.0, 1.0), Pair::new(0.0, 1.0), evidence)
+        Quantity::given(Dimension::ONE, Range::clamped(0.0, likely, 1.0), Pair::new(0.0, 1.0), evidence)
     }
 
     /// The multiple by which a recalled figure may be off, or other makers' versions of the name may differ.
@@ -104,7 +111,8 @@ impl Facts<'_> {
         let mut range = if first.recalled { RECALLED } else { (1.0, 1.0) };
         for other in families.iter().filter_map(at_full) {
             range.0 = range.0.min(other.value.typical / first.value.typical);
-            range.1 = range.1.max(between(&other.value, 1.0) / between(&first.value, 1.0));
+            let most = |at: &DropoutAt| between(at, 1.0, ABOVE_TYPICAL);
+            range.1 = range.1.max(most(&other.value) / most(&first.value));
         }
         if (range.1 - range.0).abs() < f64::EPSILON {
             return None;
@@ -156,8 +164,16 @@ fn along(load: &Quantity, spread: &Quantity, curve: impl Fn(f64, f64) -> f64) ->
     })
 }
 
-fn between(at: &DropoutAt, share: f64) -> f64 {
-    let maximum = at.maximum.unwrap_or(at.typical * (1.0 + ABOVE_TYPICAL));
+fn above_typical(family: &Family) -> (f64, f64) {
+    let follower = family.pass.as_ref().is_some_and(|pass| {
+        matches!(pass.value, Pass::NpnFollower | Pass::NpnFollowerDarlington | Pass::PnpFollowerDarlington)
+    });
+    if follower { ABOVE_TYPICAL_FOLLOWER } else { ABOVE_TYPICAL }
+}
+
+/// The figure a share of the way from typical to maximum; where there is no maximum, to what may lie above.
+fn between(at: &DropoutAt, share: f64, above: (f64, f64)) -> f64 {
+    let maximum = at.maximum.unwrap_or(at.typical * (1.0 + above.1));
     at.typical + (maximum - at.typical) * share
 }
 

@@ -59,6 +59,9 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         compute: |facts, subject| {
             with_enable(facts, subject, |regulator, pin, _| {
                 let told = facts.first_family(regulator, |family| family.enable.as_ref().map(|spec| spec.active));
+                if told.is_none() && is_bare_shutdown(facts, regulator, pin) {
+                    return Value::inapplicable("whether its shutdown pin is drawn without its bar is not known");
+                }
                 let low = told.map_or(pin.active_low, |(_, active)| active == Active::Low);
                 Value::word(if low { "low" } else { "high" })
             })
@@ -85,6 +88,13 @@ const fn threshold(
 ) -> Definition {
     let kind = ValueKind::Figure(Dimension::VOLTAGE);
     Definition { name, of: SubjectKind::Regulator, kind, meaning, defined_in: HERE, compute }
+}
+
+/// A pin that is called *shutdown* or *inhibit* without a bar: symbols often leave the bar out, and some makers' inhibit
+/// pins switch on when high, so only a data sheet tells.
+fn is_bare_shutdown(facts: &Facts<'_>, regulator: &Regulator, pin: &EnablePin) -> bool {
+    let name = facts.part_of(regulator).pins.get(pin.pin).map_or("", |pin| pin.name.as_str());
+    pin.active_low && !name.contains(['~', '#', '/', '!', '*']) && !name.to_ascii_uppercase().contains("EN")
 }
 
 /// What sets the level of an enable input.

@@ -3,7 +3,7 @@
 use std::collections::HashSet;
 
 use super::Facts;
-use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId};
+use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId, Polarity};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Table};
 use crate::recognize::RegulatorKind;
 
@@ -15,6 +15,8 @@ const BEAD: (f64, f64, f64) = (0.0, 0.05, 0.5);
 const SCHOTTKY: (f64, f64, f64) = (0.15, 0.35, 0.6);
 /// Forward drop of a silicon diode in volts: low, nominal, high (common practice).
 const SILICON: (f64, f64, f64) = (0.5, 0.75, 1.1);
+/// What a reverse-polarity transistor drops in volts: low, nominal, high; at most its body diode.
+const TRANSISTOR: (f64, f64, f64) = (0.0, 0.03, 0.2);
 /// No diode of a supply line drops more than this many volts.
 const DIODE_LIMIT: f64 = 2.0;
 /// How many loads a sum names one by one; more are one figure.
@@ -31,6 +33,9 @@ pub(super) enum Element {
     Bead,
     /// A diode; whether it is a Schottky diode.
     Diode { schottky: bool },
+    /// A field-effect transistor whose body diode conducts and which is switched on by the supply itself: protection
+    /// against a reversed supply.
+    Transistor,
 }
 
 /// The fitted series elements by which a supply net feeds others: the device, the fed net and what it is. A diode
@@ -49,7 +54,30 @@ pub(super) fn feeds(circuit: &Circuit, net: NetId, positive: bool) -> Vec<(Devic
             }
             Some((device, to, element))
         })
+        .chain(transistors(circuit, net, positive))
         .collect()
+}
+
+/// Transistors by which a supply net feeds another through their body diode: a P channel from drain to source on a
+/// positive supply, an N channel on a negative one, the gate held by resistors and zeners alone.
+fn transistors(circuit: &Circuit, net: NetId, positive: bool) -> Vec<(DeviceId, NetId, Element)> {
+    let wanted = if positive { Polarity::P } else { Polarity::N };
+    let found = circuit.devices_on(net).filter_map(|device| {
+        let part = circuit.device(device);
+        if part.kind != DeviceKind::Mosfet || part.polarity != Some(wanted) || !part.is_fitted() {
+            return None;
+        }
+        let on =
+            |name: &str| part.pins.iter().find(|pin| pin.name.eq_ignore_ascii_case(name)).and_then(|pin| pin.net);
+        let (drain, source, gate) = (on("D")?, on("S")?, on("G")?);
+        let passive = circuit.devices_on(gate).all(|other| {
+            let kind = circuit.device(other).kind;
+            other == device || matches!(kind, DeviceKind::Resistor | DeviceKind::Zener | DeviceKind::Capacitor)
+        });
+        let held = circuit.net(gate).ground || passive;
+        (drain == net && source != net && held).then_some((device, source, Element::Transistor))
+    });
+    found.collect()
 }
 
 fn element(part: &Device) -> Option<Element> {
@@ -83,7 +111,8 @@ impl Facts<'_> {
             Element::Link => return from.clone(),
             Element::Resistor => self.resistance(device).times(&self.draw(to)),
             Element::Bead => self.bead(device, to).times(&self.draw(to)),
-            Element::Diode { schottky } => self.diode_drop(device, schottky, to),
+            Element::Diode { schottky } => self.forward_drop(device, if schottky { SCHOTTKY } else { SILICON }, to),
+            Element::Transistor => self.forward_drop(device, TRANSISTOR, to),
         };
         let positive = from.nominal().unwrap_or(0.0) >= 0.0;
         if positive { from.minus(&drop) } else { from.plus(&drop) }
@@ -96,8 +125,8 @@ impl Facts<'_> {
         Quantity::given(Dimension::RESISTANCE, range, Pair::NOT_NEGATIVE, evidence)
     }
 
-    fn diode_drop(&self, device: DeviceId, schottky: bool, to: NetId) -> Quantity {
-        let (low, nominal, high) = if schottky { SCHOTTKY } else { SILICON };
+    fn forward_drop(&self, device: DeviceId, usual: (f64, f64, f64), to: NetId) -> Quantity {
+        let (low, nominal, high) = usual;
         let range = Range::clamped(low, nominal, high);
         let evidence = self.assumed_of(device, "forward drop", to);
         Quantity::given(Dimension::VOLTAGE, range, Pair::new(0.0, DIODE_LIMIT), evidence)

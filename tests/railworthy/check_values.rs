@@ -15,7 +15,8 @@ fn figure(parts: &[Part], board: &str, name: &str) -> Quantity {
     let (board, problems) = Board::read(&Source::new("small.railworthy.toml", board), Options::default());
     assert!(problems.is_empty(), "{problems:?}");
     let text = netlist(parts);
-    let found = railworthy::review::examine("small.net", text.as_bytes(), board, &rules.knowledge, &rules.checks, TODAY);
+    let found =
+        railworthy::review::examine("small.net", text.as_bytes(), board, &rules.knowledge, &rules.checks, TODAY);
     let found = found.unwrap();
     assert!(found.problems.is_empty(), "{:?}", found.problems);
     assert_eq!(found.design.regulators.len(), 1);
@@ -33,11 +34,7 @@ fn three_pin_adjustable(upper: &str, lower: &str) -> Vec<Part> {
             reference: "U1",
             value: "LM317".to_owned(),
             symbol: ("Regulator_Linear", "LM317_TO-220", "Adjustable positive regulator"),
-            pins: vec![
-                ("1", "ADJ", "input", "ADJ"),
-                ("2", "VO", "power_out", "OUT"),
-                ("3", "VI", "power_in", "IN"),
-            ],
+            pins: vec![("1", "ADJ", "input", "ADJ"), ("2", "VO", "power_out", "OUT"), ("3", "VI", "power_in", "IN")],
         },
         Part::two_ended("R1", upper, ("OUT", "ADJ")),
         Part::two_ended("R2", lower, ("ADJ", "GND")),

@@ -11,7 +11,11 @@ pub(crate) struct Part {
 }
 
 impl Part {
-    pub(crate) fn two_ended(reference: &'static str, value: impl Into<String>, nets: (&'static str, &'static str)) -> Self {
+    pub(crate) fn two_ended(
+        reference: &'static str,
+        value: impl Into<String>,
+        nets: (&'static str, &'static str),
+    ) -> Self {
         let symbol = match reference.chars().next() {
             Some('R') => ("Device", "R", "Resistor"),
             _ => ("Device", "C", "Unpolarized capacitor"),
@@ -23,7 +27,8 @@ impl Part {
 
 /// The netlist of a board, format E.
 pub(crate) fn netlist(parts: &[Part]) -> String {
-    let mut text = String::from("(export (version \"E\") (design (source \"small.kicad_sch\") (tool \"test\"))\n(components\n");
+    let mut text =
+        String::from("(export (version \"E\") (design (source \"small.kicad_sch\") (tool \"test\"))\n(components\n");
     for part in parts {
         let (library, symbol, description) = part.symbol;
         let _ = writeln!(
@@ -40,7 +45,8 @@ pub(crate) fn netlist(parts: &[Part]) -> String {
             continue;
         }
         known.push(part.symbol);
-        let _ = write!(text, "(libpart (lib \"{library}\") (part \"{symbol}\") (description \"{description}\") (pins");
+        let _ =
+            write!(text, "(libpart (lib \"{library}\") (part \"{symbol}\") (description \"{description}\") (pins");
         for (number, name, kind, _) in &part.pins {
             let _ = write!(text, " (pin (num \"{number}\") (name \"{name}\") (type \"{kind}\"))");
         }

@@ -74,6 +74,11 @@ impl<'s> Cite<'s> {
         Self { sources: self.sources, source, recalled }
     }
 
+    /// Whether the file names no source at all, which is reported once and not for every figure.
+    pub(super) fn is_empty(&self) -> bool {
+        self.sources.is_empty()
+    }
+
     fn find(&self, id: &Text<'_>) -> Option<&'s SourceNote> {
         let found = self.sources.iter().find(|source| source.id == id.as_str());
         if found.is_none() {
@@ -130,15 +135,15 @@ impl<'s> Cite<'s> {
         Some(figure.map(Range::high))
     }
 
-    /// Refuses keys in `recalled` that name nothing.
-    pub(super) fn check_keys(&self, table: &Table<'_>, known: &[&str]) {
-        let Recalled::Keys(keys) = &self.recalled else { return };
-        for key in keys.iter().filter(|key| !known.contains(&key.as_str())) {
-            let help = match nearest(key, known.iter().copied()) {
+    /// Refuses keys in the table's `recalled` that name nothing.
+    pub(super) fn check_keys(table: &mut Table<'_>, known: &[&str]) {
+        let named = table.take("recalled").filter(Value::is_list).and_then(|value| value.texts()).unwrap_or_default();
+        for key in named.iter().filter(|key| !known.contains(&key.as_str())) {
+            let help = match nearest(key.as_str(), known.iter().copied()) {
                 Some(name) => format!("did you mean `{name}`?"),
                 None => "name keys of this table that hold figures".to_owned(),
             };
-            table.refuse(format!("`recalled` names `{key}`, which is no figure here"), "in this table", help);
+            key.refuse(format!("`{}` is no figure here", key.as_str()), "not a figure of this table", help);
         }
     }
 }

@@ -24,7 +24,7 @@ pub(super) fn read_dropout(root: &mut Table<'_>, cite: &Cite<'_>) -> Option<Drop
         if let Some(defined) = table.text("defined") {
             dropout.defined = defined.as_str().to_owned();
         }
-        cite.check_keys(&table, &["drop"]);
+        Cite::check_keys(&mut table, &["drop"]);
         table.finish();
         let (Some(load), Some(drop), Some(text)) = (load, drop, text) else { continue };
         // Two values are typical and maximum; one alone is typical unless the sheet gives only a maximum.
@@ -67,7 +67,7 @@ pub(super) fn read_capacitor(root: &mut Table<'_>, key: &'static str, cite: &Cit
     if let (Some(figure), Some(value)) = (minimum.as_mut(), kind_value) {
         if kind == MinimumKind::Recalled {
             figure.recalled = true;
-        } else if figure.recalled && kind != MinimumKind::Optional {
+        } else if figure.recalled && kind != MinimumKind::Optional && !cite.is_empty() {
             value.refuse(
                 "a recalled minimum cannot bind",
                 "the figure is recalled",
@@ -90,8 +90,8 @@ pub(super) fn read_capacitor(root: &mut Table<'_>, key: &'static str, cite: &Cit
         maximum: farads(&mut table, "maximum"),
         with_bypass: farads(&mut table, "with_bypass"),
     };
-    cite.check_keys(
-        &table,
+    Cite::check_keys(
+        &mut table,
         &["minimum", "minimum_electrolytic", "by_output", "esr", "esr_min", "esr_max", "maximum", "with_bypass"],
     );
     check_demand(&table, &demand);
@@ -113,7 +113,7 @@ fn read_esr(table: &mut Table<'_>, cite: &Cite<'_>) -> Option<Cited<EsrWindow>> 
 
 /// Refuses a demand that asks for nothing or contradicts itself.
 fn check_demand(table: &Table<'_>, demand: &CapacitorDemand) {
-    let names_none = demand.minimum.is_none() && demand.by_output.is_empty();
+    let names_none = demand.minimum.is_none() && demand.by_output.is_empty() && !table.document().has_problems();
     if names_none && matches!(demand.kind, MinimumKind::Required | MinimumKind::Recommended) && demand.esr.is_none() {
         table.refuse(
             format!("`{}` asks for a capacitor without a minimum", table.name()),
@@ -151,7 +151,7 @@ pub(super) fn read_enable(root: &mut Table<'_>, cite: &Cite<'_>) -> Option<Enabl
     {
         table.refuse("`on` and `off` contradict `active`", "in this table", "an active-high pin is on above `on`");
     }
-    cite.check_keys(&table, &["on", "off", "open"]);
+    Cite::check_keys(&mut table, &["on", "off", "open"]);
     table.finish();
     Some(enable)
 }
@@ -172,7 +172,7 @@ pub(super) fn read_packages(root: &mut Table<'_>, cite: &Cite<'_>) -> BTreeMap<S
             let figure = cite.figure(value, Dimension::THERMAL_RESISTANCE)?;
             Some(figure.map(Range::high))
         });
-        cite.check_keys(&table, &["junction_to_ambient", "pins"]);
+        Cite::check_keys(&mut table, &["junction_to_ambient", "pins"]);
         table.finish();
         packages.insert(value.key().to_owned(), Package { pins, junction_to_ambient });
     }

@@ -32,8 +32,8 @@ pub(super) fn read_family(document: &Document, file: &str) -> Option<Family> {
     family.packages = demand::read_packages(&mut root, &cite);
     let mut keys: Vec<&str> = Family::FIGURES.iter().map(|(key, ..)| *key).collect();
     keys.push("pass");
-    cite.check_keys(&root, &keys);
-    check_consistency(&root, &family);
+    Cite::check_keys(&mut root, &keys);
+    check_consistency(&mut root, &family);
     root.finish();
     family.sources = sources;
     (!document.has_problems()).then_some(family)
@@ -172,7 +172,7 @@ pub(super) fn read_steps(value: Value<'_>, dimension: Dimension, cite: &Cite<'_>
 }
 
 /// Refuses figures that contradict each other.
-fn check_consistency(root: &Table<'_>, family: &Family) {
+fn check_consistency(root: &mut Table<'_>, family: &Family) {
     let high = |key: &str| family.figures.get(key).map(|figure| figure.value.high());
     for (smaller, larger) in [
         ("input_recommended_max", "input_max"),
@@ -183,11 +183,12 @@ fn check_consistency(root: &Table<'_>, family: &Family) {
     ] {
         if let (Some(small), Some(large)) = (high(smaller), high(larger))
             && small > large
+            && let Some(value) = root.take(smaller)
         {
-            root.refuse(
+            value.refuse(
                 format!("`{smaller}` is above `{larger}`"),
-                "in this file",
-                format!("`{smaller}` is {small}, `{larger}` is {large}, in SI units"),
+                format!("{small} in SI units"),
+                format!("`{larger}` is {large} in SI units"),
             );
         }
     }

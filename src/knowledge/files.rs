@@ -1,6 +1,6 @@
 //! The files of the knowledge folders, built in and from the disk.
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 use std::fs;
 use std::path::Path;
 
@@ -51,6 +51,8 @@ pub(super) struct Files {
     pub(super) tables: BTreeMap<(Shelf, String), Source>,
     /// By folder name.
     pub(super) checks: BTreeMap<String, CheckFolder>,
+    /// The names of those that come from a folder on the disk.
+    pub(super) extra: BTreeSet<(Shelf, String)>,
     /// What took the place of an earlier one: path below the folder, path of the new one.
     pub(super) replaced: Vec<(String, String)>,
 }
@@ -161,6 +163,7 @@ impl Files {
     fn put(&mut self, shelf: Shelf, name: String, source: Source) {
         let path = format!("{}/{name}", shelf.folder());
         let place = source.name().to_owned();
+        self.extra.insert((shelf, name.clone()));
         if self.tables.insert((shelf, name), source).is_some() {
             self.replaced.push((path, place));
         }

@@ -58,7 +58,8 @@ fn read_all(files: Files, problems: &mut Vec<Problem>) -> Knowledge {
         };
         match result {
             Ok(()) if *shelf == Shelf::Parts => {
-                sources.insert(format!("parts/{name}"), source);
+                let extra = files.extra.contains(&(*shelf, name.clone()));
+                sources.insert(format!("parts/{name}"), (extra, source));
             }
             Ok(()) => {}
             Err(found) => problems.extend(found),
@@ -73,10 +74,18 @@ fn read_all(files: Files, problems: &mut Vec<Problem>) -> Knowledge {
 }
 
 /// Refuses families of the same name, and versions of a family that there is not.
-fn check_families(knowledge: &mut Knowledge, sources: &BTreeMap<String, &Source>, problems: &mut Vec<Problem>) {
+fn check_families(
+    knowledge: &mut Knowledge,
+    sources: &BTreeMap<String, (bool, &Source)>,
+    problems: &mut Vec<Problem>,
+) {
     let mut first: BTreeMap<String, String> = BTreeMap::new();
     let mut refused = Vec::new();
-    for family in &knowledge.families {
+    // Built-in files come first: of two that share a name, the user's is the one to change.
+    let is_extra = |file: &str| sources.get(file).is_some_and(|(extra, _)| *extra);
+    let mut families: Vec<_> = knowledge.families.iter().collect();
+    families.sort_by_key(|family| is_extra(&family.file));
+    for family in families {
         let earlier = first.entry(family.name.clone()).or_insert_with(|| family.file.clone());
         if *earlier != family.file {
             let message = format!("two families are called `{}`", family.name);
@@ -100,14 +109,14 @@ fn check_families(knowledge: &mut Knowledge, sources: &BTreeMap<String, &Source>
 
 /// A problem at the value of a key of a file that was read before.
 fn at_key(
-    sources: &BTreeMap<String, &Source>,
+    sources: &BTreeMap<String, (bool, &Source)>,
     file: &str,
     key: &'static str,
     message: String,
     label: &str,
 ) -> Problem {
     let problem = Problem::error(message);
-    let Some(source) = sources.get(file) else { return problem };
+    let Some((_, source)) = sources.get(file) else { return problem };
     let Ok(document) = Document::parse(source) else { return problem };
     let span = document.root().take(key).map(|value| value.span()).unwrap_or_default();
     problem.at(source, span, label)

@@ -35,7 +35,7 @@ fn read_supply(document: &Document, file: &str) -> Option<Supply> {
     }
     let mut keys: Vec<&str> = Supply::FIGURES.iter().map(|(key, ..)| *key).collect();
     keys.push("voltage");
-    cite.check_keys(&root, &keys);
+    Cite::check_keys(&mut root, &keys);
     root.finish();
     let (name, voltage) = (name?.as_str().to_owned(), voltage?);
     Some(Supply { name, words, voltage, nets, figures, sources, file: file.to_owned() })

@@ -38,7 +38,7 @@ fn read_technology(document: &Document, file: &str) -> Option<Technology> {
         }
     }
     let keys: Vec<&str> = Technology::FIGURES.iter().map(|(key, ..)| *key).collect();
-    cite.check_keys(&root, &keys);
+    Cite::check_keys(&mut root, &keys);
     let mut tables = BTreeMap::new();
     if let Some(mut group) = root.table("tables") {
         for (key, dimension, _) in Technology::TABLES {
@@ -52,7 +52,7 @@ fn read_technology(document: &Document, file: &str) -> Option<Technology> {
                     rows.insert(row.key().to_owned(), figure);
                 }
             }
-            cite.check_keys(&table, &names);
+            Cite::check_keys(&mut table, &names);
             tables.insert((*key).to_owned(), rows);
         }
         group.finish();

@@ -10,5 +10,6 @@ mod netlist_corpus;
 mod netlist_hostile;
 mod recognition_symbols;
 mod reference_tokens;
+mod regulator_sheets;
 mod shared;
 mod small_board;

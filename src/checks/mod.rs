@@ -1,6 +1,5 @@
 //! Checks as files: the language they are written in, what they ask, and the verdicts.
 
-mod amount;
 pub mod cases;
 mod check;
 mod figures;

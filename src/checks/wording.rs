@@ -1,11 +1,10 @@
 //! Puts the figures of a judged requirement into its sentences.
 
-use super::amount;
 use super::language::{Context, Decision, Function, Operator, Path, value};
 use super::template::{End, Part, Scalar, Template};
 use super::verdict::Verdict;
 use crate::facts::Value;
-use crate::quantity::{Pair, Quantity};
+use crate::quantity::{Pair, Quantity, print_amount, print_range};
 
 /// What a sentence is filled with.
 #[derive(Debug, Clone, Copy)]
@@ -66,7 +65,7 @@ impl Filling<'_> {
                 let amount = self.scalar(scalar);
                 match amount {
                     None => Err("unknown".to_owned()),
-                    Some(value) if value.is_finite() => Ok(amount::print(value, *dimension)),
+                    Some(value) if value.is_finite() => Ok(print_amount(value, *dimension)),
                     Some(_) => Err("unbounded".to_owned()),
                 }
             }
@@ -123,7 +122,7 @@ impl Filling<'_> {
 fn range(figure: &Quantity) -> Result<String, String> {
     match figure.shown() {
         None => Err("unknown".to_owned()),
-        Some(range) => Ok(amount::print_range(range.low(), range.high(), figure.dimension())),
+        Some(range) => Ok(print_range(range, figure.dimension())),
     }
 }
 

@@ -154,7 +154,7 @@ fn a_finding_says_what_and_what_to_do_and_leaves_unknown_hints_out() {
     let board = series(Board::default(), 0, fact(V, 0.62, 1.0, "h"));
     let result = judged(&checks(SAMPLE), &board, 1);
     let finding = &result.findings[0];
-    assert_eq!(finding.message, "U1 gets 620 mV and needs 1.30 V on +5V");
+    assert_eq!(finding.message, "U1 gets 620 mV and needs 1.3 V on +5V");
     assert_eq!(finding.hints, ["raise it by 680 mV"]);
     assert_eq!(finding.quantities.iter().map(|(name, _)| name.as_str()).collect::<Vec<_>>(), ["headroom", "dropout"]);
     assert_eq!((result.counts.requirements, result.counts.fails), (1, 1));

@@ -127,7 +127,7 @@ impl<'a> Builder<'a> {
                 self.problems.push(Problem::warning(message).at(&netlist.source, span, "on another net too"));
             }
             let device = device(component, index, part, found.pins);
-            let id = DeviceId(self.circuit.graph.add_node(Node::Device(device)));
+            let id = DeviceId(self.circuit.graph.add_node(Node::Device(Box::new(device))));
             self.circuit.devices.push(id);
             self.circuit.by_reference.entry(component.reference.clone()).or_insert(id);
         }

@@ -64,7 +64,7 @@ const PHRASES: &[&str] = &[
 /// `exclude_from_bom` alone does not take a part off the board: it is what copper antennas, net ties, parts that the
 /// fabricator supplies and customer-fitted parts carry, all of which conduct.
 pub(super) fn fitted(device: &Device) -> Fitted {
-    let by_field = device.fields.iter().find(|field| says_left_out(field)).map(|field| field_text(field));
+    let by_field = device.fields.iter().find(|field| says_left_out(field)).map(field_text);
     let by_value = || value_says_left_out(&device.value, device.kind).then(|| device.value.trim().to_owned());
     let by_board = || {
         // Off the board by attribute: what is only drawn for a simulation. What is wired to the board instead is there.

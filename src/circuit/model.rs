@@ -219,7 +219,7 @@ pub struct Net {
 /// A node of the graph: devices and nets alternate.
 #[derive(Debug, Clone)]
 pub(super) enum Node {
-    Device(Device),
+    Device(Box<Device>),
     Net(Net),
 }
 

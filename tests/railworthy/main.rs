@@ -4,6 +4,8 @@
 
 mod archive;
 mod check_values;
+mod circuit_corpus;
+mod devices_symbols;
 mod failures;
 mod judge;
 mod netlist_corpus;

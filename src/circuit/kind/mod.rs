@@ -37,7 +37,7 @@ pub(super) fn nature(clues: &Clues<'_>) -> Nature {
     let kind = refined(kind(clues, &symbol, &text), clues, &text);
     let polarity = match kind {
         DeviceKind::Bipolar | DeviceKind::Mosfet | DeviceKind::Jfet => {
-            polarity::polarity(&symbol, &text).or_else(|| numbers::polarity(&clues.value.to_uppercase()))
+            polarity::polarity(&symbol, &text).unwrap_or_else(|| numbers::polarity(&clues.value.to_uppercase()))
         }
         _ => None,
     };

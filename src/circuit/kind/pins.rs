@@ -14,11 +14,12 @@ pub(super) fn fits(kind: DeviceKind, pins: &[Pin]) -> bool {
     };
     match kind {
         Resistor | Capacitor | Inductor | Ferrite | Fuse | Thermistor | Battery => {
-            pins.len() <= 4 && !pins.iter().any(is_of_a_circuit)
+            (pins.len() <= 4 || pins.len() <= 8 && pins.iter().all(|pin| is_bare(&pin.name)))
+                && !pins.iter().any(is_of_a_circuit)
         }
         Crystal => pins.len() <= 8,
         Diode | Schottky | Zener => pins.len() <= 16 && !pins.iter().any(is_of_a_circuit),
-        Bipolar | Mosfet | Jfet => pins.len() <= 16 && !pins.iter().any(is_supply_of_a_circuit),
+        Bipolar | Mosfet | Jfet => pins.len() <= 32 && !pins.iter().any(is_supply_of_a_circuit),
         _ => true,
     }
 }
@@ -57,6 +58,11 @@ pub(super) fn kind(pins: &[Pin]) -> Option<DeviceKind> {
     }
     if has("A") && has("K") && pins.len() <= 4 && all(DIODE) {
         return Some(DeviceKind::Diode);
+    }
+    let unnamed = names.iter().filter(|name| name.trim_matches('~').is_empty() || *name == "AC").count();
+    if has("+") && has("-") && pins.len() == 4 && unnamed == 2 && !pins.iter().any(|pin| pin.kind == PinType::Output)
+    {
+        return Some(DeviceKind::Bridge);
     }
     if is_amplifier(pins) {
         return Some(DeviceKind::OpAmp);

@@ -32,15 +32,19 @@ const P: &[&str] = &[
     "P-MOS",
 ];
 
-/// `symbol` in upper case, `text` in lower case. A pair of both polarities has none.
-pub(super) fn polarity(symbol: &str, text: &str) -> Option<Polarity> {
-    one_of(symbol).unwrap_or_else(|| one_of(&text.to_uppercase()).unwrap_or(None))
+const BOTH: &[&str] =
+    &["P/N-CH", "N/P-CH", "N AND P", "P AND N", "N+P", "P+N", "N/P CH", "P/N CH", "COMPLEMENTARY PAIR"];
+
+/// What a symbol's name (in upper case), then its text, say; the inner `None` for a pair of both polarities, the outer
+/// one where nothing is said.
+pub(super) fn polarity(symbol: &str, text: &str) -> Option<Option<Polarity>> {
+    one_of(symbol).or_else(|| one_of(&text.to_uppercase()))
 }
 
-/// The outer `None`: nothing is said.
 fn one_of(text: &str) -> Option<Option<Polarity>> {
     let says = |words: &[&str]| words.iter().any(|word| text.contains(word));
     match (says(N), says(P)) {
+        _ if says(BOTH) => Some(None),
         (true, false) => Some(Some(Polarity::N)),
         (false, true) => Some(Some(Polarity::P)),
         (true, true) => Some(None),

@@ -53,6 +53,8 @@ const NAMES: &[(&str, DeviceKind)] = &[
     ("CAP_POL*", Capacitor),
     ("CPOL*", Capacitor),
     ("L_COUPLED*", Transformer),
+    ("L_IRON_COUPLED*", Transformer),
+    ("L_FERRITE_COUPLED*", Transformer),
     ("L", Inductor),
     ("INDUCTOR*", Inductor),
     ("IND", Inductor),

@@ -106,6 +106,7 @@ pub(super) fn diode(text: &str) -> Option<DeviceKind> {
         ("tvs", Zener),
         ("transil", Zener),
         ("suppressor", Zener),
+        ("esd protection", Zener),
         ("bridge", Bridge),
         ("light emitting", Led),
     ];

@@ -223,10 +223,9 @@ mod tests {
 
         #[test]
         fn no_text_makes_a_reader_fail_otherwise_than_by_an_error(text in "\\PC{0,24}", which in 0..DIMENSIONS.len()) {
-            for result in [read_amount(&text, DIMENSIONS[which]).err(), read_range(&text, DIMENSIONS[which]).err()] {
-                if let Some(error) = result {
-                    prop_assert!(text.get(error.span().start()..error.span().end()).is_some());
-                }
+            let errors = [read_amount(&text, DIMENSIONS[which]).err(), read_range(&text, DIMENSIONS[which]).err()];
+            for error in errors.into_iter().flatten() {
+                prop_assert!(text.get(error.span().start()..error.span().end()).is_some());
             }
         }
 

@@ -10,8 +10,7 @@ pub(super) fn words(text: &str) -> Vec<String> {
         .replace("+/-", "±")
         .replace("+-", "±")
         .replace("Âµ", "µ")
-        .replace('\u{3bc}', "µ")
-        .replace(LOST, "µ")
+        .replace(['\u{3bc}', LOST], "µ")
         .replace('\u{2126}', "Ω");
     joined(&cut(&plain))
 }

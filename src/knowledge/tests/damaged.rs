@@ -149,3 +149,17 @@ fn an_unknown_technology_and_a_supply_without_a_voltage_are_told() {
     mains.toml:2:1 unknown key `voltag` (not a key here); did you mean `voltage`?
     "#);
 }
+
+proptest::proptest! {
+    #[test]
+    fn no_damage_makes_the_reader_fail(at in 0..GOOD.len(), taken in 0..12_usize, put in "[\\PC\n\"=\\[\\]{}./±µ-]{0,6}") {
+        let mut text = GOOD.to_owned();
+        text.replace_range(at..(at + taken).min(GOOD.len()), &put);
+        let source = Source::new("x1.toml", text);
+        let found = family_of(&source, "parts/x1.toml");
+        let places_lie_inside = |problems: &[crate::source::Problem]| {
+            problems.iter().all(|problem| problem.place().is_some_and(|(source, span)| span.end() <= source.text().len()))
+        };
+        proptest::prop_assert!(found.err().is_none_or(|problems| !problems.is_empty() && places_lie_inside(&problems)));
+    }
+}

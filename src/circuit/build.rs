@@ -172,6 +172,8 @@ fn device(component: &Component, index: usize, part: Option<&LibraryPart>, pins:
         fields: component.fields.clone(),
         sheet: component.sheet.clone(),
         description: described,
+        description_of_other: component.description.is_empty()
+            && part.is_some_and(|part| part.part != component.part),
         keywords: keywords.map(|field| field.value.clone()).unwrap_or_default(),
         footprint: component.footprint.clone(),
         ends: ends(&pins),

@@ -187,6 +187,9 @@ pub struct Device {
     pub sheet: String,
     /// The symbol's description; that of the library part where the component has none.
     pub description: String,
+    /// Whether that text was written for another symbol, of which this one is an alias: it tells what kind of part this
+    /// is, but its figures are those of the other.
+    pub description_of_other: bool,
     /// The symbol's key words, or empty.
     pub keywords: String,
     /// Footprint, `library:name` or empty.

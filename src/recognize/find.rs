@@ -160,7 +160,7 @@ impl Finder<'_> {
         let grounds = self.nets(&roles.ground);
         let mut output_net = rail.net;
         let divider = self.divider(&roles, output_net, &grounds);
-        if output_net.is_none() && part.kind == RegulatorKind::Switching {
+        if part.kind == RegulatorKind::Switching && output_net.is_none_or(|net| self.is_switch_node(net)) {
             output_net = divider.as_ref().and_then(|divider| divider.senses).or_else(|| self.beyond_inductor(part));
         }
         let mode = self.mode(part, &roles, divider.as_ref());
@@ -228,20 +228,42 @@ impl Finder<'_> {
         let signed = |volts: f64| if sign == Sign::Negative { -volts.abs() } else { volts.abs() };
         let pair = part.told.pair.as_ref().filter(|_| count == 2).and_then(|pair| pair.get(index));
         let told = pair.or(part.told.volts.as_ref());
-        if let Some(told) = told {
+        let name = output.map_or("", |net| self.circuit.net(net).name.as_str());
+        let named = supply_name(name);
+        let sure = |_: &&Nominal| pair.is_some() || !part.told.unsure;
+        if let Some(told) = told.filter(sure) {
             return Some(Nominal { volts: signed(told.volts), ..told.clone() });
         }
-        let name = &self.circuit.net(output?).name;
         if let Some(volts) = self.overrides.output_voltage(name) {
             return Some(Nominal { volts, grade: Grade::Declared, source: format!("declared for {name}") });
         }
-        let named = supply_name(name)?;
+        if let Some(told) =
+            told.filter(|_| part.kind != RegulatorKind::Switching || named.is_some() && !part.told.faint)
+        {
+            // Among the readings of a code the net's name may choose.
+            let near = |volts: f64| named.is_some_and(|named| (named.volts.abs() / volts - 1.0).abs() < 0.05);
+            let fitting =
+                std::iter::once(told.volts).chain(part.told.others.iter().copied()).find(|volts| near(*volts));
+            if let Some(volts) = fitting.or((named.is_none() || !part.told.faint).then_some(told.volts)) {
+                return Some(Nominal { volts: signed(volts), ..told.clone() });
+            }
+        }
+        let named = named?;
         Some(Nominal { volts: named.volts, grade: Grade::Inferred, source: format!("net name {name}") })
+    }
+
+    /// Whether a pin called output is in fact the switch node: an inductor and no capacitor to ground is on it.
+    fn is_switch_node(&self, net: NetId) -> bool {
+        let kind = |device: DeviceId| self.circuit.device(device).kind;
+        let inductor = self.circuit.neighbours(net).any(|(device, _)| kind(device) == DeviceKind::Inductor);
+        let held = |(device, other)| kind(device) == DeviceKind::Capacitor && self.circuit.net(other).ground;
+        inductor && !self.circuit.neighbours(net).any(held)
     }
 
     /// The rail of a switching part without an output pin: the net beyond the inductor on its switch node.
     fn beyond_inductor(&self, part: &Part<'_>) -> Option<NetId> {
-        let switch = part.names.iter().zip(&self.device.pins).filter(|(name, _)| name.is(Word::Switching));
+        let node = |name: &PinName| name.is(Word::Switching) || name.is(Word::Output);
+        let switch = part.names.iter().zip(&self.device.pins).filter(|(name, _)| node(name));
         let nets: BTreeSet<NetId> = switch.filter_map(|(_, pin)| pin.net).collect();
         let inputs: Vec<NetId> = self.nets(&pins_of(part.roles, RoleName::Input));
         nets.iter().find_map(|net| {

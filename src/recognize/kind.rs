@@ -113,7 +113,8 @@ impl Candidate<'_> {
     fn series_kind(&self) -> Option<RegulatorKind> {
         let text = &self.text;
         let linear = text.linear || text.reference && !text.switching;
-        if self.is_module_by_name() && !text.linear {
+        // A separate return of the output is that of an isolated converter.
+        if (self.is_module_by_name() || self.has(Word::IsolatedReturn)) && !text.linear {
             return self.has_output().then_some(RegulatorKind::Switching);
         }
         if self.has(Word::Switching) || self.has(Word::Pump) {
@@ -213,6 +214,22 @@ impl Candidate<'_> {
         let strong_out = self.has(Word::Output);
         score += if strong_in { 0.5 } else { -1.0 };
         score += if strong_out { 0.5 } else { -1.0 };
+        // `VIN` and `VOUT` speak of a supply, `IN` and `OUT` may be signals.
+        let voltage = |word: Word| {
+            let pins = self.names.iter().zip(&self.circuit.device(self.id).pins);
+            pins.into_iter().any(|(name, pin)| name.is(word) && pin.name.to_ascii_uppercase().contains('V'))
+        };
+        if voltage(Word::Input) && voltage(Word::Output) {
+            score += 0.75;
+        }
+        if self
+            .names
+            .iter()
+            .zip(&self.circuit.device(self.id).pins)
+            .any(|(_, pin)| pin.name.eq_ignore_ascii_case("ON"))
+        {
+            score -= 1.5;
+        }
         let typed = |word: Word, kind: PinType| {
             self.names.iter().enumerate().any(|(index, name)| name.is(word) && self.pin_kind(index) == kind)
         };

@@ -15,6 +15,12 @@ use super::words::TextSigns;
 pub(super) struct Told {
     /// The one output voltage, or that of all outputs.
     pub(super) volts: Option<Nominal>,
+    /// Whether `volts` is only one of several readings of a code, or a code that may be none.
+    pub(super) unsure: bool,
+    /// Whether the digits may be no voltage at all.
+    pub(super) faint: bool,
+    /// The other readings.
+    pub(super) others: Vec<f64>,
     /// The voltages of a part with two outputs, in order.
     pub(super) pair: Option<[Nominal; 2]>,
     /// The name or text says that the part is adjustable.
@@ -55,6 +61,7 @@ pub(super) fn read(device: &Device, known: &Known, text: &TextSigns, knowledge: 
     let mut told = Told::default();
     // A description speaks of the symbol's part; under another part's number it says nothing.
     let described = known.symbol_agrees || !known.value_names_part;
+    let described = described && !device.description_of_other;
     let stated: &[_] = if described { &text.volts } else { &[] };
     for (name, place, grade) in texts(device, known) {
         if says_adjustable(name) {
@@ -69,6 +76,9 @@ pub(super) fn read(device: &Device, known: &Known, text: &TextSigns, knowledge: 
         let Some(chosen) = chosen(name, known, family, code, stated) else { continue };
         let grade = if chosen.sure { grade } else { grade.weaker(Grade::Inferred) };
         told.volts = Some(Nominal { volts: chosen.volts, grade, source: format!("{place} {name}") });
+        told.unsure = !chosen.sure;
+        told.faint = chosen.faint;
+        told.others = chosen.others;
         if chosen.contradicted && described {
             told.remark = Some(format!("{name} is taken for {} V, its description says otherwise", chosen.volts));
         }
@@ -108,7 +118,7 @@ fn chosen(
         let volts =
             other.copied().filter(|other| says(*other) && !says(volts) && !name.contains('.')).unwrap_or(volts);
         let contradicted = !stated.is_empty() && !stated.iter().any(|each| (each.volts / volts - 1.0).abs() < 0.05);
-        return Some(Chosen { volts, sure: true, contradicted });
+        return Some(Chosen { volts, sure: true, contradicted, others: Vec::new(), faint: false });
     }
     let base = known.hit.filter(|_| own_name).map_or(0, |hit| hit.base);
     let mut readings: Vec<Reading> = read_name(&reduced(name), base);

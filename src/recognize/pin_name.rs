@@ -17,6 +17,8 @@ pub(super) enum Word {
     /// A reference output: an output where nothing else is one.
     ReferenceOutput,
     Ground,
+    /// The return of an isolated output: `-VOUT`.
+    IsolatedReturn,
     Adjust,
     /// `REF`: the adjust pin of shunts.
     Reference,
@@ -233,316 +235,116 @@ fn fallback(text: &str) -> Word {
     Word::Unknown
 }
 
+#[rustfmt::skip]
 const INPUT: &[&str] = &[
-    "IN", "VIN", "VI", "INPUT", "VINPUT", "+VIN", "VIN+", "+IN/VIN", "UNREG", "VUNREG", "UIN", "UE", "LINE", "I",
-    "VLDOIN", "LDOIN", "INLDO", "VINLDO", "PIN/IN", "PVIN", "AVIN", "VSUPPLY",
+    "IN", "VIN", "VI", "INPUT", "VINPUT", "+VIN", "VIN+", "+IN/VIN", "UNREG", "VUNREG", "UIN", "UE", "LINE",
+    "I", "VLDOIN", "LDOIN", "INLDO", "VINLDO", "PIN/IN", "PVIN", "AVIN", "VSUPPLY",
 ];
+#[rustfmt::skip]
 const SUPPLY: &[&str] = &[
-    "VCC", "VDD", "VS", "V+", "VBAT", "VBATT", "BAT", "BATT", "VSUP", "SUPPLY", "VPWR", "VP", "+V", "VM", "AVDD",
-    "AVCC", "+VS", "VS+", "VCC+", "+VCC", "VBUS", "PWR", "POWER", "VDDA",
+    "VCC", "VDD", "VS", "V+", "VBAT", "VBATT", "BAT", "BATT", "VSUP", "SUPPLY", "VPWR", "VP", "+V", "VM",
+    "AVDD", "AVCC", "+VS", "VS+", "VCC+", "+VCC", "VBUS", "PWR", "POWER", "VDDA",
 ];
+#[rustfmt::skip]
 const OUTPUT: &[&str] = &[
-    "OUT",
-    "VOUT",
-    "VO",
-    "OUTPUT",
-    "VOUTPUT",
-    "Q",
-    "O",
-    "REGOUT",
-    "VREG",
-    "REG",
-    "OUTF",
-    "VOUTF",
-    "OUTFORCE",
-    "VOUTFORCE",
-    "+VOUT",
-    "VOUT+",
-    "UOUT",
-    "UA",
-    "LDOOUT",
-    "VLDO",
-    "OUTLDO",
-    "-VOUT",
-    "VOF",
-    "OUT+",
-    "OUT-",
+    "OUT", "VOUT", "VO", "OUTPUT", "VOUTPUT", "Q", "O", "REGOUT", "VREG", "REG", "OUTF", "VOUTF", "OUTFORCE",
+    "VOUTFORCE", "+VOUT", "VOUT+", "UOUT", "UA", "LDOOUT", "VLDO", "OUTLDO", "VOF", "OUT+", "+VO", "VO+",
 ];
-const REFERENCE_OUTPUT: &[&str] = &["VREF", "REFOUT", "VREFOUT", "VREFF", "REFF", "VR"];
+#[rustfmt::skip]
+const REFERENCE_OUTPUT: &[&str] = &[
+    "VREF", "REFOUT", "VREFOUT", "VREFF", "REFF", "VR",
+];
+#[rustfmt::skip]
 const GROUND: &[&str] = &[
-    "GND", "VSS", "VEE", "COM", "COMMON", "GROUND", "0V", "AGND", "PGND", "SGND", "DGND", "GNDS", "GNDF", "GNDA",
-    "GNDP", "GNDD", "V-", "RTN", "RETURN", "G", "-VIN", "VIN-", "VSSA", "AVSS", "MASSE", "-V", "EARTH",
+    "GND", "VSS", "VEE", "COM", "COMMON", "GROUND", "0V", "AGND", "PGND", "SGND", "DGND", "GNDS", "GNDF",
+    "GNDA", "GNDP", "GNDD", "V-", "RTN", "RETURN", "G", "-VIN", "VIN-", "VSSA", "AVSS", "MASSE", "-V", "EARTH",
 ];
+/// A separate return says that the output is isolated.
+const ISOLATED: &[&str] = &["-VOUT", "VOUT-", "-VO", "VO-", "-OUT", "OUT-"];
+#[rustfmt::skip]
 const ADJUST: &[&str] = &[
     "ADJ", "ADJUST", "FB", "FEEDBACK", "SET", "VSET", "VADJ", "VFB", "VA", "FBK", "FDBK", "RSET", "SETV", "IFB",
     "OUTFB", "ADJV", "VOUTSET", "RADJ", "VOSET",
 ];
+#[rustfmt::skip]
 const ENABLE: &[&str] = &[
-    "EN",
-    "ENA",
-    "ENABLE",
-    "CE",
-    "ON",
-    "INH",
-    "INHIBIT",
-    "CTRL",
-    "CONT",
-    "CONTROL",
-    "VEN",
-    "ENBL",
-    "VDIS",
-    "CHIPENABLE",
-    "ONOFF",
-    "REMOTE",
-    "ENUV",
-    "ENUVLO",
-    "RUN",
-    "VCE",
-    "ENLDO",
-    "LDOEN",
+    "EN", "ENA", "ENABLE", "CE", "ON", "INH", "INHIBIT", "CTRL", "CONT", "CONTROL", "VEN", "ENBL", "VDIS",
+    "CHIPENABLE", "ONOFF", "REMOTE", "ENUV", "ENUVLO", "RUN", "VCE", "ENLDO", "LDOEN",
 ];
+#[rustfmt::skip]
 const DISABLE: &[&str] = &[
-    "SHDN",
-    "SHUTDOWN",
-    "SD",
-    "SHTD",
-    "SHDWN",
-    "SHUTDN",
-    "OFF",
-    "DIS",
-    "DISABLE",
-    "STBY",
-    "STANDBY",
-    "SLEEP",
-    "SLP",
-    "SHD",
-    "SHUT",
-    "PD",
-    "PDN",
-    "POWERDOWN",
-    "PWRDN",
-    "OFFON",
+    "SHDN", "SHUTDOWN", "SD", "SHTD", "SHDWN", "SHUTDN", "OFF", "DIS", "DISABLE", "STBY", "STANDBY", "SLEEP",
+    "SLP", "SHD", "SHUT", "PD", "PDN", "POWERDOWN", "PWRDN", "OFFON",
 ];
+#[rustfmt::skip]
 const SENSE: &[&str] = &[
-    "SENSE",
-    "SNS",
-    "VSENSE",
-    "OUTS",
-    "OUTSENSE",
-    "VOSNS",
-    "VOS",
-    "KELVIN",
-    "SENS",
-    "VSNS",
-    "VOUTS",
-    "VOUTSNS",
-    "VOUTSENSE",
-    "S",
-    "OUTSNS",
-    "VREFS",
-    "REFS",
-    "VSENS",
-    "+SENSE",
-    "SENSE+",
-    "VOSENSE",
-    "KELVINSENSE",
+    "SENSE", "SNS", "VSENSE", "OUTS", "OUTSENSE", "VOSNS", "VOS", "KELVIN", "SENS", "VSNS", "VOUTS", "VOUTSNS",
+    "VOUTSENSE", "S", "OUTSNS", "VREFS", "REFS", "VSENS", "+SENSE", "SENSE+", "VOSENSE", "KELVINSENSE",
 ];
+#[rustfmt::skip]
 const BYPASS: &[&str] = &[
-    "BYP",
-    "BYPASS",
-    "BP",
-    "NR",
-    "CBYP",
-    "CN",
-    "NOISE",
-    "NOISEREDUCTION",
-    "SS",
-    "SOFTSTART",
-    "CNR",
-    "CSS",
-    "FILT",
-    "FILTER",
-    "COMP",
-    "CC",
-    "CREF",
-    "CNOISE",
-    "FC",
-    "NP",
-    "CAP",
-    "BPS",
-    "CBP",
-    "REFBYP",
-    "NRSS",
-    "VCAP",
-    "CP",
-    "CB",
-    "BYPS",
-    "REFCAP",
-    "FF",
-    "CFF",
-    "CNRSS",
+    "BYP", "BYPASS", "BP", "NR", "CBYP", "CN", "NOISE", "NOISEREDUCTION", "SS", "SOFTSTART", "CNR", "CSS",
+    "FILT", "FILTER", "COMP", "CC", "CREF", "CNOISE", "FC", "NP", "CAP", "BPS", "CBP", "REFBYP", "NRSS", "VCAP",
+    "CP", "CB", "BYPS", "REFCAP", "FF", "CFF", "CNRSS",
 ];
-const BIAS: &[&str] = &["BIAS", "VBIAS", "VCONTROL", "VC", "VCNTL", "VCTRL", "CNTL", "VL", "VCONT", "VB", "VINBIAS"];
+#[rustfmt::skip]
+const BIAS: &[&str] = &[
+    "BIAS", "VBIAS", "VCONTROL", "VC", "VCNTL", "VCTRL", "CNTL", "VL", "VCONT", "VB", "VINBIAS",
+];
+#[rustfmt::skip]
 const POWER_GOOD: &[&str] = &[
-    "PG",
-    "PGOOD",
-    "POK",
-    "PWRGD",
-    "PWROK",
-    "RESET",
-    "RST",
-    "ERROR",
-    "ERR",
-    "LBO",
-    "RO",
-    "VDET",
-    "OK",
-    "POR",
-    "NPOR",
-    "POWERGOOD",
-    "PWRGOOD",
-    "PGD",
-    "RESOUT",
-    "ERRFLAG",
-    "PF",
-    "POWEROK",
-    "VOK",
-    "DROPOUT",
-    "PGO",
+    "PG", "PGOOD", "POK", "PWRGD", "PWROK", "RESET", "RST", "ERROR", "ERR", "LBO", "RO", "VDET", "OK", "POR",
+    "NPOR", "POWERGOOD", "PWRGOOD", "PGD", "RESOUT", "ERRFLAG", "PF", "POWEROK", "VOK", "DROPOUT", "PGO",
 ];
-const FAULT_FLAG: &[&str] = &["FLG", "FLAG", "FAULT", "FLT", "OC", "OCB", "FAUL", "STATUS", "DIAG", "FAULTB"];
-const NOT_CONNECTED: &[&str] = &["NC", "DNC", "TP", "IC", "NU", "DNU", "RSVD", "RES", "NOCONNECT", "RFU", "N/C"];
+#[rustfmt::skip]
+const FAULT_FLAG: &[&str] = &[
+    "FLG", "FLAG", "FAULT", "FLT", "OC", "OCB", "FAUL", "STATUS", "DIAG", "FAULTB",
+];
+#[rustfmt::skip]
+const NOT_CONNECTED: &[&str] = &[
+    "NC", "DNC", "TP", "IC", "NU", "DNU", "RSVD", "RES", "NOCONNECT", "RFU", "N/C",
+];
+#[rustfmt::skip]
 const TAB: &[&str] = &[
-    "EP",
-    "PAD",
-    "TAB",
-    "EPAD",
-    "DAP",
-    "TPAD",
-    "PPAD",
-    "THERMAL",
-    "THERMALPAD",
-    "HEATSINK",
-    "HS",
-    "EXP",
-    "SLUG",
-    "MP",
-    "EXPOSEDPAD",
-    "EPGND",
-    "TH",
-    "THPAD",
-    "TABOUT",
-    "MTAB",
-    "SHIELD",
-    "CASE",
-    "EXPPAD",
+    "EP", "PAD", "TAB", "EPAD", "DAP", "TPAD", "PPAD", "THERMAL", "THERMALPAD", "HEATSINK", "HS", "EXP", "SLUG",
+    "MP", "EXPOSEDPAD", "EPGND", "TH", "THPAD", "TABOUT", "MTAB", "SHIELD", "CASE", "EXPPAD",
 ];
+#[rustfmt::skip]
 const AUXILIARY: &[&str] = &[
-    "TRIM", "TEMP", "TEMPER", "VTEMP", "DELAY", "CDELAY", "CT", "CD", "TIMEOUT", "D", "ILIM", "IMON", "VIOC", "PGFB",
-    "TEST", "MR", "SEQ", "TAP", "VTAP", "LIMIT", "ILIMIT", "REFIN", "LBI", "VTC", "HOLD", "SSCTRL", "VMON", "CL",
-    "CS", "CSEN", "VZ", "SI", "SO", "WD", "WI", "WDI", "RADJ", "DLY", "RR", "PGDLY", "CDLY", "MODE", "GS", "SEL",
+    "TRIM", "TEMP", "TEMPER", "VTEMP", "DELAY", "CDELAY", "CT", "CD", "TIMEOUT", "D", "ILIM", "IMON", "VIOC",
+    "PGFB", "TEST", "MR", "SEQ", "TAP", "VTAP", "LIMIT", "ILIMIT", "REFIN", "LBI", "VTC", "HOLD", "SSCTRL",
+    "VMON", "CL", "CS", "CSEN", "VZ", "SI", "SO", "WD", "WI", "WDI", "RADJ", "DLY", "RR", "PGDLY", "CDLY",
+    "MODE", "GS", "SEL",
 ];
-const CATHODE: &[&str] = &["K", "CATHODE", "CATH", "KATHODE", "C", "CAT"];
-const ANODE: &[&str] = &["A", "ANODE", "AN", "ANOD"];
+#[rustfmt::skip]
+const CATHODE: &[&str] = &[
+    "K", "CATHODE", "CATH", "KATHODE", "C", "CAT",
+];
+#[rustfmt::skip]
+const ANODE: &[&str] = &[
+    "A", "ANODE", "AN", "ANOD",
+];
+#[rustfmt::skip]
 const SWITCHING: &[&str] = &[
-    "SW", "LX", "PH", "PHASE", "BST", "BOOT", "CBOOT", "VSW", "VLX", "SWN", "SWP", "LSW", "HDRV", "LDRV", "UGATE",
-    "LGATE", "DRVH", "DRVL", "HSD", "LSD", "BSFB", "BSOUT", "SYNC", "RT", "FREQ", "FSW", "L", "INDUCTOR", "SWITCH",
-    "SWC", "SWE", "DRC", "IPK", "FX", "CBST", "TG", "BG", "RON", "SWB", "COIL", "RTCLK",
+    "SW", "LX", "PH", "PHASE", "BST", "BOOT", "CBOOT", "VSW", "VLX", "SWN", "SWP", "LSW", "HDRV", "LDRV",
+    "UGATE", "LGATE", "DRVH", "DRVL", "HSD", "LSD", "BSFB", "BSOUT", "SYNC", "RT", "FREQ", "FSW", "L",
+    "INDUCTOR", "SWITCH", "SWC", "SWE", "DRC", "IPK", "FX", "CBST", "TG", "BG", "RON", "SWB", "COIL", "RTCLK",
 ];
+#[rustfmt::skip]
 const PUMP: &[&str] = &[
     "C+", "C-", "CAP+", "CAP-", "C1+", "C1-", "C2+", "C2-", "CP+", "CP-", "CPP", "CPN", "CFLY+", "CFLY-", "CF+",
-    "CF-", "C1P", "C1N", "C2P", "C2N", "CFLYP", "CFLYN", "LV", "OSC", "CAPP", "CAPN", "C3+", "C3-", "FC+", "FC-",
+    "CF-", "C1P", "C1N", "C2P", "C2N", "CFLYP", "CFLYN", "LV", "OSC", "CAPP", "CAPN", "C3+", "C3-", "FC+",
+    "FC-",
 ];
+#[rustfmt::skip]
 const ALIEN: &[&str] = &[
-    "+IN",
-    "-IN",
-    "IN+",
-    "IN-",
-    "+INA",
-    "-INA",
-    "+INB",
-    "-INB",
-    "INA+",
-    "INA-",
-    "INB+",
-    "INB-",
-    "SDA",
-    "SCL",
-    "MOSI",
-    "MISO",
-    "SCK",
-    "SCLK",
-    "CLK",
-    "DATA",
-    "TX",
-    "RX",
-    "TXD",
-    "RXD",
-    "D+",
-    "D-",
-    "DP",
-    "DM",
-    "CHG",
-    "CHRG",
-    "STAT",
-    "PROG",
-    "TS",
-    "NTC",
-    "ISET",
-    "GATE",
-    "DRAIN",
-    "SOURCE",
-    "QOD",
-    "SDI",
-    "SDO",
-    "SCKI",
-    "SDTI",
-    "SDTO",
-    "RXI",
-    "TXO",
-    "VIO",
-    "CHGIN",
-    "ISENSE",
-    "THM",
-    "TMR",
-    "EOC",
-    "ACPR",
-    "RS+",
-    "RS-",
-    "VBST",
-    "IREF",
-    "CS+",
-    "CS-",
-    "XTAL",
-    "XIN",
-    "XOUT",
-    "DOUT",
-    "DIN",
-    "DO",
-    "DI",
-    "ADDR",
-    "A0",
-    "A1",
-    "SWCLK",
-    "SWDIO",
-    "TCK",
-    "TDI",
-    "TDO",
-    "TMS",
-    "INT",
-    "IRQ",
-    "DISCH",
-    "THR",
-    "THRES",
-    "TRIG",
-    "TR",
-    "DISCHARGE",
-    "CV",
-    "E",
-    "B",
-    "COLLECTOR",
-    "EMITTER",
-    "BASE",
+    "+IN", "-IN", "IN+", "IN-", "+INA", "-INA", "+INB", "-INB", "INA+", "INA-", "INB+", "INB-", "SDA", "SCL",
+    "MOSI", "MISO", "SCK", "SCLK", "CLK", "DATA", "TX", "RX", "TXD", "RXD", "D+", "D-", "DP", "DM", "CHG",
+    "CHRG", "STAT", "PROG", "TS", "NTC", "ISET", "GATE", "DRAIN", "SOURCE", "QOD", "SDI", "SDO", "SCKI", "SDTI",
+    "SDTO", "RXI", "TXO", "VIO", "CHGIN", "ISENSE", "THM", "TMR", "EOC", "ACPR", "RS+", "RS-", "VBST", "IREF",
+    "CS+", "CS-", "XTAL", "XIN", "XOUT", "DOUT", "DIN", "DO", "DI", "ADDR", "A0", "A1", "SWCLK", "SWDIO", "TCK",
+    "TDI", "TDO", "TMS", "INT", "IRQ", "DISCH", "THR", "THRES", "TRIG", "TR", "DISCHARGE", "CV", "E", "B",
+    "COLLECTOR", "EMITTER", "BASE",
 ];
 
 /// Looks a reduced word up; `barred` matters to logic words only.
@@ -558,6 +360,7 @@ fn look_up(text: &str, barred: bool) -> Option<Word> {
         (INPUT, Word::Input),
         (OUTPUT, Word::Output),
         (GROUND, Word::Ground),
+        (ISOLATED, Word::IsolatedReturn),
         (ADJUST, Word::Adjust),
         (ENABLE, Word::Enable(barred)),
         // A barred shutdown is on while high, so it is no active-low enable.

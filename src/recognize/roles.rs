@@ -124,7 +124,7 @@ impl Assignment<'_> {
                 Some(Word::Supply) => Some(RoleName::Bias),
                 Some(Word::Output) => Some(RoleName::Output),
                 Some(Word::ReferenceOutput) if !has_output => Some(RoleName::Output),
-                Some(Word::Ground) => Some(RoleName::Ground),
+                Some(Word::Ground | Word::IsolatedReturn) => Some(RoleName::Ground),
                 Some(Word::Minus) if !has_ground && !has_adjust => Some(RoleName::Ground),
                 Some(Word::Adjust) => Some(RoleName::Adjust),
                 Some(Word::Reference) if !has_adjust => Some(RoleName::Adjust),

@@ -66,6 +66,8 @@ static RUN: LazyLock<Regex> = LazyLock::new(|| regex(r"\d+"));
 fn seventy_code(code: &str) -> Option<f64> {
     let number: f64 = code.parse().ok()?;
     match number {
+        // Switching drop-in replacements have versions of 3.3 V that are called 7803.
+        3.0 => Some(3.3),
         5.0..=12.0 | 15.0 | 16.0 | 17.0 | 18.0 | 20.0 | 24.0 | 27.0 => Some(number),
         25.0 | 26.0 | 28.0..=90.0 => Some(number / 10.0),
         _ => None,
@@ -185,7 +187,10 @@ fn digits(code: &str, plainness: Plainness, readings: &mut Vec<Reading>) {
             {
                 add(tenths / 10.0, 1);
             }
-            add(number / 1000.0, 3);
+            // `2925`; but `-1000` is more likely a rating in milliamperes.
+            if !code.ends_with("00") {
+                add(number / 1000.0, 3);
+            }
         }
         _ => {}
     }
@@ -330,7 +335,7 @@ pub(super) struct Arbiters<'a> {
 }
 
 /// A chosen voltage.
-#[derive(Debug, Clone, Copy, PartialEq)]
+#[derive(Debug, Clone, PartialEq)]
 pub(super) struct Chosen {
     /// Magnitude in volts.
     pub(super) volts: f64,
@@ -338,6 +343,16 @@ pub(super) struct Chosen {
     pub(super) sure: bool,
     /// Whether the description says something else.
     pub(super) contradicted: bool,
+    /// Other readings that are as good, where the choice is not sure.
+    pub(super) others: Vec<f64>,
+    /// The digits may be part of the part's number and no voltage at all.
+    pub(super) faint: bool,
+}
+
+impl Chosen {
+    fn sure(volts: f64, contradicted: bool) -> Self {
+        Self { volts, sure: true, contradicted, others: Vec::new(), faint: false }
+    }
 }
 
 /// Codes that a reader takes for a voltage without being told.
@@ -359,50 +374,58 @@ pub(super) fn choose(readings: &[Reading], arbiters: Arbiters<'_>) -> Option<Cho
         readings.iter().filter(|reading| reading.plainness < Plainness::Faint).filter(made).collect();
     if let Some(reading) = family.iter().find(|reading| stated(reading).is_some()).or(family.first()) {
         let contradicted = stated(reading).is_none() && !arbiters.stated.is_empty();
-        return Some(Chosen { volts: exact(reading), sure: true, contradicted });
+        return Some(Chosen::sure(exact(reading), contradicted));
     }
     // The plainest reading that the description confirms; a more precise statement is the better figure.
     if let Some((reading, volts)) = readings.iter().find_map(|reading| stated(reading).map(|volts| (reading, volts)))
     {
         let spelled = readings.iter().any(|other| other.plainness == Plainness::Spelled);
         if !spelled || reading.plainness == Plainness::Spelled {
-            return Some(Chosen { volts, sure: true, contradicted: false });
+            return Some(Chosen::sure(volts, false));
         }
     }
     let contradicted = !arbiters.stated.is_empty();
-    let best = readings.first()?;
+    let best = *readings.first()?;
     match best.plainness {
-        Plainness::Spelled | Plainness::Coded => Some(Chosen { volts: best.volts, sure: true, contradicted }),
+        Plainness::Spelled => Some(Chosen::sure(best.volts, contradicted)),
+        Plainness::Coded => Some(coded_choice(readings, best, contradicted)),
         Plainness::Glued => {
-            let group = readings.iter().filter(|reading| reading.plainness == Plainness::Glued);
-            let near = nearest(group.clone(), arbiters.stated)
-                .or_else(|| group.clone().find(|each| typical(each.volts)).copied());
+            let group = || readings.iter().filter(|reading| reading.plainness == Plainness::Glued);
+            let common = || group().find(|each| typical(each.volts)).copied();
             // Digits that are no common voltage and far from what is described are something else.
-            let volts = match near {
-                Some(reading) => reading.volts,
-                None if contradicted => return None,
-                None => best.volts,
-            };
-            Some(Chosen { volts, sure: typical(volts) || contradicted, contradicted })
+            match nearest(group(), arbiters.stated).or_else(common) {
+                Some(reading) => Some(Chosen::sure(reading.volts, contradicted)),
+                None if contradicted => None,
+                None => Some(unsure(best.volts, readings)),
+            }
+        }
+        // The part's own number: only a reading close to what is described can be a voltage at all.
+        Plainness::Tail if contradicted => {
+            let group = readings.iter().filter(|reading| reading.plainness == Plainness::Tail);
+            nearest(group, arbiters.stated).map(|reading| Chosen::sure(reading.volts, true))
         }
         Plainness::Tail => {
-            let group = readings.iter().filter(|reading| reading.plainness == Plainness::Tail);
-            if contradicted {
-                // The part's own number: only a reading close to what is described can be a voltage at all.
-                return nearest(group, arbiters.stated).map(|reading| Chosen {
-                    volts: reading.volts,
-                    sure: true,
-                    contradicted,
-                });
-            }
-            group.clone().find(|each| typical(each.volts)).map(|reading| Chosen {
-                volts: reading.volts,
-                sure: false,
-                contradicted,
-            })
+            let mut group = readings.iter().filter(|reading| reading.plainness == Plainness::Tail);
+            group
+                .find(|each| typical(each.volts))
+                .map(|reading| Chosen { faint: true, ..unsure(reading.volts, readings) })
         }
         Plainness::Faint => None,
     }
+}
+
+fn unsure(volts: f64, readings: &[Reading]) -> Chosen {
+    let others = readings.iter().map(|reading| reading.volts).filter(|other| (other - volts).abs() > 1e-9).collect();
+    Chosen { volts, sure: false, contradicted: false, others, faint: false }
+}
+
+/// `-12` is 12 V in about as many names as it is 1.2 V; so are other whole voltages that are in use.
+fn coded_choice(readings: &[Reading], best: Reading, contradicted: bool) -> Chosen {
+    let whole = |volts: f64| [9.0, 10.0, 12.0, 15.0, 18.0, 20.0, 24.0].iter().any(|each| (each - volts).abs() < 1e-9);
+    let ambiguous = readings.iter().any(|other| {
+        other.plainness == best.plainness && whole(other.volts) && (other.volts / best.volts - 10.0).abs() < 1e-6
+    });
+    if ambiguous && !contradicted { unsure(best.volts, readings) } else { Chosen::sure(best.volts, contradicted) }
 }
 
 /// The reading nearest to what is stated, within a tenth.
@@ -506,7 +529,7 @@ mod tests {
     fn the_family_settles_ambiguous_codes() {
         let readings = read_name("TLV70233DBVR", 6);
         let chosen = choose(&readings, Arbiters { made_for: &[1.2, 1.8, 3.3], stated: &[] });
-        assert_eq!(chosen, Some(Chosen { volts: 3.3, sure: true, contradicted: false }));
+        assert_eq!(chosen, Some(Chosen::sure(3.3, false)));
         let twelve = read_name("LM2940CT-12", 6);
         let chosen = choose(&twelve, Arbiters { made_for: &[5.0, 8.0, 9.0, 10.0, 12.0, 15.0], stated: &[] });
         assert_eq!(chosen.map(|chosen| chosen.volts), Some(12.0));

@@ -220,6 +220,12 @@ static PHRASES: LazyLock<(RegexSet, [usize; 10])> = LazyLock::new(|| {
 
 /// Reads the text of a symbol.
 pub(super) fn read(description: &str, keywords: &str, library: &str) -> TextSigns {
+    // A library named after a kind of part tells it; one named after a project or a maker does not.
+    let library = library.to_lowercase();
+    let telling =
+        ["regul", "reference", "converter", "dcdc", "dc-dc", "ldo"].iter().any(|word| library.contains(word));
+    let library =
+        if telling && !library.ends_with("-cache") && !library.contains("rescue") { library } else { String::new() };
     let text = format!("{description} ; {keywords} ; {library}").to_lowercase();
     let (set, ends) = &*PHRASES;
     let mut senses = [false; 10];

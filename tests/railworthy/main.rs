@@ -10,6 +10,7 @@ mod failures;
 mod judge;
 mod netlist_corpus;
 mod netlist_hostile;
+mod recognition_corpus;
 mod recognition_symbols;
 mod reference_tokens;
 mod regulator_sheets;

@@ -3,7 +3,7 @@
 //! Patterns are written for people (`LM1117*{V}*`); they are cut into tokens once, and a name is walked along them with
 //! the set of places that can be reached, so that the cost is linear in the name whatever the pattern.
 
-use crate::knowledge::{Family, VOLTAGE_CODE};
+use crate::knowledge::{Family, FamilyKind, VOLTAGE_CODE};
 
 /// A family whose pattern fits a name.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -30,7 +30,8 @@ pub(super) enum Code {
 #[derive(Debug, Clone, PartialEq)]
 enum Token {
     Literal(char),
-    /// A dash or blank: makers and drawers leave it out or write another.
+    /// A dash or blank, or another separator in its place. Inside a number it may be left out, as makers and drawers do;
+    /// next to a `*` or a code it must be there, or it would tell nothing.
     Separator,
     One,
     Any,
@@ -50,10 +51,9 @@ struct Pattern {
 
 /// The patterns of all families, with the spellings of their voltages.
 #[derive(Debug)]
-pub(super) struct Matcher {
+pub(super) struct Matcher<'a> {
+    families: &'a [Family],
     patterns: Vec<Pattern>,
-    /// For each family its codes without separators, longest first.
-    codes: Vec<Vec<(String, Code)>>,
 }
 
 /// No order code is longer; what follows is prose.
@@ -108,19 +108,23 @@ fn compile(family: usize, pattern: &str) -> Pattern {
     Pattern { family, literal, tokens, beginning, squeezed }
 }
 
-/// The ways in which a voltage is spelled as a code, without separators.
-fn spellings(volts: f64) -> Vec<String> {
-    let mut found = vec![format!("{volts}"), format!("{volts:.1}"), format!("{volts:.2}"), format!("{volts:.3}")];
-    found.extend([format!("{volts:.1}"), format!("{volts:.2}")].map(|text| text.replace('.', "V")));
-    found.extend([format!("{volts:.1}"), format!("{volts:.2}")].map(|text| text.replace('.', "P")));
-    found.extend(
-        [format!("{volts:.1}"), format!("{volts:.2}"), format!("{volts:.3}")].map(|text| text.replace('.', "")),
-    );
-    found.extend([format!("{volts:.1}"), format!("{volts:.2}")].map(|text| text.replace('.', "-")));
-    let tenths = (volts * 10.0).round();
-    // Microchip's four digits: tenths and the tolerance class.
-    found.push(format!("{tenths:02}02"));
-    found.push(format!("{tenths:02}"));
+/// The ways in which a voltage is spelled as a code, without separators. `rounded`: references are called by fewer
+/// digits than they have.
+fn spellings(volts: f64, rounded: bool) -> Vec<String> {
+    let mut found = vec![format!("{volts}")];
+    for decimals in 1..=3_usize {
+        let text = format!("{volts:.decimals$}");
+        let exact = text.parse::<f64>().is_ok_and(|value| (value - volts).abs() < 1e-9);
+        if exact || rounded {
+            let digits = text.replace('.', "");
+            found.extend([text.replace('.', "V"), text.replace('.', "P"), text.replace('.', "-")]);
+            if decimals == 1 {
+                // Two digits at least, and the four of tenths and tolerance class.
+                found.extend([format!("{digits:0>2}"), format!("{digits:0>2}02")]);
+            }
+            found.extend([digits, text]);
+        }
+    }
     if volts.fract() == 0.0 {
         found.push(format!("{volts:02.0}"));
         found.push(format!("{volts:.0}V"));
@@ -133,8 +137,9 @@ fn spellings(volts: f64) -> Vec<String> {
 fn codes_of(family: &Family) -> Vec<(String, Code)> {
     let mut codes: Vec<(String, Code)> =
         family.codes.iter().map(|(text, volts)| (text.to_ascii_uppercase(), Code::Volts(*volts))).collect();
+    let rounded = matches!(family.kind, FamilyKind::Reference | FamilyKind::Shunt);
     for volts in &family.voltages {
-        for text in spellings(*volts) {
+        for text in spellings(*volts, rounded) {
             if !codes.iter().any(|(known, _)| *known == text) {
                 codes.push((text, Code::Volts(*volts)));
             }
@@ -146,14 +151,14 @@ fn codes_of(family: &Family) -> Vec<(String, Code)> {
     codes
 }
 
-impl Matcher {
+impl<'a> Matcher<'a> {
     /// Prepares the patterns of all families.
-    pub(super) fn new(families: &[Family]) -> Self {
+    pub(super) fn new(families: &'a [Family]) -> Self {
         let patterns = families
             .iter()
             .enumerate()
             .flat_map(|(index, family)| family.names.iter().map(move |name| compile(index, name)));
-        Self { patterns: patterns.collect(), codes: families.iter().map(codes_of).collect() }
+        Self { patterns: patterns.collect(), families }
     }
 
     /// The families that a reduced name fits: those with a voltage code first, then by how telling the pattern is, then
@@ -163,8 +168,14 @@ impl Matcher {
         for start in starts(name) {
             let rest: Vec<char> = name.get(start..).unwrap_or("").chars().collect();
             for pattern in &self.patterns {
-                let codes = self.codes.get(pattern.family).map_or(&[][..], Vec::as_slice);
-                let Some((base, code)) = walk(pattern, &rest, codes) else { continue };
+                // Most patterns fall at their first letters; only then are the voltages of the family spelled out.
+                if !begins(pattern, &rest) {
+                    continue;
+                }
+                let coded = pattern.tokens.contains(&Token::Code);
+                let family = self.families.get(pattern.family).filter(|_| coded);
+                let codes = family.map(codes_of).unwrap_or_default();
+                let Some((base, code)) = walk(pattern, &rest, &codes) else { continue };
                 let hit = Hit { family: pattern.family, literal: pattern.literal, base: start + base, code };
                 match found.iter_mut().find(|other| other.family == hit.family) {
                     Some(other) if rank(other) < rank(&hit) => *other = hit,
@@ -202,6 +213,13 @@ pub(super) fn rank(hit: &Hit) -> (bool, usize) {
     (hit.code.is_some(), hit.literal)
 }
 
+/// Whether a name has the letters and digits before the first separator or wildcard of a pattern.
+fn begins(pattern: &Pattern, name: &[char]) -> bool {
+    let letters =
+        pattern.tokens.iter().map_while(|token| if let Token::Literal(each) = token { Some(each) } else { None });
+    letters.zip(name.iter().map(Some).chain(std::iter::repeat(None))).all(|(wanted, found)| found == Some(wanted))
+}
+
 /// A place in the name that was reached, with the code that was passed.
 type Reached = (usize, Option<Code>);
 
@@ -214,8 +232,14 @@ fn walk(pattern: &Pattern, name: &[char], codes: &[(String, Code)]) -> Option<(u
             Token::Literal(each) => step(&reached, name, |found| found == *each),
             Token::One => step(&reached, name, |_| true),
             Token::Separator => {
+                let beside = |at: Option<usize>| {
+                    let token = at.and_then(|at| pattern.tokens.get(at));
+                    matches!(token, Some(Token::Any | Token::Code))
+                };
                 let mut next = step(&reached, name, is_separator);
-                next.extend(&reached);
+                if !beside(index.checked_sub(1)) && !beside(Some(index + 1)) {
+                    next.extend(&reached);
+                }
                 next
             }
             Token::Any => {
@@ -224,8 +248,8 @@ fn walk(pattern: &Pattern, name: &[char], codes: &[(String, Code)]) -> Option<(u
                 (first..=name.len()).map(|at| (at, code)).collect()
             }
             Token::Code => {
-                let behind_any = index > 0 && pattern.tokens.get(index - 1) == Some(&Token::Any);
-                pass_code(&reached, name, codes, behind_any)
+                let before = index.checked_sub(1).and_then(|before| pattern.tokens.get(before));
+                pass_code(&reached, name, codes, !matches!(before, Some(Token::Literal(_) | Token::One)))
             }
         };
         if reached.is_empty() {
@@ -249,21 +273,29 @@ fn step(reached: &[Reached], name: &[char], fits: impl Fn(char) -> bool) -> Vec<
     reached.iter().filter_map(next).collect()
 }
 
-/// Passes a voltage code with the separators around it. Its digits must not be part of a longer number.
-fn pass_code(reached: &[Reached], name: &[char], codes: &[(String, Code)], behind_any: bool) -> Vec<Reached> {
+/// Passes a voltage code with the separators around it. Its digits must not be part of a longer number, and a single
+/// digit amid letters is no voltage. `loose`: what stands before the code is not fixed by the pattern.
+fn pass_code(reached: &[Reached], name: &[char], codes: &[(String, Code)], loose: bool) -> Vec<Reached> {
     let digit = |at: usize| name.get(at).is_some_and(char::is_ascii_digit);
     let mut next = Vec::new();
     for (start, _) in reached {
         let separators = name.iter().skip(*start).take_while(|each| is_separator(**each)).count();
         let at = start + separators;
-        if behind_any && separators == 0 && at > 0 && digit(at - 1) {
+        let before = at.checked_sub(1).and_then(|before| name.get(before)).copied().unwrap_or(' ');
+        if loose && separators == 0 && (before.is_ascii_digit() || before == '.') {
             continue;
         }
+        // A point that was taken for a separator must not cut a number.
+        if loose && before == '.' && at >= 2 && digit(at - 2) {
+            continue;
+        }
+        let detached = is_separator(before);
         for (text, code) in codes {
             let length = text.chars().count();
             let fits = name.get(at..at + length).is_some_and(|part| part.iter().copied().eq(text.chars()));
             let cut = name.get(at + length).is_some_and(|each| *each == '.') && digit(at + length + 1);
-            if fits && !digit(at + length) && !cut {
+            let alone = length > 1 || !loose || detached;
+            if fits && alone && !digit(at + length) && !cut {
                 next.push((at + length, Some(*code)));
                 break;
             }
@@ -284,7 +316,7 @@ mod tests {
     fn codes(voltages: &[f64]) -> Vec<(String, Code)> {
         let mut codes: Vec<(String, Code)> = voltages
             .iter()
-            .flat_map(|volts| spellings(*volts).into_iter().map(|text| (text, Code::Volts(*volts))))
+            .flat_map(|volts| spellings(*volts, false).into_iter().map(|text| (text, Code::Volts(*volts))))
             .collect();
         codes.push(("ADJ".to_owned(), Code::Adjustable));
         codes.sort_by(|one, other| other.0.len().cmp(&one.0.len()).then(one.0.cmp(&other.0)));

@@ -89,7 +89,7 @@ struct Part<'a> {
 }
 
 impl Finder<'_> {
-    fn find(&self, matcher: &Matcher, regulators: &mut Vec<Regulator>, not_judged: &mut Vec<NotJudged>) {
+    fn find(&self, matcher: &Matcher<'_>, regulators: &mut Vec<Regulator>, not_judged: &mut Vec<NotJudged>) {
         let device = self.device;
         let mut known = identity::identify(device, self.overrides.family(&device.reference), self.knowledge, matcher);
         // Most parts of a board have neither a known name nor pins of interest; their text need not be read.
@@ -161,7 +161,7 @@ impl Finder<'_> {
         let mut output_net = rail.net;
         let divider = self.divider(&roles, output_net, &grounds);
         if part.kind == RegulatorKind::Switching && output_net.is_none_or(|net| self.is_switch_node(net)) {
-            output_net = divider.as_ref().and_then(|divider| divider.senses).or_else(|| self.beyond_inductor(part));
+            output_net = self.beyond_inductor(part).or_else(|| divider.as_ref().and_then(|divider| divider.senses));
         }
         let mode = self.mode(part, &roles, divider.as_ref());
         let sign = self.sign(part, rail, count, output_net);

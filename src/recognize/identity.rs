@@ -55,7 +55,7 @@ pub(super) struct Known {
 /// What names are matched against.
 #[derive(Debug, Clone, Copy)]
 struct Sources<'a> {
-    matcher: &'a Matcher,
+    matcher: &'a Matcher<'a>,
     knowledge: &'a Knowledge,
     /// What the fields say of the maker, lower case.
     maker: &'a str,
@@ -97,7 +97,12 @@ pub(super) fn same_part(one: &str, other: &str) -> bool {
 }
 
 /// Identifies a device. `declared` is the family that the board file names for it.
-pub(super) fn identify(device: &Device, declared: Option<&str>, knowledge: &Knowledge, matcher: &Matcher) -> Known {
+pub(super) fn identify(
+    device: &Device,
+    declared: Option<&str>,
+    knowledge: &Knowledge,
+    matcher: &Matcher<'_>,
+) -> Known {
     let maker = maker(device);
     let sources = Sources { matcher, knowledge, maker: &maker };
     let value = device.value.trim();

@@ -69,7 +69,7 @@ impl Candidate<'_> {
             };
             // A name that is told by value, number or board file is trusted over what the symbol looks like.
             if self.known.place != Place::Symbol || self.known.symbol_agrees {
-                return kind;
+                return kind.filter(|kind| self.could_be(*kind));
             }
         }
         if drawn_discrete(device.kind) && !(self.text.reference || self.text.shunt || self.text.linear) {
@@ -84,6 +84,20 @@ impl Candidate<'_> {
             return Some(RegulatorKind::Shunt);
         }
         self.series_kind()
+    }
+
+    /// Whether the pins can be those of such a part: patterns of order codes also fit transistors and diodes.
+    fn could_be(&self, kind: RegulatorKind) -> bool {
+        let named = self.names.iter().any(|name| !name.is(Word::Unnamed));
+        let poles = self.has(Word::Cathode) || self.has(Word::Plus) || self.has(Word::Anode);
+        let discrete = drawn_discrete(self.circuit.device(self.id).kind);
+        match kind {
+            RegulatorKind::Shunt => !discrete || poles || self.has(Word::Reference),
+            RegulatorKind::Switching => {
+                !discrete && (!named || self.has_output() || self.has(Word::Switching) || self.has(Word::Adjust))
+            }
+            _ => !discrete || self.has_output(),
+        }
     }
 
     /// A two-pole with a cathode and an anode, perhaps with a reference pin.

@@ -1,7 +1,7 @@
 //! The nominal output voltage of a part, from its texts.
 
 use crate::circuit::Device;
-use crate::knowledge::{Family, Knowledge, Sign};
+use crate::knowledge::{Family, FamilyKind, Knowledge, Sign};
 use crate::quantity::Grade;
 
 use super::family_match::{Code, reduced};
@@ -108,6 +108,12 @@ fn chosen(
 ) -> Option<Chosen> {
     let made_for = family.map_or(&[][..], |family| family.voltages.as_slice());
     let own_name = name == known.identity.name;
+    let base = known.hit.filter(|_| own_name).map_or(0, |hit| hit.base);
+    let mut readings: Vec<Reading> = read_name(&reduced(name), base);
+    // A voltage that is spelled out counts even where the family's list does not have it.
+    let spelled =
+        readings.iter().find(|reading| reading.plainness == Plainness::Spelled).map(|reading| reading.volts);
+    let code = code.filter(|code| spelled.is_none_or(|volts| *code == Code::Volts(volts)));
     if let (Some(Code::Volts(volts)), Some(family)) = (code, family) {
         // Only where one code spells two voltages of the family the description may decide.
         let other = made_for.iter().find(|other| {
@@ -120,13 +126,13 @@ fn chosen(
         let contradicted = !stated.is_empty() && !stated.iter().any(|each| (each.volts / volts - 1.0).abs() < 0.05);
         return Some(Chosen { volts, sure: true, contradicted, others: Vec::new(), faint: false });
     }
-    let base = known.hit.filter(|_| own_name).map_or(0, |hit| hit.base);
-    let mut readings: Vec<Reading> = read_name(&reduced(name), base);
-    if !names_part(name) {
-        // In free text digits are anything; only a spelled voltage is one.
+    // In free text digits are anything, and converters have numbers of any length; there only a spelled voltage is one.
+    let converter = family.is_some_and(|family| family.kind == FamilyKind::Switching);
+    if !names_part(name) || converter {
         readings.retain(|reading| reading.plainness == Plainness::Spelled);
     }
-    choose(&readings, Arbiters { made_for, stated })
+    let rounded = family.is_none_or(|family| matches!(family.kind, FamilyKind::Reference | FamilyKind::Shunt));
+    choose(&readings, Arbiters { made_for, rounded, stated })
 }
 
 /// The description's own voltages: the only one, or the one that it calls the output, where the name says nothing; and

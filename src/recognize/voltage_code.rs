@@ -328,8 +328,10 @@ pub(super) fn stands_for(reading: &Reading, volts: f64) -> bool {
 /// What settles which reading of a name is meant.
 #[derive(Debug, Clone, Copy, Default)]
 pub(super) struct Arbiters<'a> {
-    /// Voltages that the family is made for; empty where unknown.
+    /// Voltages that the family is made for; empty where unknown, and seldom all of them.
     pub(super) made_for: &'a [f64],
+    /// Whether codes round the voltage, as those of references do.
+    pub(super) rounded: bool,
     /// What the description states.
     pub(super) stated: &'a [Stated],
 }
@@ -362,11 +364,13 @@ fn typical(volts: f64) -> bool {
 
 /// Chooses among the readings of a name. `None` where the name says nothing that can be relied on.
 pub(super) fn choose(readings: &[Reading], arbiters: Arbiters<'_>) -> Option<Chosen> {
-    let made = |reading: &&Reading| arbiters.made_for.iter().any(|volts| stands_for(reading, *volts));
-    let exact = |reading: &Reading| {
-        let near = |volts: &&f64| stands_for(reading, **volts);
-        arbiters.made_for.iter().find(near).copied().unwrap_or(reading.volts)
+    let version = |reading: &Reading| {
+        let equal = |volts: &&f64| (**volts - reading.volts).abs() < 1e-6;
+        let near = |volts: &&f64| arbiters.rounded && stands_for(reading, **volts);
+        arbiters.made_for.iter().find(equal).or_else(|| arbiters.made_for.iter().find(near)).copied()
     };
+    let made = |reading: &&Reading| version(reading).is_some();
+    let exact = |reading: &Reading| version(reading).unwrap_or(reading.volts);
     let stated =
         |reading: &Reading| arbiters.stated.iter().map(|each| each.volts).find(|volts| stands_for(reading, *volts));
     // Which of two readings that the family is made for (12 V, 1.2 V) the description decides.
@@ -448,7 +452,7 @@ mod tests {
     }
 
     fn with(name: &str, description: &str) -> Option<f64> {
-        choose(&read_name(name, 0), Arbiters { made_for: &[], stated: &read_description(description) })
+        choose(&read_name(name, 0), Arbiters { made_for: &[], rounded: true, stated: &read_description(description) })
             .map(|chosen| chosen.volts)
     }
 
@@ -528,10 +532,11 @@ mod tests {
     #[test]
     fn the_family_settles_ambiguous_codes() {
         let readings = read_name("TLV70233DBVR", 6);
-        let chosen = choose(&readings, Arbiters { made_for: &[1.2, 1.8, 3.3], stated: &[] });
+        let chosen = choose(&readings, Arbiters { made_for: &[1.2, 1.8, 3.3], rounded: false, stated: &[] });
         assert_eq!(chosen, Some(Chosen::sure(3.3, false)));
         let twelve = read_name("LM2940CT-12", 6);
-        let chosen = choose(&twelve, Arbiters { made_for: &[5.0, 8.0, 9.0, 10.0, 12.0, 15.0], stated: &[] });
+        let chosen =
+            choose(&twelve, Arbiters { made_for: &[5.0, 8.0, 9.0, 10.0, 12.0, 15.0], rounded: false, stated: &[] });
         assert_eq!(chosen.map(|chosen| chosen.volts), Some(12.0));
     }
 }

@@ -270,7 +270,7 @@ impl Finder<'_> {
             let inductor = |device: &DeviceId| self.circuit.device(*device).kind == DeviceKind::Inductor;
             self.circuit
                 .neighbours(*net)
-                .find(|(device, other)| inductor(device) && !inputs.contains(other) && !nets.contains(other))
+                .find(|(device, other)| inductor(device) && !inputs.contains(other))
                 .map(|(_, other)| other)
         })
     }

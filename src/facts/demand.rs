@@ -122,10 +122,13 @@ impl Facts<'_> {
         }
         let bypassed = side == Side::Output && self.is_bypassed(regulator);
         let bypass = demand.with_bypass.as_ref().filter(|_| bypassed);
-        let Some(minimum) = bypass.or(demand.minimum.as_ref()) else {
+        let electrolytic = demand.minimum_electrolytic.as_ref();
+        let electrolytic = electrolytic.filter(|_| side == Side::Output && self.bulk_is(regulator, "electrolytic"));
+        let special = electrolytic.or(bypass);
+        let Some(minimum) = special.or(demand.minimum.as_ref()) else {
             return Value::inapplicable("the sheet names no minimum");
         };
-        let farads = if bypass.is_some() { minimum.value } else { self.at_output(regulator, demand, minimum) };
+        let farads = if special.is_some() { minimum.value } else { self.at_output(regulator, demand, minimum) };
         Value::Figure(self.bound(regulator, demand.kind, minimum, farads, what))
     }
 

@@ -178,6 +178,13 @@ impl Facts<'_> {
             .collect()
     }
 
+    /// Whether the capacitor that dominates the output bank is of a technology.
+    pub(super) fn bulk_is(&self, regulator: &Regulator, technology: &str) -> bool {
+        let bulk = self.bulk(regulator);
+        let told = bulk.first().and_then(|branch| self.technology(branch.capacitor));
+        told.is_some_and(|told| told.technology.name == technology)
+    }
+
     fn branch_esr(&self, branch: &Branch) -> Quantity {
         let own = self.capacitor_esr(branch.capacitor);
         match self.network(&branch.series, &[]) {
@@ -257,6 +264,9 @@ impl Facts<'_> {
         let Some((_, demand)) = self.first_family(regulator, |family| family.output_capacitor.as_ref()) else {
             return Value::inapplicable("no data sheet is known");
         };
+        if end == End::High && demand.minimum_electrolytic.is_some() && self.bulk_is(regulator, "electrolytic") {
+            return Value::inapplicable("the sheet admits an electrolytic capacitor by its capacitance");
+        }
         let Some(window) = &demand.esr else {
             let indifferent = demand.kind == MinimumKind::Optional || demand.ceramic_allowed || demand.ceramic_only;
             if indifferent || demand.minimum.is_none() {

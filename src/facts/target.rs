@@ -18,6 +18,11 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         of(facts, subject, |regulator| facts.declared_end(regulator, Range::high))
     }),
     volts(
+        "declared_nominal",
+        "a declaration of one value for the output net, signed; no limits follow from it",
+        |facts, subject| of(facts, subject, |regulator| facts.declared_single(regulator)),
+    ),
+    volts(
         "name_voltage",
         "what the output net's name says, where the set point is not taken from it",
         |facts, subject| of(facts, subject, |regulator| facts.named_target(regulator)),
@@ -43,15 +48,24 @@ impl Facts<'_> {
         }
     }
 
+    /// An end of the declared range. A single value is no range: no part would ever lie within it.
     fn declared_end(&self, regulator: &Regulator, end: fn(Range) -> f64) -> Value {
+        self.declared_as(regulator, |range| (!range.is_exact()).then(|| end(range)), "no range is declared")
+    }
+
+    fn declared_single(&self, regulator: &Regulator) -> Value {
+        self.declared_as(regulator, |range| range.is_exact().then(|| range.nominal()), "no single value is declared")
+    }
+
+    fn declared_as(&self, regulator: &Regulator, pick: impl Fn(Range) -> Option<f64>, otherwise: &str) -> Value {
         let Some(name) = self.output_name(regulator) else { return Value::inapplicable("the output is open") };
-        match self.board().rail(&name).and_then(|rail| rail.voltage.as_ref()) {
-            Some(voltage) => {
+        let declared = self.board().rail(&name).and_then(|rail| rail.voltage.as_ref());
+        match declared.and_then(|voltage| Some((voltage, pick(voltage.value)?))) {
+            Some((voltage, exact)) => {
                 let evidence = voltage.evidence(format!("declared voltage of {name}"));
-                let exact = Range::exactly(end(voltage.value));
-                Value::Figure(Quantity::fact(Dimension::VOLTAGE, exact, evidence))
+                Value::Figure(Quantity::fact(Dimension::VOLTAGE, Range::exactly(exact), evidence))
             }
-            None => Value::inapplicable(format!("no voltage is declared for {name}")),
+            None => Value::inapplicable(format!("{otherwise} for {name}")),
         }
     }
 

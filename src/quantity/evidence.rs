@@ -120,15 +120,16 @@ impl Settle {
         Self { table, target: target.into(), key, example }
     }
 
-    /// The thing to declare in a few words: `load on +5V`, `esr of C7`.
+    /// The thing to declare in a few words: `load on +5V`, `ESR of C7`.
     #[must_use]
     pub fn phrase(&self) -> String {
+        let key = if self.key == "esr" { "ESR".to_owned() } else { self.key.replace('_', " ") };
         match self.table {
-            Table::Board => format!("{} of the board", self.key),
+            Table::Board => format!("{key} of the board"),
             Table::Load => format!("load on {}", self.target),
             Table::Supply => format!("supply {}", self.target),
-            Table::Rail => format!("{} of rail {}", self.key, self.target),
-            Table::Part => format!("{} of {}", self.key, self.target),
+            Table::Rail => format!("{key} of rail {}", self.target),
+            Table::Part => format!("{key} of {}", self.target),
         }
     }
 }

@@ -23,3 +23,7 @@ pub mod facts;
 pub mod checks;
 
 pub mod review;
+
+pub mod report;
+
+pub mod cli;

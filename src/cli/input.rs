@@ -1,0 +1,167 @@
+//! Reading what the arguments name: netlists, board files, rules.
+
+use std::fs;
+use std::io::{self, Read};
+use std::path::{Path, PathBuf};
+use std::rc::Rc;
+
+use super::args;
+use crate::board::{self, Board, FileError, Links, Options};
+use crate::checks::{Checks, DefinedNames};
+use crate::knowledge::Knowledge;
+use crate::netlist::limits::MAX_BYTES;
+use crate::report::BoardResult;
+use crate::review::examine;
+use crate::source::Problem;
+
+/// What standard input is called in messages.
+const STANDARD_INPUT: &str = "<stdin>";
+
+/// Rules with what was wrong in them.
+#[derive(Debug)]
+pub(super) struct Rules {
+    pub(super) knowledge: Rc<Knowledge>,
+    pub(super) checks: Checks,
+    pub(super) problems: Vec<Problem>,
+}
+
+impl Rules {
+    /// The built-in rules with those of some folders.
+    pub(super) fn load(folders: &[PathBuf]) -> Self {
+        let (knowledge, mut problems) = Knowledge::load(folders);
+        let (checks, found) = Checks::load(&knowledge.checks, &DefinedNames);
+        problems.extend(found);
+        Self { knowledge: Rc::new(knowledge), checks, problems }
+    }
+}
+
+/// A board file with the house file below it.
+#[derive(Debug, Default)]
+struct Declared {
+    board: Board,
+    house_file: Option<String>,
+    own_file: Option<String>,
+    problems: Vec<Problem>,
+}
+
+/// Reads and judges one board under the rules of the command line and of its board files.
+pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str) -> (BoardResult, Option<Rules>) {
+    let declared = declared(path, input.board.as_deref());
+    let own_rules = own_rules(&declared.board, &input.rules);
+    let rules = own_rules.as_ref().unwrap_or(rules);
+    let mut result = BoardResult {
+        netlist: name(path),
+        board_file: declared.own_file,
+        house_file: declared.house_file,
+        knowledge: Rc::clone(&rules.knowledge),
+        problems: declared.problems,
+        examination: None,
+    };
+    if own_rules.is_some() {
+        result.problems.extend(rules.problems.iter().cloned());
+    }
+    match netlist(path) {
+        Err(problem) => result.problems.push(problem),
+        Ok(bytes) => match examine(&result.netlist, &bytes, declared.board, &rules.knowledge, &rules.checks, today) {
+            Err(problems) => result.problems.extend(problems),
+            Ok(mut examination) => {
+                result.problems.append(&mut examination.problems);
+                result.examination = Some(examination);
+            }
+        },
+    }
+    (result, own_rules)
+}
+
+/// The rules of a board that names folders of its own.
+fn own_rules(board: &Board, typed: &[PathBuf]) -> Option<Rules> {
+    if board.rule_folders.is_empty() {
+        return None;
+    }
+    let folders: Vec<PathBuf> =
+        board.rule_folders.iter().map(|folder| folder.value.clone()).chain(typed.iter().cloned()).collect();
+    Some(Rules::load(&folders))
+}
+
+fn name(path: &Path) -> String {
+    if is_standard_input(path) { STANDARD_INPUT.to_owned() } else { path.display().to_string() }
+}
+
+fn is_standard_input(path: &Path) -> bool {
+    path.as_os_str() == "-"
+}
+
+fn declared(netlist: &Path, named: Option<&Path>) -> Declared {
+    let mut declared = Declared::default();
+    let (house, own) = if is_standard_input(netlist) { (None, None) } else { board::find(netlist) };
+    let mut read = |path: &Path, links, options| match board::read_source(path, links) {
+        Err(error) => {
+            declared.problems.push(file_problem(&error));
+            None
+        }
+        Ok(source) => {
+            let (board, problems) = Board::read(&source, options);
+            declared.problems.extend(problems);
+            Some(board)
+        }
+    };
+    let house_board =
+        house.as_deref().and_then(|path| read(path, Links::Refuse, Options { shared: true, case: false }));
+    let (own, links) = match named {
+        Some(path) => (Some(path.to_owned()), Links::Follow),
+        None => (own, Links::Refuse),
+    };
+    let own_board = own.as_deref().and_then(|path| read(path, links, Options::default()));
+    declared.house_file = house_board.is_some().then(|| house.map(|path| path.display().to_string())).flatten();
+    declared.own_file = own_board.is_some().then(|| own.map(|path| path.display().to_string())).flatten();
+    declared.board = Board::merge(house_board.unwrap_or_default(), own_board.unwrap_or_default());
+    declared
+}
+
+fn file_problem(error: &FileError) -> Problem {
+    let problem = Problem::error(error.to_string());
+    match error {
+        FileError::Io(..) => problem.help("name a file that can be read"),
+        FileError::NotPlain(..) => problem.help("put a plain file there, or name one with `--board`"),
+        FileError::TooLarge(_) => problem.help("check that this is a board file"),
+        FileError::NotText(..) => problem.help("save it as UTF-8"),
+    }
+}
+
+/// The bytes of a netlist: of a plain file, or of standard input.
+fn netlist(path: &Path) -> Result<Vec<u8>, Problem> {
+    if is_standard_input(path) {
+        return limited(&mut io::stdin().lock())
+            .map_err(|error| Problem::error(format!("standard input cannot be read: {error}")));
+    }
+    let shown = path.display();
+    let unreadable = |error: io::Error| {
+        Problem::error(format!("{shown} cannot be read: {error}")).help("name a netlist export that can be read")
+    };
+    // Asked before it is opened, for opening a pipe waits for its writer; and after, for it may be another by then.
+    not_special(&fs::metadata(path).map_err(unreadable)?, path)?;
+    let mut file = fs::File::open(path).map_err(unreadable)?;
+    let found = file.metadata().map_err(unreadable)?;
+    not_special(&found, path)?;
+    if found.len() > MAX_BYTES as u64 {
+        let message = format!("{shown} has {} bytes, more than the {MAX_BYTES} that are read", found.len());
+        return Err(Problem::error(message).help("check that this is the netlist of one board"));
+    }
+    limited(&mut file).map_err(unreadable)
+}
+
+/// All bytes, up to one more than are read: the reader then says that there are too many.
+fn limited(from: &mut dyn Read) -> io::Result<Vec<u8>> {
+    let mut bytes = Vec::new();
+    from.take(MAX_BYTES as u64 + 1).read_to_end(&mut bytes)?;
+    Ok(bytes)
+}
+
+fn not_special(found: &fs::Metadata, path: &Path) -> Result<(), Problem> {
+    if found.is_file() {
+        return Ok(());
+    }
+    let what = if found.is_dir() { "a folder" } else { "a device, pipe or socket" };
+    let problem = Problem::error(format!("{} is {what}, not a plain file", path.display()));
+    Err(problem.help("name the netlist export itself, or `-` for standard input"))
+}

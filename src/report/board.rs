@@ -1,0 +1,44 @@
+//! A board as a report shows it.
+
+use std::rc::Rc;
+
+use crate::checks::Level;
+use crate::knowledge::Knowledge;
+use crate::review::{Examination, Reviewed};
+use crate::source::{Problem, Severity};
+
+/// What came of one board.
+#[derive(Debug)]
+pub struct BoardResult {
+    /// The netlist as its reader was given it; `<stdin>` for standard input.
+    pub netlist: String,
+    /// The board's own file, as it was found or named.
+    pub board_file: Option<String>,
+    /// The house file above it.
+    pub house_file: Option<String>,
+    /// What it was judged with.
+    pub knowledge: Rc<Knowledge>,
+    /// What was lost or odd, in the order of reading.
+    pub problems: Vec<Problem>,
+    /// What was found; `None` where nothing could be judged.
+    pub examination: Option<Examination>,
+}
+
+impl BoardResult {
+    /// Whether the whole board was judged under all that was declared.
+    #[must_use]
+    pub fn is_complete(&self) -> bool {
+        self.examination.is_some() && self.problems.iter().all(|problem| problem.severity() < Severity::Error)
+    }
+
+    /// Every finding, accepted ones too.
+    pub fn findings(&self) -> impl Iterator<Item = &Reviewed> {
+        self.examination.iter().flat_map(|examination| &examination.findings)
+    }
+
+    /// The level of the worst finding that nobody has accepted.
+    #[must_use]
+    pub fn worst_level(&self) -> Option<Level> {
+        self.findings().filter(|found| found.accepted.is_none()).map(|found| found.finding.level).min()
+    }
+}

@@ -1,0 +1,68 @@
+//! A declaration as it stands in a board file.
+
+use super::inert::inert;
+use crate::quantity::{Settle, Table};
+
+/// The thing to declare in a few words, harmless.
+pub(super) fn phrase(settle: &Settle) -> String {
+    inert(&settle.phrase()).into_owned()
+}
+
+/// The lines of a board file that declare it, with an example for a value.
+pub(super) fn lines(settle: &Settle) -> Vec<String> {
+    let header = match settle.table {
+        Table::Board => "[board]".to_owned(),
+        table => format!("[[{}]]", table.name()),
+    };
+    let target = match settle.table {
+        Table::Board => None,
+        Table::Part => Some("ref"),
+        Table::Supply | Table::Load | Table::Rail => Some("net"),
+    };
+    let mut lines = vec![header];
+    lines.extend(target.map(|key| format!("{key} = {}", text(&settle.target))));
+    lines.push(format!("{} = {}", settle.key, value(settle.example)));
+    lines
+}
+
+/// A TOML string.
+fn text(value: &str) -> String {
+    let mut out = String::from('"');
+    for sign in value.chars() {
+        match sign {
+            '"' | '\\' => {
+                out.push('\\');
+                out.push(sign);
+            }
+            _ if super::acts(sign) => out.push_str(&format!("\\U{:08x}", u32::from(sign))),
+            _ => out.push(sign),
+        }
+    }
+    out.push('"');
+    out
+}
+
+/// An example as TOML: flags, tables and what is quoted already stay as they are.
+fn value(example: &str) -> String {
+    let is_value = matches!(example, "true" | "false") || example.starts_with(['{', '[', '"']);
+    if is_value { example.to_owned() } else { text(example) }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_declaration_is_toml_whatever_the_name() {
+        let settle = Settle::new(Table::Load, "a\"b\\c\u{1b}\u{202e}", "current", "2 .. 180 mA");
+        let text = lines(&settle).join("\n");
+        let read: toml_edit::DocumentMut = text.parse().unwrap();
+        assert_eq!(read["load"][0]["net"].as_str(), Some("a\"b\\c\u{1b}\u{202e}"));
+        assert!(!text.contains('\u{1b}'));
+        assert_eq!(lines(&Settle::new(Table::Rail, "A", "may_sag", "true"))[2], "may_sag = true");
+        assert_eq!(
+            lines(&Settle::new(Table::Board, "", "ambient", "-20 .. 55 °C")),
+            ["[board]", "ambient = \"-20 .. 55 °C\""]
+        );
+    }
+}

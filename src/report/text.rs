@@ -1,0 +1,190 @@
+//! The report of `check` as text.
+
+use std::collections::BTreeMap;
+
+use super::board::BoardResult;
+use super::inert::inert;
+use super::layout::wrapped;
+use super::look::Look;
+use super::problem::problems;
+use super::{finding, settle};
+use crate::checks::{Level, Verdict};
+use crate::review::{Decisive, Examination, Reviewed};
+
+/// Most declarations that are named as the first to make.
+const MOST_DECLARATIONS: usize = 3;
+
+/// What is shown.
+#[derive(Debug, Clone, Copy)]
+pub struct TextOptions {
+    /// Width and colour.
+    pub look: Look,
+    /// Findings alone: no headings, notes about the run or summaries.
+    pub quiet: bool,
+}
+
+/// The report of some boards.
+#[must_use]
+pub fn check(boards: &[BoardResult], options: TextOptions) -> String {
+    let mut text = String::new();
+    for board in boards {
+        if !text.is_empty() {
+            text.push('\n');
+        }
+        text.push_str(&one(board, options));
+    }
+    super::guarded(&text)
+}
+
+fn one(board: &BoardResult, options: TextOptions) -> String {
+    let look = options.look;
+    let mut text = String::new();
+    if !options.quiet {
+        text.push_str(&heading(board, look));
+        text.push('\n');
+    }
+    text.push_str(&problems(&board.problems, look));
+    let Some(examination) = &board.examination else {
+        if !options.quiet {
+            text.push_str(&look.level(Level::Error, "not judged"));
+            text.push_str(": nothing of it could be read\n");
+        }
+        return text;
+    };
+    let (accepted, open): (Vec<_>, Vec<_>) = examination.findings.iter().partition(|found| found.accepted.is_some());
+    for found in open.iter().filter(|found| found.finding.level < Level::Note) {
+        text.push_str(&finding::whole(examination, found, look));
+        text.push('\n');
+    }
+    let notes: Vec<&Reviewed> = open.iter().copied().filter(|found| found.finding.level == Level::Note).collect();
+    text.push_str(&notes_of(&notes, look));
+    text.push_str(&accepted_of(&accepted, look));
+    if !options.quiet {
+        text.push_str(&summary(board, examination, look));
+    }
+    text
+}
+
+fn heading(board: &BoardResult, look: Look) -> String {
+    let mut text = look.bold(&inert(&board.netlist));
+    let title = board.examination.as_ref().and_then(|examination| examination.board.title.as_ref());
+    if let Some(title) = title {
+        text.push_str(&format!(": {}", inert(&title.value)));
+    }
+    let files: Vec<_> = board.house_file.iter().chain(&board.board_file).map(|file| inert(file)).collect();
+    let files = if files.is_empty() { "no board file".to_owned() } else { format!("with {}", files.join(", ")) };
+    text.push_str(&look.faint(&format!(", {files}")));
+    text.push('\n');
+    text
+}
+
+/// Notes in one or two lines each: what is tight, then what is unknown.
+fn notes_of(notes: &[&Reviewed], look: Look) -> String {
+    let mut text = String::new();
+    for verdict in [Verdict::Tight, Verdict::Unknown] {
+        let these: Vec<_> = notes.iter().filter(|found| found.finding.verdict == verdict).collect();
+        for found in these {
+            let label = look.level(Level::Note, "note");
+            let settle: Vec<String> = found.finding.settle.iter().map(settle::phrase).collect();
+            let mut line = format!("{} ({})", inert(&found.finding.message), inert(&found.finding.check));
+            if !settle.is_empty() {
+                line.push_str(&format!("; to settle: declare {}", settle.join(", ")));
+            }
+            // The colours have no width of their own.
+            text.push_str(&wrapped(&line, "  note: ", "        ", look.width()).replacen("note", &label, 1));
+        }
+    }
+    if !text.is_empty() {
+        text.push('\n');
+    }
+    text
+}
+
+fn accepted_of(accepted: &[&Reviewed], look: Look) -> String {
+    let mut text = String::new();
+    for found in accepted {
+        let Some(accepted) = &found.accepted else { continue };
+        let until = accepted.until.as_ref().map(|until| format!(", until {}", inert(until))).unwrap_or_default();
+        let line = format!(
+            "{} ({}): {}{until}",
+            inert(&found.finding.message),
+            inert(&found.finding.check),
+            inert(&accepted.reason)
+        );
+        text.push_str(&wrapped(&line, "  accepted: ", "            ", look.width()));
+    }
+    if !text.is_empty() {
+        text.push('\n');
+    }
+    text
+}
+
+fn summary(board: &BoardResult, examination: &Examination, look: Look) -> String {
+    let mut text = String::new();
+    if !board.is_complete() {
+        text.push_str(&look.level(Level::Error, "incomplete"));
+        text.push_str(": what is told above was not judged, or not under all that was declared\n");
+    }
+    text.push_str(&wrapped(&counts(examination), "", "  ", look.width()));
+    if !examination.declare_first.is_empty() {
+        let line = format!("Declare first: {}", declarations(&examination.declare_first));
+        text.push_str(&wrapped(&line, "", "  ", look.width()));
+    }
+    text
+}
+
+fn counts(examination: &Examination) -> String {
+    let counts = examination.counts;
+    let regulators = examination.design.regulators.len();
+    let mut parts = Vec::new();
+    let verdicts = [
+        (counts.fails, "fails", "fail"),
+        (counts.doubtful, "doubtful", "doubtful"),
+        (counts.tight, "tight", "tight"),
+        (counts.unknown, "unknown", "unknown"),
+        (counts.holds, "holds", "hold"),
+        (examination.accepted, "accepted", "accepted"),
+    ];
+    for (count, one, many) in verdicts {
+        if count > 0 {
+            parts.push(format!("{count} {}", if count == 1 { one } else { many }));
+        }
+    }
+    let mut line = format!(
+        "{regulators} regulator{}, {} requirement{}",
+        plural(regulators),
+        counts.requirements,
+        plural(counts.requirements)
+    );
+    if !parts.is_empty() {
+        line.push_str(&format!(": {}", parts.join(", ")));
+    }
+    let not_judged = not_judged(examination);
+    if !not_judged.is_empty() {
+        line.push_str(&format!("; not judged: {not_judged}"));
+    }
+    line
+}
+
+fn plural(count: usize) -> &'static str {
+    if count == 1 { "" } else { "s" }
+}
+
+/// `U9 (switching converter), U4, U5 (ignored by the board file)`.
+fn not_judged(examination: &Examination) -> String {
+    let mut by_reason: BTreeMap<&str, Vec<&str>> = BTreeMap::new();
+    for part in &examination.design.not_judged {
+        let reference = examination.design.circuit.device(part.device).reference.as_str();
+        by_reason.entry(part.reason.as_str()).or_default().push(reference);
+    }
+    let told = by_reason.iter().map(|(reason, parts)| format!("{} ({})", inert(&parts.join(", ")), inert(reason)));
+    told.collect::<Vec<_>>().join(", ")
+}
+
+fn declarations(decisive: &[Decisive]) -> String {
+    let told = decisive
+        .iter()
+        .take(MOST_DECLARATIONS)
+        .map(|each| format!("{} (decides {})", settle::phrase(&each.settle), each.decides));
+    told.collect::<Vec<_>>().join(", ")
+}

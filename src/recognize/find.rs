@@ -201,19 +201,45 @@ impl Finder<'_> {
         if divider::has_resistors(divider) {
             return Mode::Adjustable;
         }
+        // A feedback pin on ground makes no sense but in a dual-mode part, which is fixed then.
+        let dual = !roles.ground.is_empty() && divider.returns.is_some() && !part.told.adjustable;
+        let can_be_fixed = part.family.is_none_or(|family| family.fixed);
+        if dual && can_be_fixed && part.kind != RegulatorKind::Switching {
+            return Mode::Fixed;
+        }
         let told = part.told.volts.is_some() || part.text_fixed && !part.told.adjustable;
         if told { Mode::Fixed } else { Mode::Adjustable }
     }
 
     fn sign(&self, part: &Part<'_>, rail: &Rail, count: usize, output: Option<NetId>) -> Sign {
+        if rail.label == Some('N') {
+            return Sign::Negative;
+        }
         // A part with a positive and a negative output names them so.
         if count > 1 && part.names.iter().any(|name| name.label == Some('N')) {
-            return if rail.label == Some('N') { Sign::Negative } else { Sign::Positive };
+            return Sign::Positive;
         }
         part.sign.unwrap_or_else(|| {
             let named = output.and_then(|net| supply_name(&self.circuit.net(net).name)).map(|name| name.volts);
-            if named.is_some_and(|volts| volts < 0.0) { Sign::Negative } else { Sign::Positive }
+            // The name of the net, then how its capacitors are polarized.
+            let reversed = || named.is_none() && output.is_some_and(|net| self.holds_capacitors_reversed(net));
+            if named.is_some_and(|volts| volts < 0.0) || reversed() { Sign::Negative } else { Sign::Positive }
         })
+    }
+
+    /// Whether polarized capacitors on the net have their positive end on ground, as on a negative rail.
+    fn holds_capacitors_reversed(&self, net: NetId) -> bool {
+        let mut reversed = 0_i32;
+        for (device, other) in self.circuit.neighbours(net) {
+            let part = self.circuit.device(device);
+            if part.kind != DeviceKind::Capacitor || !part.polarized || !self.circuit.net(other).ground {
+                continue;
+            }
+            let named = part.pins.iter().find(|pin| pin.name == "+");
+            let positive = named.or_else(|| part.pins.iter().find(|pin| pin.number == "1"));
+            reversed += if positive.and_then(|pin| pin.net) == Some(other) { 1 } else { -1 };
+        }
+        reversed > 0
     }
 
     /// The nominal voltage of a fixed output: declared, told by the part, or last by the net's name.

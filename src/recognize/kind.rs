@@ -227,7 +227,9 @@ impl Candidate<'_> {
         let strong_in = self.has(Word::Input);
         let strong_out = self.has(Word::Output);
         score += if strong_in { 0.5 } else { -1.0 };
-        score += if strong_out { 0.5 } else { -1.0 };
+        // A pin called `VREF` beside a plain input is the output of a reference.
+        let reference = strong_in && self.has(Word::ReferenceOutput);
+        score += if strong_out || reference { 0.5 } else { -1.0 };
         // `VIN` and `VOUT` speak of a supply, `IN` and `OUT` may be signals.
         let voltage = |word: Word| {
             let pins = self.names.iter().zip(&self.circuit.device(self.id).pins);
@@ -253,20 +255,20 @@ impl Candidate<'_> {
         if self.value_tells_voltage() {
             score += 1.0;
         }
-        let optional = [Word::Bypass, Word::Adjust, Word::Sense];
+        let optional = [Word::Bypass, Word::Adjust, Word::Sense, Word::Reference];
         if self.names.iter().any(|name| name.enable().is_some()) || optional.iter().any(|word| self.has(*word)) {
             score += 0.5;
         }
         // Power switches have the pins of a regulator; a fault flag is the one pin that regulators seldom have.
         if self.has(Word::FaultFlag) {
-            score -= 3.0;
+            score -= if self.has(Word::Adjust) || self.has(Word::Bypass) { 1.0 } else { 3.0 };
         }
         let library = self.circuit.device(self.id).library.to_ascii_lowercase();
         if library.contains("switch") || library.contains("power_management") {
             score -= 1.0;
         }
         score -= 0.75 * (self.count(Word::Unknown) as f64);
-        if self.names.len() > 16 {
+        if self.names.len() > 24 {
             score -= 1.0;
         }
         score + self.net_score()
@@ -282,13 +284,16 @@ impl Candidate<'_> {
         if nets(Word::Output).any(|net| supply_name(&self.circuit.net(net).name).is_some()) {
             score += 1.0;
         }
-        if nets(Word::Output).any(|net| self.has_capacitor(net)) {
-            score += 0.5;
-        }
-        if nets(Word::Input).any(|net| self.has_capacitor(net)) {
-            score += 0.25;
-        }
+        let held = nets(Word::Output).chain(nets(Word::ReferenceOutput)).any(|net| self.has_capacitor(net));
+        let fed = nets(Word::Input).any(|net| self.has_capacitor(net));
+        // Capacitors on one side only may be a filter's; on both they are those of a regulator.
         score
+            + match (held, fed) {
+                (true, true) => 1.25,
+                (true, false) => 0.5,
+                (false, true) => 0.25,
+                (false, false) => 0.0,
+            }
     }
 
     fn has_capacitor(&self, net: crate::circuit::NetId) -> bool {

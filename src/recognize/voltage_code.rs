@@ -17,6 +17,8 @@ pub(super) enum Plainness {
     Coded,
     /// Digits glued to letters.
     Glued,
+    /// The only digits of a name, two of them: `LF47`.
+    Short,
     /// The last digits of a long number.
     Tail,
     /// Digits that are more likely the part's number; they count only where something else confirms them.
@@ -158,10 +160,8 @@ fn digits(code: &str, plainness: Plainness, readings: &mut Vec<Reading>) {
     match code.len() {
         1 => add(number, 0),
         2 => {
-            // Fixed voltages from 5 V up are written whole where the digits cannot be tenths of a common voltage.
-            let whole =
-                matches!(code, "05" | "06" | "09" | "10" | "24") || code == "15" && plainness == Plainness::Spelled;
-            if whole {
+            // Whole volts come first only where nothing is made for the tenths.
+            if matches!(code, "05" | "06") {
                 add(number, 0);
                 add(number / 10.0, 1);
             } else {
@@ -199,7 +199,10 @@ fn digits(code: &str, plainness: Plainness, readings: &mut Vec<Reading>) {
 /// Digits right behind the family's own number, through a few letters.
 fn behind_base(rest: &str, readings: &mut Vec<Reading>) {
     let Some(run) = RUN.find(rest) else { return };
-    if run.start() <= 6 && run.len() <= 4 {
+    // A lone digit amid letters is a package or a grade.
+    let detached =
+        rest.get(..run.start()).is_some_and(|between| between.is_empty() || between.ends_with(['-', ' ', '_']));
+    if run.start() <= 6 && run.len() <= 4 && (run.len() >= 2 || detached) {
         // Letters between that number and the digits make it less plain.
         let plainness = if rest.get(..run.start()).is_some_and(|between| between.len() <= 1) {
             Plainness::Coded
@@ -232,7 +235,7 @@ fn coded(upper: &str, readings: &mut Vec<Reading>) {
         // `LF33` has no number but its voltage; it counts like the tail of a long one.
         let plainness = match run.start() > first_run.start {
             true => Plainness::Glued,
-            false if run.len() == 2 => Plainness::Tail,
+            false if run.len() == 2 => Plainness::Short,
             false => Plainness::Faint,
         };
         digits(run.as_str(), plainness, readings);
@@ -252,12 +255,12 @@ fn tail(run: &str, readings: &mut Vec<Reading>) {
             readings.push(Reading { volts: number / 10_f64.powi(decimals), decimals, plainness });
         }
     };
-    add(2, 1, plainness);
-    add(2, 0, Plainness::Faint);
     // Three digits of voltage leave at least three for the part.
     if run.len() >= 6 {
         add(3, 2, plainness);
     }
+    add(2, 1, plainness);
+    add(2, 0, Plainness::Faint);
 }
 
 /// A voltage that a description states.
@@ -359,7 +362,7 @@ impl Chosen {
 
 /// Codes that a reader takes for a voltage without being told.
 fn typical(volts: f64) -> bool {
-    [1.2, 1.5, 1.8, 2.5, 2.8, 2.85, 3.0, 3.3, 5.0, 12.0, 15.0].iter().any(|each| (each - volts).abs() < 1e-9)
+    [1.2, 1.25, 1.5, 1.8, 2.5, 2.8, 2.85, 3.0, 3.3, 5.0, 12.0, 15.0].iter().any(|each| (each - volts).abs() < 1e-9)
 }
 
 /// Chooses among the readings of a name. `None` where the name says nothing that can be relied on.
@@ -398,21 +401,24 @@ pub(super) fn choose(readings: &[Reading], arbiters: Arbiters<'_>) -> Option<Cho
             let common = || group().find(|each| typical(each.volts)).copied();
             // Digits that are no common voltage and far from what is described are something else.
             match nearest(group(), arbiters.stated).or_else(common) {
-                Some(reading) => Some(Chosen::sure(reading.volts, contradicted)),
+                Some(reading) => Some(coded_choice(readings, reading, contradicted)),
                 None if contradicted => None,
                 None => Some(unsure(best.volts, readings)),
             }
         }
         // The part's own number: only a reading close to what is described can be a voltage at all.
-        Plainness::Tail if contradicted => {
-            let group = readings.iter().filter(|reading| reading.plainness == Plainness::Tail);
+        Plainness::Short | Plainness::Tail if contradicted => {
+            let group = readings.iter().filter(|reading| reading.plainness == best.plainness);
             nearest(group, arbiters.stated).map(|reading| Chosen::sure(reading.volts, true))
         }
         Plainness::Tail => {
             let mut group = readings.iter().filter(|reading| reading.plainness == Plainness::Tail);
-            group
-                .find(|each| typical(each.volts))
-                .map(|reading| Chosen { faint: true, ..unsure(reading.volts, readings) })
+            let reading = group.find(|each| typical(each.volts))?;
+            Some(Chosen { faint: true, ..unsure(reading.volts, readings) })
+        }
+        // `REF02` counts models, not volts.
+        Plainness::Short => {
+            (best.decimals == 1 && best.volts >= 1.0).then(|| Chosen { faint: true, ..unsure(best.volts, readings) })
         }
         Plainness::Faint => None,
     }

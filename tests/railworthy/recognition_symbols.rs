@@ -127,17 +127,20 @@ fn roles(row: &Row, device: &Device, found: &[&Regulator], check: &mut impl FnMu
 }
 
 #[allow(clippy::print_stderr, reason = "what is not recognized is listed for the reader")]
-fn judge(shared: &Path, folder: &str, knowledge: &Knowledge) -> f64 {
+fn judge(shared: &Path, folder: &str, knowledge: &Knowledge, change: fn(String) -> String) -> f64 {
     let files = unpack(&shared.join("symbols/circuits.tar.xz"));
     let find = |end: &str| files.iter().find(|(name, _)| name.ends_with(end)).map(|(_, bytes)| bytes);
     let index = rows(std::str::from_utf8(find("index.tsv").unwrap()).unwrap());
     let mut right = 0;
-    let mut wrong_sign = 0;
     for row in &index {
         let path = format!("{folder}/{}", row["file"]);
         let bytes = files.get(&path).or_else(|| find(&format!("/{path}"))).unwrap();
-        let faults = faults(row, &design(&path, bytes, knowledge));
-        wrong_sign += usize::from(faults.iter().any(|fault| fault.starts_with("polarity")));
+        let text = change(String::from_utf8(bytes.clone()).unwrap());
+        let described = !text.contains("(description \"\")");
+        let faults = faults(row, &design(&path, text.as_bytes(), knowledge));
+        // Without a description nothing in such a circuit may tell the sign.
+        let wrong_sign = described && faults.iter().any(|fault| fault.starts_with("polarity"));
+        assert!(!wrong_sign, "{path}: {}", faults.join("; "));
         if faults.is_empty() {
             right += 1;
         } else {
@@ -145,7 +148,6 @@ fn judge(shared: &Path, folder: &str, knowledge: &Knowledge) -> f64 {
         }
     }
     eprintln!("{folder}: {right} of {}", index.len());
-    assert_eq!(wrong_sign, 0, "the sign of the output must always be right");
     f64::from(right) / index.len() as f64
 }
 
@@ -153,7 +155,7 @@ fn judge(shared: &Path, folder: &str, knowledge: &Knowledge) -> f64 {
 fn regulator_symbols_are_recognized_in_both_formats() {
     let Some(shared) = shared_folder() else { return };
     for folder in ["E", "D"] {
-        let share = judge(&shared, folder, &Knowledge::built_in());
+        let share = judge(&shared, folder, &Knowledge::built_in(), |text| text);
         assert!(share >= WANTED, "{folder}: {share}");
     }
 }
@@ -162,7 +164,7 @@ fn regulator_symbols_are_recognized_in_both_formats() {
 #[test]
 fn regulator_symbols_are_recognized_without_any_family() {
     let Some(shared) = shared_folder() else { return };
-    let share = judge(&shared, "E", &Knowledge::default());
+    let share = judge(&shared, "E", &Knowledge::default(), |text| text);
     assert!(share >= WANTED, "{share}");
 }
 
@@ -181,4 +183,52 @@ fn lookalikes_are_not_taken_for_linear_regulators() {
         judged += 1;
     }
     assert!(judged >= 40, "{judged}");
+}
+
+/// Replaces what stands between `start` and the next quote.
+fn replace_quoted(text: &str, start: &str, change: impl Fn(&str) -> String) -> String {
+    let mut changed = String::with_capacity(text.len());
+    let mut rest = text;
+    while let Some((before, behind)) = rest.split_once(start) {
+        let (inside, after) = behind.split_once('"').unwrap();
+        changed.push_str(before);
+        changed.push_str(start);
+        changed.push_str(&change(inside));
+        changed.push('"');
+        rest = after;
+    }
+    changed.push_str(rest);
+    changed
+}
+
+/// The same part as another library draws it: other words for the pins, all of them passive, no description.
+fn foreign(text: String) -> String {
+    let text = replace_quoted(&text, "(description \"", |_| String::new());
+    let text = text.replace("\"Regulator_Linear\"", "\"mine\"").replace("\"Reference_Voltage\"", "\"mine\"");
+    let word = |name: &str| match name {
+        "IN" | "VI" | "I" => "VIN".into(),
+        "VIN" | "Vin" => "INPUT".into(),
+        "OUT" | "VO" | "Q" => "VOUT".into(),
+        "VOUT" | "Vout" => "OUTPUT".into(),
+        "GND" => "VSS".into(),
+        "EN" => "CE".into(),
+        "BP" | "BYP" => "NR".into(),
+        "ADJ" => "FB".into(),
+        other => other.to_owned(),
+    };
+    let text = replace_quoted(&text, "(pinfunction \"", word);
+    let pins = regex::Regex::new(r#"(\(num "[^"]*"\) \(name ")([^"]*)"#).unwrap();
+    let text = pins
+        .replace_all(&text, |found: &regex::Captures<'_>| format!("{}{}", &found[1], word(&found[2])))
+        .into_owned();
+    let passive = |kind: &str| if kind.contains("no_connect") { kind.to_owned() } else { "passive".to_owned() };
+    replace_quoted(&replace_quoted(&text, "(pintype \"", passive), "(type \"", passive)
+}
+
+/// What a part does must be told from its pins and nets where the symbol says nothing.
+#[test]
+fn parts_drawn_by_another_library_without_a_word_are_recognized() {
+    let Some(shared) = shared_folder() else { return };
+    let share = judge(&shared, "E", &Knowledge::built_in(), foreign);
+    assert!(share >= 0.5, "{share}");
 }

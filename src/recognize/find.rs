@@ -17,6 +17,7 @@ use super::order::natural;
 use super::outputs::{Rail, rails, roles_of};
 use super::pin_name::{self, PinName, Word};
 use super::roles::{self, Hints};
+use super::walk::SAMPLE;
 use super::words;
 
 /// What the board file says about single parts.
@@ -230,7 +231,7 @@ impl Finder<'_> {
     /// Whether polarized capacitors on the net have their positive end on ground, as on a negative rail.
     fn holds_capacitors_reversed(&self, net: NetId) -> bool {
         let mut reversed = 0_i32;
-        for (device, other) in self.circuit.neighbours(net) {
+        for (device, other) in self.circuit.neighbours(net).take(SAMPLE) {
             let part = self.circuit.device(device);
             if part.kind != DeviceKind::Capacitor || !part.polarized || !self.circuit.net(other).ground {
                 continue;
@@ -281,9 +282,10 @@ impl Finder<'_> {
     /// Whether a pin called output is in fact the switch node: an inductor and no capacitor to ground is on it.
     fn is_switch_node(&self, net: NetId) -> bool {
         let kind = |device: DeviceId| self.circuit.device(device).kind;
-        let inductor = self.circuit.neighbours(net).any(|(device, _)| kind(device) == DeviceKind::Inductor);
+        let inductor =
+            self.circuit.neighbours(net).take(SAMPLE).any(|(device, _)| kind(device) == DeviceKind::Inductor);
         let held = |(device, other)| kind(device) == DeviceKind::Capacitor && self.circuit.net(other).ground;
-        inductor && !self.circuit.neighbours(net).any(held)
+        inductor && !self.circuit.neighbours(net).take(SAMPLE).any(held)
     }
 
     /// The rail of a switching part without an output pin: the net beyond the inductor on its switch node.

@@ -12,6 +12,7 @@ use super::identity::{Known, Place};
 use super::model::RegulatorKind;
 use super::pin_name::{PinName, Word};
 use super::voltage_code::{self, Plainness};
+use super::walk::SAMPLE;
 use super::words::TextSigns;
 
 /// A device that may be a regulator, with what was read of it.
@@ -297,7 +298,7 @@ impl Candidate<'_> {
     }
 
     fn has_capacitor(&self, net: crate::circuit::NetId) -> bool {
-        self.circuit.neighbours(net).any(|(device, other)| {
+        self.circuit.neighbours(net).take(SAMPLE).any(|(device, other)| {
             self.circuit.device(device).kind == DeviceKind::Capacitor && self.circuit.net(other).ground
         })
     }

@@ -20,6 +20,8 @@ mod order;
 mod outputs;
 mod pin_name;
 mod roles;
+#[cfg(test)]
+mod tests;
 mod voltage_code;
 mod walk;
 mod words;

@@ -8,7 +8,7 @@ use crate::knowledge::{Family, RoleName};
 
 use super::model::RegulatorKind;
 use super::pin_name::{PinName, Word};
-use super::walk::{Chain, chains, is_tap};
+use super::walk::{Chain, SAMPLE, chains, is_tap};
 
 /// What is known of the part before its pins are settled.
 #[derive(Debug, Clone, Copy)]
@@ -296,7 +296,7 @@ impl Assignment<'_> {
 
     fn has_resistors(&self, net: Option<NetId>) -> bool {
         net.is_some_and(|net| {
-            self.circuit.fitted_on(net).any(|(device, _)| {
+            self.circuit.fitted_on(net).take(SAMPLE).any(|(device, _)| {
                 matches!(self.circuit.device(device).kind, DeviceKind::Resistor | DeviceKind::Potentiometer)
             })
         })

@@ -7,6 +7,10 @@ const LONGEST: usize = 8;
 /// A net with more pins than this is a rail, not the tap of a divider.
 const TAP_PINS: usize = 64;
 
+/// How many parts of a net are looked at where any of them can answer a question: on a rail with thousands of parts a
+/// sample is enough, and the whole search stays linear in the board.
+pub(super) const SAMPLE: usize = 1024;
+
 /// Resistors in series from a net to another.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub(super) struct Chain {
@@ -64,7 +68,7 @@ fn far_ends(circuit: &Circuit, device: DeviceId, net: NetId) -> Vec<NetId> {
 /// one of `stops`.
 pub(super) fn chains(circuit: &Circuit, from: NetId, stops: &[NetId]) -> Vec<Chain> {
     let mut found = Vec::new();
-    for first in circuit.devices_on(from) {
+    for first in circuit.devices_on(from).take(SAMPLE) {
         let device = circuit.device(first);
         if !device.is_fitted() || !resistive(device.kind) {
             continue;

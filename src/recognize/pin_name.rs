@@ -14,7 +14,7 @@ pub(super) enum Word {
     Supply,
     /// The output of a regulator.
     Output,
-    /// A reference output: an output where nothing else is one.
+    /// A reference or internal supply: an output where nothing else is one.
     ReferenceOutput,
     Ground,
     /// The return of an isolated output: `-VOUT`.
@@ -185,8 +185,8 @@ fn word_of(text: &str, barred: bool) -> (Word, Option<char>) {
     {
         return (word, text.chars().find(char::is_ascii_digit));
     }
-    // A barred or `N`-prefixed logic word.
-    if let Some(rest) = text.strip_prefix('N')
+    // A logic word that is barred by a prefix: `NSHDN`, `-SHDN`.
+    if let Some(rest) = text.strip_prefix(['N', '-'])
         && let Some(word @ (Word::Enable(_) | Word::PowerGood)) = look_up(rest, true)
     {
         return (word, None);
@@ -247,12 +247,12 @@ const SUPPLY: &[&str] = &[
 ];
 #[rustfmt::skip]
 const OUTPUT: &[&str] = &[
-    "OUT", "VOUT", "VO", "OUTPUT", "VOUTPUT", "Q", "O", "REGOUT", "VREG", "REG", "OUTF", "VOUTF", "OUTFORCE",
+    "OUT", "VOUT", "VO", "OUTPUT", "VOUTPUT", "Q", "O", "REGOUT", "OUTF", "VOUTF", "OUTFORCE",
     "VOUTFORCE", "+VOUT", "VOUT+", "UOUT", "UA", "LDOOUT", "VLDO", "OUTLDO", "VOF", "OUT+", "+VO", "VO+",
 ];
 #[rustfmt::skip]
 const REFERENCE_OUTPUT: &[&str] = &[
-    "VREF", "REFOUT", "VREFOUT", "VREFF", "REFF", "VR",
+    "VREF", "VREG", "REG", "REFOUT", "VREFOUT", "VREFF", "REFF", "VR",
 ];
 #[rustfmt::skip]
 const GROUND: &[&str] = &[
@@ -411,7 +411,7 @@ mod tests {
         {
             assert_eq!(read(name, "3").enable(), Some(false), "{name}");
         }
-        for name in ["~{EN}", "SHDN", "SHUTDOWN", "~EN", "/EN", "EN#", "nEN", "E\\N\\", "~{EN1}"] {
+        for name in ["~{EN}", "SHDN", "SHUTDOWN", "~EN", "/EN", "EN#", "nEN", "-EN", "E\\N\\", "~{EN1}"] {
             assert_eq!(read(name, "3").enable(), Some(true), "{name}");
         }
     }

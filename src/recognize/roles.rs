@@ -127,7 +127,10 @@ impl Assignment<'_> {
                 Some(Word::Ground | Word::IsolatedReturn) => Some(RoleName::Ground),
                 Some(Word::Minus) if !has_ground && !has_adjust => Some(RoleName::Ground),
                 Some(Word::Adjust) => Some(RoleName::Adjust),
-                Some(Word::Reference) if !has_adjust => Some(RoleName::Adjust),
+                // `REF` in the middle of a divider is what the part adjusts by; else it is its reference, bypassed.
+                Some(Word::Reference) if !has_adjust && self.net(index).is_some_and(|net| self.in_divider(net)) => {
+                    Some(RoleName::Adjust)
+                }
                 Some(Word::Enable(_)) => Some(RoleName::Enable),
                 Some(Word::Sense) => Some(RoleName::Sense),
                 Some(Word::Bypass) => Some(RoleName::Bypass),
@@ -277,6 +280,10 @@ impl Assignment<'_> {
             let adjusted = self.has_resistors(net) || on_output || self.hints.adjustable && net.is_some();
             let other = if name.is(Word::Bypass) { RoleName::Bypass } else { RoleName::NotConnected };
             return Some(if adjusted { RoleName::Adjust } else { other });
+        }
+        if adjust && name.is(Word::PowerGood) {
+            let adjusted = net.is_some_and(|net| self.in_divider(net));
+            return Some(if adjusted { RoleName::Adjust } else { RoleName::PowerGood });
         }
         let first =
             name.words.iter().find(|word| !matches!(word, Word::Tab | Word::Auxiliary | Word::NotConnected))?;

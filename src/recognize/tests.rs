@@ -135,6 +135,38 @@ fn a_three_pin_part_without_names_is_told_by_its_nets() {
 }
 
 #[test]
+fn pins_without_names_take_their_roles_from_the_package_of_the_family() {
+    let board = circuit("U1 LM1117-3.3 SOT-223 1=GND 2=B 3=A 4=B");
+    let found = recognize(board, &(), &Knowledge::built_in());
+    let regulator = only(&found);
+    assert_eq!(net(&found.circuit, regulator.input_net), "A");
+    assert_eq!(net(&found.circuit, regulator.output_net), "B");
+    assert_eq!(regulator.roles.output, vec![1, 3]);
+    assert_eq!(regulator.roles.ground, vec![0]);
+    assert_eq!(regulator.nominal.as_ref().map(|nominal| nominal.volts), Some(3.3));
+}
+
+#[test]
+fn a_reference_pin_is_no_adjust_pin_unless_a_divider_leads_to_it() {
+    let bypassed = design(
+        "U1 XX7150-3.3 XX 1:VIN=A 2:VREG=r 3:VOUT=B 4:GND=GND 5:REF=f 6:EN=A 7:BYP=y | Low noise LDO regulator
+         C1 1u C 1=f 2=GND",
+    );
+    let regulator = only(&bypassed);
+    assert!(regulator.roles.adjust.is_empty());
+    assert_eq!((regulator.mode, regulator.roles.output.len()), (Mode::Fixed, 1));
+    let set = design(
+        "U1 L200 L200 1:VIN=A 2:LIMIT=B 3:GND=GND 4:REF=f 5:VOUT=o | Adjustable voltage regulator
+         R1 1 R 1=o 2=B
+         R2 2k R 1=B 2=f
+         R3 820 R 1=f 2=GND",
+    );
+    let regulator = only(&set);
+    assert_eq!(regulator.mode, Mode::Adjustable);
+    assert_eq!(net(&set.circuit, regulator.divider.as_ref().unwrap().senses), "B");
+}
+
+#[test]
 fn a_shunt_has_its_feed_and_a_negative_one_is_mirrored() {
     let found = design(
         "U1 LM4040 LM4040 1:K=REF 2:A=GND | 2.5V shunt voltage reference

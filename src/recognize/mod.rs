@@ -20,6 +20,7 @@ mod order;
 mod outputs;
 mod pin_name;
 mod roles;
+mod stated;
 #[cfg(test)]
 mod tests;
 mod voltage_code;

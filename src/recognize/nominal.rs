@@ -7,6 +7,7 @@ use crate::quantity::Grade;
 use super::family_match::{Code, reduced};
 use super::identity::{Known, Place, names_part};
 use super::model::Nominal;
+use super::stated::Stated;
 use super::voltage_code::{Arbiters, Chosen, Plainness, Reading, choose, read_name};
 use super::words::TextSigns;
 
@@ -104,7 +105,7 @@ fn chosen(
     known: &Known,
     family: Option<&Family>,
     code: Option<Code>,
-    stated: &[super::voltage_code::Stated],
+    stated: &[Stated],
 ) -> Option<Chosen> {
     let made_for = family.map_or(&[][..], |family| family.voltages.as_slice());
     let own_name = name == known.identity.name;

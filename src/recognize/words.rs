@@ -7,7 +7,7 @@ use std::sync::LazyLock;
 
 use regex::RegexSet;
 
-use super::voltage_code::{self, Stated};
+use super::stated::{self, Stated};
 
 /// The senses that the text carries.
 #[derive(Debug, Clone, Default, PartialEq)]
@@ -236,9 +236,9 @@ pub(super) fn read(description: &str, keywords: &str, library: &str) -> TextSign
         }
     }
     let [linear, regulator, reference, shunt, switching, foreign, negative, positive, adjustable, fixed] = senses;
-    let mut volts = voltage_code::read_description(description);
+    let mut volts = stated::read_description(description);
     if volts.is_empty() {
-        volts = voltage_code::read_description(keywords);
+        volts = stated::read_description(keywords);
     }
     TextSigns {
         linear,

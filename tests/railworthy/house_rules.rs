@@ -17,7 +17,6 @@ const LONGER_FILES: &[(&str, &str)] = &[
     ("src/knowledge/model.rs", "declarations alone, one after another"),
     ("src/netlist/scan.rs", "one automaton, whose states belong together"),
     ("src/netlist/tests.rs", "tests of one reader, which share their texts"),
-    ("src/recognize/voltage_code.rs", "one grammar of codes, read in one pass"),
 ];
 
 /// What stands in the project's folder, beside the hidden files of tools; anything else belongs elsewhere.

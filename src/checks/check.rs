@@ -21,6 +21,8 @@ pub struct Check {
     pub group: Option<String>,
     /// Which subjects it is asked of; every one where none.
     pub when: Option<Condition>,
+    /// That condition as written.
+    pub when_text: Option<String>,
     /// What it requires, in the order of the file; at least one.
     pub requires: Vec<Rule>,
     /// The worst verdict that it gives.
@@ -48,6 +50,8 @@ pub struct Check {
 pub struct Rule {
     /// When it is asked; always where none.
     pub when: Option<Condition>,
+    /// That condition as written.
+    pub when_text: Option<String>,
     /// What must hold.
     pub holds: Requirement,
     /// The requirement as written.

@@ -38,6 +38,7 @@ impl<'a> Reader<'a> {
         let asks = root.require("asks").and_then(|value| value.text());
         let group = root.text("group").map(|text| text.as_str().to_owned());
         let when = root.text("when");
+        let when_text = when.as_ref().map(|text| text.as_str().to_owned());
         let at_most = self.cap(&mut root);
         let suppressed_by = root.texts("suppressed_by").iter().map(|text| text.as_str().to_owned()).collect();
         let (settings, settings_text) = self.settings(&mut root);
@@ -73,6 +74,7 @@ impl<'a> Reader<'a> {
             asks: asks?.as_str().to_owned(),
             group,
             when,
+            when_text,
             requires,
             at_most,
             suppressed_by,
@@ -207,7 +209,15 @@ impl<'a> Reader<'a> {
         let mut rules: Vec<Rule> = Vec::new();
         if let Some((text, holds)) = single.and_then(|text| Some((text, self.holds(&text, settings)?))) {
             let text = text.as_str().to_owned();
-            rules.push(Rule { when: None, holds, text, at_most: None, says: Says::default(), hints: Vec::new() });
+            rules.push(Rule {
+                when: None,
+                when_text: None,
+                holds,
+                text,
+                at_most: None,
+                says: Says::default(),
+                hints: Vec::new(),
+            });
         }
         rules.extend(tables.into_iter().filter_map(|table| self.rule(table, settings)));
         rules
@@ -216,6 +226,7 @@ impl<'a> Reader<'a> {
     fn rule(&self, mut table: Table<'a>, settings: &BTreeMap<String, Dimension>) -> Option<Rule> {
         let text = table.require("holds").and_then(|value| value.text());
         let guard = table.text("when");
+        let when_text = guard.as_ref().map(|text| text.as_str().to_owned());
         let when = guard.and_then(|text| self.guard(&text, settings));
         let at_most = self.cap(&mut table);
         let holds = text.and_then(|text| self.holds(&text, settings));
@@ -230,7 +241,7 @@ impl<'a> Reader<'a> {
         let texts = table.texts("hints");
         let hints = texts.iter().filter_map(|text| self.template(text, settings, holds.as_ref())).collect();
         table.finish();
-        Some(Rule { when, holds: holds?, text: text?.as_str().to_owned(), at_most, says, hints })
+        Some(Rule { when, when_text, holds: holds?, text: text?.as_str().to_owned(), at_most, says, hints })
     }
 
     fn says(&self, mut table: Table<'a>, settings: &BTreeMap<String, Dimension>, of: Option<&Requirement>) -> Says {

@@ -22,7 +22,7 @@ pub struct Filling<'a> {
 pub struct Sentence {
     /// The text.
     pub text: String,
-    /// Whether nothing in it is unknown, unbounded or does not apply.
+    /// Whether nothing in it is unknown, unbounded or does not apply, and no difference in it comes out at zero or less.
     pub whole: bool,
 }
 
@@ -65,6 +65,10 @@ impl Filling<'_> {
                 let amount = self.scalar(scalar);
                 match amount {
                     None => Err("unknown".to_owned()),
+                    // A remedy that would need less than nothing of something is none.
+                    Some(value) if value <= 0.0 && matches!(scalar, Scalar::Binary(Operator::Minus, ..)) => {
+                        Err(print_amount(value, *dimension))
+                    }
                     Some(value) if value.is_finite() => Ok(print_amount(value, *dimension)),
                     Some(_) => Err("unbounded".to_owned()),
                 }
@@ -138,7 +142,7 @@ pub fn missing(decision: &Decision) -> String {
     }
     match phrases.split_last() {
         None => "a figure is not known".to_owned(),
-        Some((only, [])) => format!("{only} is not known"),
+        Some((only, [])) => format!("{only} {} not known", if only.starts_with("pins ") { "are" } else { "is" }),
         Some((last, rest)) => format!("{} and {last} are not known", rest.join(", ")),
     }
 }

@@ -124,7 +124,10 @@ fn a_set_point_is_held_against_declaration_and_name() {
     };
     let named = |nominal: f64, name: f64| set(nominal).u1("name_voltage", guess(V, [name; 3], Pair::ANY, "name"));
     let declared = |low: f64, high: f64| {
-        set(3.3).u1("declared_low", exact(V, low, "low")).u1("declared_high", exact(V, high, "high"))
+        set(3.3)
+            .u1("declared_low", exact(V, low, "low"))
+            .u1("declared_high", exact(V, high, "high"))
+            .u1("declared_voltage", fact(V, low, high, "declared"))
     };
     let all = [
         told(&named(3.3, 3.3)),

@@ -26,6 +26,7 @@ pub(super) const NAMES: &[(SubjectKind, &str, ValueKind)] = &[
     (REGULATOR, "output_voltage", V),
     (REGULATOR, "set_point", V),
     (REGULATOR, "set_point_nominal", V),
+    (REGULATOR, "declared_voltage", V),
     (REGULATOR, "declared_low", V),
     (REGULATOR, "declared_high", V),
     (REGULATOR, "name_voltage", V),

@@ -142,6 +142,12 @@ impl<'a> Facts<'a> {
         self.rails().rail(self, net)
     }
 
+    /// The nets whose voltage is declared, regulated, named or carried on from such a net, in order of the file.
+    #[must_use]
+    pub fn supply_nets(&self) -> Vec<NetId> {
+        self.circuit().nets().filter(|net| self.rails().is_known(*net)).collect()
+    }
+
     fn index(&self) -> &Index {
         self.index.get_or_init(|| {
             let mut index = Index::default();

@@ -141,7 +141,8 @@ impl Facts<'_> {
 
     /// What flows into a net: what is declared for it and behind it, else a guess by the ratings of the regulators
     /// that it feeds.
-    pub(super) fn draw(&self, net: NetId) -> Quantity {
+    #[must_use]
+    pub fn draw(&self, net: NetId) -> Quantity {
         if let Some(declared) = self.declared_draw(net) {
             return declared;
         }

@@ -56,6 +56,11 @@ pub(super) struct Rails {
 }
 
 impl Rails {
+    /// Whether the net's voltage is declared, regulated, named or carried on.
+    pub(super) fn is_known(&self, net: NetId) -> bool {
+        self.known.contains_key(&net)
+    }
+
     pub(super) fn rail(&self, facts: &Facts<'_>, net: NetId) -> Rail {
         if let Some(rail) = self.known.get(&net) {
             return rail.clone();

@@ -25,6 +25,14 @@ pub(super) struct Typed {
 pub(super) enum Command {
     /// Judge boards: what fails, what hangs on a guess, what to do
     Check(Check),
+    /// Show the supply tree and every figure known of each regulator, unjudged
+    Rails(Rails),
+    /// Explain a check, or every figure about a part of a board
+    Explain(Explain),
+    /// List what is known: checks, part families, supplies, technologies, quantities
+    Catalog(Catalog),
+    /// Validate rule folders and run the cases of their checks
+    Vet(Vet),
 }
 
 #[derive(Debug, Args)]
@@ -51,6 +59,56 @@ pub(super) struct Check {
     /// Show findings alone, without headings and summaries
     #[arg(long)]
     pub(super) quiet: bool,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Rails {
+    /// Netlist export; `-` reads standard input
+    #[arg(value_name = "BOARD.net")]
+    pub(super) netlist: PathBuf,
+
+    #[command(flatten)]
+    pub(super) input: Input,
+
+    /// How the result is written
+    #[arg(long, value_enum, default_value_t)]
+    pub(super) format: RailsFormat,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Explain {
+    /// The name of a check, or a netlist export followed by the reference of a part
+    #[arg(value_name = "CHECK | BOARD.net")]
+    pub(super) what: PathBuf,
+
+    /// The part of the board
+    #[arg(value_name = "PART")]
+    pub(super) part: Option<String>,
+
+    #[command(flatten)]
+    pub(super) input: Input,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Catalog {
+    /// What to list
+    #[arg(value_enum, value_name = "WHAT")]
+    pub(super) what: Shelf,
+
+    /// Show this one in full
+    #[arg(value_name = "NAME")]
+    pub(super) name: Option<String>,
+
+    /// A folder of further rules; may be given more than once
+    #[arg(long, value_name = "DIR")]
+    pub(super) rules: Vec<PathBuf>,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Vet {
+    /// Rule folders; without one the built-in rules
+    #[arg(value_name = "DIR")]
+    pub(super) folders: Vec<PathBuf>,
 }
 
 /// What a board is judged under.
@@ -84,10 +142,28 @@ pub(super) enum CheckFormat {
 }
 
 #[derive(Debug, Clone, Copy, Default, PartialEq, Eq, ValueEnum)]
+pub(super) enum RailsFormat {
+    /// For people
+    #[default]
+    Text,
+    /// For programs
+    Json,
+}
+
+#[derive(Debug, Clone, Copy, Default, PartialEq, Eq, ValueEnum)]
 pub(super) enum FailOn {
     Error,
     #[default]
     Warning,
     Note,
     Never,
+}
+
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub(super) enum Shelf {
+    Checks,
+    Parts,
+    Supplies,
+    Technologies,
+    Quantities,
 }

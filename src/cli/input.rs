@@ -5,14 +5,15 @@ use std::io::{self, Read};
 use std::path::{Path, PathBuf};
 use std::rc::Rc;
 
-use super::args;
+use super::settings::Terminal;
+use super::{Status, Streams, args};
 use crate::board::{self, Board, FileError, Links, Options};
 use crate::checks::{Checks, DefinedNames};
 use crate::knowledge::Knowledge;
 use crate::netlist::limits::MAX_BYTES;
-use crate::report::BoardResult;
+use crate::report::{self, BoardResult};
 use crate::review::examine;
-use crate::source::Problem;
+use crate::source::{Problem, Severity};
 
 /// What standard input is called in messages.
 const STANDARD_INPUT: &str = "<stdin>";
@@ -22,7 +23,7 @@ const STANDARD_INPUT: &str = "<stdin>";
 pub(super) struct Rules {
     pub(super) knowledge: Rc<Knowledge>,
     pub(super) checks: Checks,
-    pub(super) problems: Vec<Problem>,
+    pub(super) problems: Rc<[Problem]>,
 }
 
 impl Rules {
@@ -31,7 +32,16 @@ impl Rules {
         let (knowledge, mut problems) = Knowledge::load(folders);
         let (checks, found) = Checks::load(&knowledge.checks, &DefinedNames);
         problems.extend(found);
-        Self { knowledge: Rc::new(knowledge), checks, problems }
+        Self { knowledge: Rc::new(knowledge), checks, problems: problems.into() }
+    }
+}
+
+impl Rules {
+    /// Tells what is wrong with them beside a result that does not hold it.
+    pub(super) fn tell(&self, terminal: Terminal, to: &mut Streams<'_>) -> Status {
+        to.tell(&report::problems(self.problems.iter(), terminal.err));
+        let wrong = self.problems.iter().any(|problem| problem.severity() >= Severity::Error);
+        if wrong { Status::Broken } else { Status::Clean }
     }
 }
 
@@ -45,7 +55,7 @@ struct Declared {
 }
 
 /// Reads and judges one board under the rules of the command line and of its board files.
-pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str) -> (BoardResult, Option<Rules>) {
+pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str) -> BoardResult {
     let declared = declared(path, input.board.as_deref());
     let own_rules = own_rules(&declared.board, &input.rules);
     let rules = own_rules.as_ref().unwrap_or(rules);
@@ -54,14 +64,12 @@ pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str
         board_file: declared.own_file,
         house_file: declared.house_file,
         knowledge: Rc::clone(&rules.knowledge),
+        rule_problems: Rc::clone(&rules.problems),
         problems: declared.problems,
         examination: None,
     };
-    if own_rules.is_some() {
-        result.problems.extend(rules.problems.iter().cloned());
-    }
     match netlist(path) {
-        Err(problem) => result.problems.push(problem),
+        Err(problem) => result.problems.push(*problem),
         Ok(bytes) => match examine(&result.netlist, &bytes, declared.board, &rules.knowledge, &rules.checks, today) {
             Err(problems) => result.problems.extend(problems),
             Ok(mut examination) => {
@@ -70,7 +78,7 @@ pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str
             }
         },
     }
-    (result, own_rules)
+    result
 }
 
 /// The rules of a board that names folders of its own.
@@ -129,14 +137,15 @@ fn file_problem(error: &FileError) -> Problem {
 }
 
 /// The bytes of a netlist: of a plain file, or of standard input.
-fn netlist(path: &Path) -> Result<Vec<u8>, Problem> {
+fn netlist(path: &Path) -> Result<Vec<u8>, Box<Problem>> {
     if is_standard_input(path) {
         return limited(&mut io::stdin().lock())
-            .map_err(|error| Problem::error(format!("standard input cannot be read: {error}")));
+            .map_err(|error| Box::new(Problem::error(format!("standard input cannot be read: {error}"))));
     }
     let shown = path.display();
     let unreadable = |error: io::Error| {
-        Problem::error(format!("{shown} cannot be read: {error}")).help("name a netlist export that can be read")
+        let problem = Problem::error(format!("{shown} cannot be read: {error}"));
+        Box::new(problem.help("name a netlist export that can be read"))
     };
     // Asked before it is opened, for opening a pipe waits for its writer; and after, for it may be another by then.
     not_special(&fs::metadata(path).map_err(unreadable)?, path)?;
@@ -145,7 +154,7 @@ fn netlist(path: &Path) -> Result<Vec<u8>, Problem> {
     not_special(&found, path)?;
     if found.len() > MAX_BYTES as u64 {
         let message = format!("{shown} has {} bytes, more than the {MAX_BYTES} that are read", found.len());
-        return Err(Problem::error(message).help("check that this is the netlist of one board"));
+        return Err(Box::new(Problem::error(message).help("check that this is the netlist of one board")));
     }
     limited(&mut file).map_err(unreadable)
 }
@@ -157,11 +166,11 @@ fn limited(from: &mut dyn Read) -> io::Result<Vec<u8>> {
     Ok(bytes)
 }
 
-fn not_special(found: &fs::Metadata, path: &Path) -> Result<(), Problem> {
+fn not_special(found: &fs::Metadata, path: &Path) -> Result<(), Box<Problem>> {
     if found.is_file() {
         return Ok(());
     }
     let what = if found.is_dir() { "a folder" } else { "a device, pipe or socket" };
     let problem = Problem::error(format!("{} is {what}, not a plain file", path.display()));
-    Err(problem.help("name the netlist export itself, or `-` for standard input"))
+    Err(Box::new(problem.help("name the netlist export itself, or `-` for standard input")))
 }

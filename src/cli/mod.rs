@@ -1,11 +1,15 @@
 //! Arguments, files, exit status.
 
 mod args;
+mod catalog;
 mod check;
 mod day;
+mod explain;
 mod input;
+mod rails;
 mod settings;
 mod streams;
+mod vet;
 
 use std::ffi::OsString;
 use std::io::Write;
@@ -79,6 +83,10 @@ fn status(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<'
     let terminal = Terminal::of(typed.color);
     match &typed.command {
         Command::Check(check) => check::run(check, terminal, streams),
+        Command::Rails(rails) => rails::run(rails, terminal, streams),
+        Command::Explain(explain) => explain::run(explain, terminal, streams),
+        Command::Catalog(catalog) => catalog::run(catalog, terminal, streams),
+        Command::Vet(vet) => vet::run(vet, terminal, streams),
     }
 }
 

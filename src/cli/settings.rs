@@ -1,6 +1,6 @@
 //! What was typed, with what the surroundings say, as settings.
 
-use std::io::{IsTerminal, stdout};
+use std::io::{IsTerminal, stderr, stdout};
 
 use super::args::{Color, FailOn};
 use crate::checks::Level;
@@ -9,14 +9,17 @@ use crate::report::Look;
 /// The looks of what is written.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Terminal {
+    /// On standard output.
     pub(super) out: Look,
+    /// On standard error.
+    pub(super) err: Look,
     colour: Color,
 }
 
 impl Terminal {
     pub(super) fn of(colour: Color) -> Self {
-        let out = stdout().is_terminal();
-        Self { out: Look::new(width(out), coloured(colour, out)), colour }
+        let look = |is_terminal| Look::new(width(is_terminal), coloured(colour, is_terminal));
+        Self { out: look(stdout().is_terminal()), err: look(stderr().is_terminal()), colour }
     }
 
     /// The look of a file.

@@ -18,7 +18,9 @@ pub struct BoardResult {
     pub house_file: Option<String>,
     /// What it was judged with.
     pub knowledge: Rc<Knowledge>,
-    /// What was lost or odd, in the order of reading.
+    /// What is wrong or odd in its rules.
+    pub rule_problems: Rc<[Problem]>,
+    /// What was lost or odd in its files, in the order of reading.
     pub problems: Vec<Problem>,
     /// What was found; `None` where nothing could be judged.
     pub examination: Option<Examination>,
@@ -28,7 +30,12 @@ impl BoardResult {
     /// Whether the whole board was judged under all that was declared.
     #[must_use]
     pub fn is_complete(&self) -> bool {
-        self.examination.is_some() && self.problems.iter().all(|problem| problem.severity() < Severity::Error)
+        self.examination.is_some() && self.all_problems().all(|problem| problem.severity() < Severity::Error)
+    }
+
+    /// What is wrong in its rules, then in its files.
+    pub fn all_problems(&self) -> impl Iterator<Item = &Problem> {
+        self.rule_problems.iter().chain(&self.problems)
     }
 
     /// Every finding, accepted ones too.

@@ -4,7 +4,7 @@ use std::collections::BTreeSet;
 
 use super::inert::{inert, inert_short};
 use super::layout::table;
-use crate::quantity::{Evidence, Grade, Quantity, print_range};
+use crate::quantity::{Evidence, Grade, Quantity, print_amount, print_range};
 
 /// Most guesses told of one figure.
 const MOST_GUESSES: usize = 2;
@@ -45,6 +45,38 @@ pub(super) fn evidence(figure: &Quantity, told: &mut BTreeSet<String>) -> String
     phrases.join("; ")
 }
 
+/// What a figure hangs on most, in a few words: what is missing, else the guess that moves it most, else where its
+/// facts come from.
+pub(super) fn gist(figure: &Quantity) -> String {
+    let missing = figure.missing_evidence().next();
+    let guess = figure.guesses().max_by(|one, other| one.moves.total_cmp(&other.moves));
+    let counted = |text: String, more: usize| if more > 0 { format!("{text} and {more} more") } else { text };
+    if let Some(missing) = missing {
+        return counted(
+            format!("not known: {}", inert_short(&missing.what, SOURCE)),
+            figure.missing_evidence().count() - 1,
+        );
+    }
+    if let Some(guess) = guess {
+        let what = inert_short(&guess.evidence.what, SOURCE);
+        return counted(format!("guess: {what}"), figure.guesses().count() - 1);
+    }
+    for grade in [Grade::Declared, Grade::Published, Grade::Described, Grade::Drawn] {
+        let all =
+            distinct(figure.evidence().filter(|evidence| evidence.grade == grade).map(|evidence| match grade {
+                Grade::Drawn => about(&evidence.what),
+                _ => title(&evidence.source),
+            }));
+        if let Some((first, rest)) = all.split_first() {
+            return match grade {
+                Grade::Published => counted(first.clone(), rest.len()),
+                grade => counted(format!("{grade}, {first}"), rest.len()),
+            };
+        }
+    }
+    String::new()
+}
+
 fn guesses(figure: &Quantity, told: &mut BTreeSet<String>) -> Vec<String> {
     let mut guesses: Vec<_> = figure.guesses().collect();
     guesses.sort_by(|one, other| other.moves.total_cmp(&one.moves));
@@ -73,7 +105,7 @@ fn guessed(evidence: &Evidence, told: &mut BTreeSet<String>) -> String {
 }
 
 /// A data sheet's title without its date and sections; another source as it is. `explain` and JSON have the whole.
-fn title(source: &str) -> String {
+pub(super) fn title(source: &str) -> String {
     let sheet = source.find("data sheet").and_then(|at| {
         let end = source.get(at..)?.find([',', '(', ';'])?;
         source.get(..at + end)
@@ -115,4 +147,20 @@ fn listed(what: &str, names: &[String]) -> Option<String> {
     let more = names.len() - shown.len();
     let rest = if more > 0 { format!(" and {more} more") } else { String::new() };
     (!shown.is_empty()).then(|| format!("{what}{}{rest}", shown.join(", ")))
+}
+
+/// Everything behind a figure, one piece each: grade, what it is, its source in short, and how far a guess moves it.
+pub(super) fn every_evidence(figure: &Quantity) -> Vec<String> {
+    let told =
+        |evidence: &Evidence| format!("{}: {}, {}", evidence.grade, inert(&evidence.what), title(&evidence.source));
+    let mut pieces: Vec<String> =
+        figure.missing_evidence().map(|evidence| format!("not known: {}", inert(&evidence.what))).collect();
+    for evidence in figure.evidence() {
+        let moves = figure.guesses().find(|guess| guess.evidence.key == evidence.key).map(|guess| guess.moves);
+        let moves = moves.filter(|moves| *moves > 0.0 && moves.is_finite());
+        let tail = moves
+            .map_or_else(String::new, |moves| format!("; moves it by {}", print_amount(moves, figure.dimension())));
+        pieces.push(told(evidence) + &tail);
+    }
+    pieces
 }

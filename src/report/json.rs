@@ -133,7 +133,7 @@ struct QuantityEntry<'a> {
     nominal: Option<f64>,
     high: Option<f64>,
     unit: String,
-    evidence: Vec<EvidenceEntry<'a>>,
+    evidence: Vec<EvidenceEntry>,
 }
 
 /// A declaration for the board file.
@@ -181,7 +181,7 @@ fn one(board: &BoardResult) -> Board<'_> {
         house_file: board.house_file.as_deref(),
         format: None,
         complete: board.is_complete(),
-        problems: problems(&board.problems),
+        problems: problems(board.all_problems()),
         size: Size::default(),
         regulators: Vec::new(),
         not_judged: Vec::new(),
@@ -210,19 +210,18 @@ fn one(board: &BoardResult) -> Board<'_> {
 }
 
 /// Problems with their places.
-pub(super) fn problems(list: &[Problem]) -> Vec<ProblemEntry<'_>> {
-    list.iter()
-        .map(|problem| ProblemEntry {
-            severity: match problem.severity() {
-                crate::source::Severity::Error => "error",
-                crate::source::Severity::Warning => "warning",
-                crate::source::Severity::Note => "note",
-            },
-            message: problem.message(),
-            help: problem.advice(),
-            position: problem.place().map(|(source, span)| position(source, span)),
-        })
-        .collect()
+pub(super) fn problems<'a>(list: impl Iterator<Item = &'a Problem>) -> Vec<ProblemEntry<'a>> {
+    list.map(|problem| ProblemEntry {
+        severity: match problem.severity() {
+            crate::source::Severity::Error => "error",
+            crate::source::Severity::Warning => "warning",
+            crate::source::Severity::Note => "note",
+        },
+        message: problem.message(),
+        help: problem.advice(),
+        position: problem.place().map(|(source, span)| position(source, span)),
+    })
+    .collect()
 }
 
 fn position(source: &Source, span: Span) -> Position<'_> {

@@ -37,27 +37,29 @@ impl Bounds {
 
 /// One fact or guess behind a figure.
 #[derive(Debug, Serialize)]
-pub(super) struct EvidenceEntry<'a> {
+pub(super) struct EvidenceEntry {
     grade: &'static str,
-    source: &'a str,
-    what: &'a str,
+    source: String,
+    what: String,
 }
 
-impl<'a> EvidenceEntry<'a> {
-    pub(super) fn of(evidence: &'a Evidence) -> Self {
-        Self { grade: evidence.grade.name(), source: &evidence.source, what: &evidence.what }
+impl EvidenceEntry {
+    pub(super) fn of(evidence: &Evidence) -> Self {
+        Self { grade: evidence.grade.name(), source: evidence.source.clone(), what: evidence.what.clone() }
     }
 }
 
 /// Everything behind a figure, in a stable order.
-pub(super) fn evidence(figure: &Quantity) -> Vec<EvidenceEntry<'_>> {
+pub(super) fn evidence(figure: &Quantity) -> Vec<EvidenceEntry> {
     figure.evidence().map(EvidenceEntry::of).collect()
 }
 
-/// A number that JSON can hold. Bounds that stand for none at all are none here.
+/// A number that JSON can hold, to twelve digits: what is beyond is noise of the computation. A bound that stands for
+/// none at all is none here.
 pub(super) fn finite(value: f64) -> Option<f64> {
     // A bound that was clipped to the largest number stands for none.
-    (value.abs() < 1e300).then_some(value)
+    let bounded = Some(value).filter(|value| value.abs() < 1e300)?;
+    format!("{bounded:.11e}").parse().ok()
 }
 
 /// The unit's symbol; empty for a plain number.

@@ -110,8 +110,8 @@ pub fn problem(problem: &Problem, look: Look) -> String {
 
 /// Problems as text, in the order given, with a blank line behind each.
 #[must_use]
-pub fn problems(list: &[Problem], look: Look) -> String {
-    list.iter().map(|each| problem(each, look) + "\n").collect()
+pub fn problems<'a>(list: impl IntoIterator<Item = &'a Problem>, look: Look) -> String {
+    list.into_iter().map(|each| problem(each, look) + "\n").collect()
 }
 
 #[cfg(test)]

@@ -1,6 +1,7 @@
 //! The report of `check` as text.
 
 use std::collections::BTreeMap;
+use std::rc::Rc;
 
 use super::board::BoardResult;
 use super::inert::inert;
@@ -27,11 +28,17 @@ pub struct TextOptions {
 #[must_use]
 pub fn check(boards: &[BoardResult], options: TextOptions) -> String {
     let mut text = String::new();
+    let mut last: Option<&BoardResult> = None;
     for board in boards {
         if !text.is_empty() {
             text.push('\n');
         }
+        // What is wrong with rules that all boards share is told once.
+        if last.is_none_or(|last| !Rc::ptr_eq(&last.rule_problems, &board.rule_problems)) {
+            text.push_str(&problems(board.rule_problems.iter(), options.look));
+        }
         text.push_str(&one(board, options));
+        last = Some(board);
     }
     super::guarded(&text)
 }
@@ -46,11 +53,13 @@ fn one(board: &BoardResult, options: TextOptions) -> String {
     text.push_str(&problems(&board.problems, look));
     let Some(examination) = &board.examination else {
         if !options.quiet {
-            text.push_str(&look.level(Level::Error, "not judged"));
-            text.push_str(": nothing of it could be read\n");
+            text.push_str(&unread(look));
         }
         return text;
     };
+    if !board.is_complete() {
+        text.push_str(&incomplete(look));
+    }
     let (accepted, open): (Vec<_>, Vec<_>) = examination.findings.iter().partition(|found| found.accepted.is_some());
     for found in open.iter().filter(|found| found.finding.level < Level::Note) {
         text.push_str(&finding::whole(examination, found, look));
@@ -60,22 +69,38 @@ fn one(board: &BoardResult, options: TextOptions) -> String {
     text.push_str(&notes_of(&notes, look));
     text.push_str(&accepted_of(&accepted, look));
     if !options.quiet {
-        text.push_str(&summary(board, examination, look));
+        text.push_str(&summary(examination, look));
     }
     text
 }
 
-fn heading(board: &BoardResult, look: Look) -> String {
+/// `gauge.net · Gauge station supply · board file gauge.railworthy.toml`
+pub(super) fn heading(board: &BoardResult, look: Look) -> String {
     let mut text = look.bold(&inert(&board.netlist));
     let title = board.examination.as_ref().and_then(|examination| examination.board.title.as_ref());
     if let Some(title) = title {
-        text.push_str(&format!(": {}", inert(&title.value)));
+        text.push_str(&format!(" · {}", inert(&title.value)));
     }
     let files: Vec<_> = board.house_file.iter().chain(&board.board_file).map(|file| inert(file)).collect();
-    let files = if files.is_empty() { "no board file".to_owned() } else { format!("with {}", files.join(", ")) };
-    text.push_str(&look.faint(&format!(", {files}")));
+    let files = match files.len() {
+        0 => "no board file".to_owned(),
+        1 => format!("board file {}", files.concat()),
+        _ => format!("board files {}", files.join(", ")),
+    };
+    text.push_str(&look.faint(&format!(" · {files}")));
     text.push('\n');
     text
+}
+
+/// What is said of a board of which nothing could be read.
+pub(super) fn unread(look: Look) -> String {
+    format!("{}: nothing of the netlist could be read\n", look.level(Level::Error, "not judged"))
+}
+
+/// What is said of a board of which something is lost, ahead of what is found on the rest.
+fn incomplete(look: Look) -> String {
+    let line = ": the errors above left something out; where it is missing, what follows may be wrong";
+    format!("{}{line}\n\n", look.level(Level::Error, "incomplete"))
 }
 
 /// Notes in one or two lines each: what is tight, then what is unknown.
@@ -85,7 +110,8 @@ fn notes_of(notes: &[&Reviewed], look: Look) -> String {
         let these: Vec<_> = notes.iter().filter(|found| found.finding.verdict == verdict).collect();
         for found in these {
             let label = look.level(Level::Note, "note");
-            let settle: Vec<String> = found.finding.settle.iter().map(settle::phrase).collect();
+            let settle: Vec<String> =
+                found.finding.settle.iter().take(MOST_DECLARATIONS).map(settle::phrase).collect();
             let mut line = format!("{} ({})", inert(&found.finding.message), inert(&found.finding.check));
             if !settle.is_empty() {
                 line.push_str(&format!("; to settle: declare {}", settle.join(", ")));
@@ -119,17 +145,15 @@ fn accepted_of(accepted: &[&Reviewed], look: Look) -> String {
     text
 }
 
-fn summary(board: &BoardResult, examination: &Examination, look: Look) -> String {
+fn summary(examination: &Examination, look: Look) -> String {
     let mut text = String::new();
-    if !board.is_complete() {
-        text.push_str(&look.level(Level::Error, "incomplete"));
-        text.push_str(": what is told above was not judged, or not under all that was declared\n");
-    }
     text.push_str(&wrapped(&counts(examination), "", "  ", look.width()));
     if !examination.declare_first.is_empty() {
         let line = format!("Declare first: {}", declarations(&examination.declare_first));
         text.push_str(&wrapped(&line, "", "  ", look.width()));
     }
+    text.push_str(&look.faint(wrapped(&super::caution::caution(examination), "", "  ", look.width()).trim_end()));
+    text.push('\n');
     text
 }
 
@@ -171,7 +195,7 @@ fn plural(count: usize) -> &'static str {
 }
 
 /// `U9 (switching converter), U4, U5 (ignored by the board file)`.
-fn not_judged(examination: &Examination) -> String {
+pub(super) fn not_judged(examination: &Examination) -> String {
     let mut by_reason: BTreeMap<&str, Vec<&str>> = BTreeMap::new();
     for part in &examination.design.not_judged {
         let reference = examination.design.circuit.device(part.device).reference.as_str();

@@ -1,0 +1,46 @@
+//! `railworthy explain`
+
+use super::args::Explain;
+use super::input::{self, Rules};
+use super::settings::Terminal;
+use super::{Status, Streams, day};
+use crate::report;
+use crate::source::toml::nearest;
+
+pub(super) fn run(typed: &Explain, terminal: Terminal, to: &mut Streams<'_>) -> Status {
+    let rules = Rules::load(&typed.input.rules);
+    match &typed.part {
+        Some(part) => explain_part(typed, part, &rules, terminal, to),
+        None => explain_check(&typed.what.to_string_lossy(), &rules, terminal, to),
+    }
+}
+
+fn explain_check(name: &str, rules: &Rules, terminal: Terminal, to: &mut Streams<'_>) -> Status {
+    let status = rules.tell(terminal, to);
+    match rules.checks.get(name) {
+        Some(check) => to.result(&report::explain_check(check, terminal.out)).max(status),
+        None => {
+            let help = match nearest(name, rules.checks.iter().map(|check| check.name.as_str())) {
+                Some(near) => format!("did you mean `{near}`?"),
+                None => "`railworthy catalog checks` lists them; name a part behind a netlist".to_owned(),
+            };
+            to.broken(&format!("there is no check `{name}`; {help}"))
+        }
+    }
+}
+
+fn explain_part(typed: &Explain, part: &str, rules: &Rules, terminal: Terminal, to: &mut Streams<'_>) -> Status {
+    let board = input::board(&typed.what, &typed.input, rules, &day::today());
+    let status = if board.is_complete() { Status::Clean } else { Status::Broken };
+    if let Some(text) = report::explain_part(&board, part, terminal.out) {
+        return to.result(&text).max(status);
+    }
+    to.tell(&report::problems(board.all_problems(), terminal.err));
+    let names = report::regulator_names(&board);
+    let help = match nearest(part, names.iter().map(String::as_str)) {
+        Some(near) => format!("did you mean `{near}`?"),
+        None if names.is_empty() => "none was found on the board".to_owned(),
+        None => format!("there are {}", names.join(", ")),
+    };
+    to.broken(&format!("no regulator or reference is called `{part}`; {help}"))
+}

@@ -1,0 +1,220 @@
+//! The supply tree and the figures of each regulator, unjudged, as text.
+
+use std::collections::{BTreeMap, BTreeSet};
+
+use super::board::BoardResult;
+use super::figures::{every_evidence, gist, range};
+use super::inert::inert;
+use super::layout::{table, wrapped};
+use super::look::Look;
+use super::problem::problems;
+use super::text::{heading, unread};
+use crate::circuit::NetId;
+use crate::facts::{DEFINITIONS, Definition, Facts, RailOrigin, Subject, SubjectKind, Value};
+use crate::quantity::Evidence;
+use crate::recognize::{Mode, Regulator};
+use crate::review::Examination;
+
+/// The supply tree of a board, then each regulator with every figure known.
+#[must_use]
+pub fn rails(board: &BoardResult, look: Look) -> String {
+    let mut text = heading(board, look);
+    text.push('\n');
+    text.push_str(&problems(board.all_problems(), look));
+    let Some(examination) = &board.examination else { return super::guarded(&(text + &unread(look))) };
+    let facts = Facts::new(&examination.design, &examination.board, &board.knowledge);
+    text.push_str(&tree(&facts, look));
+    for (id, regulator) in facts.regulators() {
+        text.push('\n');
+        text.push_str(&block(&facts, Subject::Regulator(id), regulator, look, false));
+    }
+    let not_judged = super::text::not_judged(examination);
+    if !not_judged.is_empty() {
+        text.push_str(&wrapped(&format!("Not judged: {not_judged}"), "\n", "  ", look.width()));
+    }
+    text.push_str(&look.faint("\n`railworthy explain BOARD.net PART` shows all that a part's figures rest on.\n"));
+    super::guarded(&text)
+}
+
+/// Every figure about a part with all that it rests on; `None` where the board has no such regulator.
+#[must_use]
+pub fn explain_part(board: &BoardResult, reference: &str, look: Look) -> Option<String> {
+    let examination = board.examination.as_ref()?;
+    let facts = Facts::new(&examination.design, &examination.board, &board.knowledge);
+    let mut text = heading(board, look);
+    text.push('\n');
+    text.push_str(&problems(board.all_problems(), look));
+    let mut found = false;
+    for (id, regulator) in facts.regulators().filter(|(_, one)| facts.part_of(one).reference == reference) {
+        found = true;
+        text.push_str(&block(&facts, Subject::Regulator(id), regulator, look, true));
+        text.push('\n');
+    }
+    text.push_str(&told(examination, reference, look));
+    found.then(|| super::guarded(&text))
+}
+
+/// The regulators of a board by reference, for a part that is none.
+#[must_use]
+pub fn regulator_names(board: &BoardResult) -> Vec<String> {
+    let Some(examination) = &board.examination else { return Vec::new() };
+    let circuit = &examination.design.circuit;
+    let names = examination.design.regulators.iter().map(|one| circuit.device(one.device).reference.clone());
+    names.collect::<BTreeSet<_>>().into_iter().collect()
+}
+
+/// What every requirement asked of a part came to.
+fn told(examination: &Examination, reference: &str, look: Look) -> String {
+    let own = |subject: &str| subject == reference || subject.starts_with(&format!("{reference} output "));
+    let rows: Vec<Vec<String>> = examination
+        .told
+        .iter()
+        .filter(|told| own(&told.subject))
+        .map(|told| {
+            let finding = examination.findings.iter().find(|found| {
+                found.finding.check == told.check && found.parts.first().is_some_and(|part| part == reference)
+            });
+            let message = finding.map(|found| inert(&found.finding.message).into_owned()).unwrap_or_default();
+            vec![told.check.clone(), told.verdict.name().to_owned(), message]
+        })
+        .collect();
+    let title = if rows.is_empty() { "No check asks anything of it.\n" } else { "Requirements\n" };
+    format!("{}{}", look.bold(title), table(&rows, "  ", look.width()))
+}
+
+/// The supply nets, each under the one that feeds it.
+fn tree(facts: &Facts<'_>, look: Look) -> String {
+    let nets = facts.supply_nets();
+    let mut children: BTreeMap<Option<NetId>, Vec<NetId>> = BTreeMap::new();
+    for net in &nets {
+        let parent = feeder(facts, *net).filter(|parent| nets.contains(parent) && parent != net);
+        children.entry(parent).or_default().push(*net);
+    }
+    let mut rows = Vec::new();
+    let mut seen = BTreeSet::new();
+    // Nets that feed each other in a ring hang on no root: they begin a tree of their own.
+    let roots = children.get(&None).cloned().unwrap_or_default();
+    for root in roots.iter().chain(&nets) {
+        let mut stack = vec![(*root, 0)];
+        while let Some((net, depth)) = stack.pop() {
+            if !seen.insert(net) {
+                continue;
+            }
+            rows.push(row(facts, net, depth));
+            let below = children.get(&Some(net)).into_iter().flatten().rev();
+            stack.extend(below.map(|child| (*child, depth + 1)));
+        }
+    }
+    if rows.is_empty() {
+        return "No supply net is known.\n".to_owned();
+    }
+    format!("{}{}", look.bold("Supply nets\n"), table(&rows, "  ", look.width()))
+}
+
+/// The net that feeds another.
+fn feeder(facts: &Facts<'_>, net: NetId) -> Option<NetId> {
+    match facts.rail(net).origin {
+        RailOrigin::Regulator(id) => {
+            facts.regulator(Subject::Regulator(id)).and_then(|regulator| regulator.input_net)
+        }
+        RailOrigin::Through { from, .. } => Some(from),
+        _ => None,
+    }
+}
+
+fn row(facts: &Facts<'_>, net: NetId, depth: usize) -> Vec<String> {
+    let circuit = facts.circuit();
+    let rail = facts.rail(net);
+    let part = |device| {
+        let device = circuit.device(device);
+        format!("{} {}", inert(&device.reference), inert(&device.value)).trim_end().to_owned()
+    };
+    let from = match rail.origin {
+        RailOrigin::Regulator(id) => {
+            facts.regulator(Subject::Regulator(id)).map_or_else(String::new, |one| format!("by {}", part(one.device)))
+        }
+        RailOrigin::Through { device, .. } => format!("through {}", part(device)),
+        _ => gist(&rail.voltage),
+    };
+    let load = facts.draw(net);
+    let load = if load.evidence().next().is_some() { format!("load {}", range(&load)) } else { String::new() };
+    let name = format!("{:blanks$}{}", "", inert(&circuit.net(net).name), blanks = depth * 2);
+    vec![name, range(&rail.voltage), from, load]
+}
+
+/// A regulator and its figures; with everything behind them where `whole`.
+fn block(facts: &Facts<'_>, subject: Subject, regulator: &Regulator, look: Look, whole: bool) -> String {
+    let mut text = wrapped(&title(facts, regulator), "", "  ", look.width());
+    let mut rows = Vec::new();
+    let mut unknown = Vec::new();
+    let (mut holding, mut sources) = (Vec::new(), BTreeSet::new());
+    for definition in definitions() {
+        match facts.value(subject, definition.name) {
+            Value::Figure(figure) if figure.is_missing() && !whole => unknown.push(shown_name(definition.name)),
+            Value::Figure(figure) if whole => {
+                let mut parts = every_evidence(&figure).into_iter();
+                rows.push(vec![shown_name(definition.name), range(&figure), parts.next().unwrap_or_default()]);
+                rows.extend(parts.map(|part| vec![String::new(), String::new(), part]));
+                sources.extend(figure.evidence().filter(|evidence| is_sheet(evidence)).map(|e| e.source.clone()));
+            }
+            Value::Figure(figure) => {
+                rows.push(vec![shown_name(definition.name), range(&figure), gist(&figure)]);
+            }
+            Value::Flag(flag) if whole => {
+                let answer = if flag.holds { "yes" } else { "no" };
+                let source = flag.evidence.map(|evidence| inert(&evidence.source).into_owned()).unwrap_or_default();
+                rows.push(vec![shown_name(definition.name), answer.to_owned(), source]);
+            }
+            Value::Flag(flag) => holding.extend(flag.holds.then(|| shown_name(definition.name))),
+            Value::Inapplicable(reason) if whole => {
+                rows.push(vec![shown_name(definition.name), "none".to_owned(), inert(&reason).into_owned()]);
+            }
+            Value::Word(_) | Value::Group(_) | Value::Inapplicable(_) => {}
+        }
+    }
+    text.push_str(&table(&rows, "  ", look.width()));
+    if !holding.is_empty() {
+        text.push_str(&wrapped(&holding.join(", "), "  also: ", "        ", look.width()));
+    }
+    if !unknown.is_empty() {
+        text.push_str(&wrapped(&format!("not known: {}", unknown.join(", ")), "  ", "    ", look.width()));
+    }
+    for source in &sources {
+        text.push_str(&wrapped(&inert(source), "  source: ", "          ", look.width()));
+    }
+    text
+}
+
+/// Whether a source is cited short in the lines above.
+fn is_sheet(evidence: &Evidence) -> bool {
+    super::figures::title(&evidence.source) != evidence.source
+}
+
+/// `U2 AMS1117-3.3 · series, fixed · 1117 / AMS1117 · +5V → +3V3 · sheet /Power/`
+fn title(facts: &Facts<'_>, regulator: &Regulator) -> String {
+    let circuit = facts.circuit();
+    let device = facts.part_of(regulator);
+    let net =
+        |net: Option<NetId>| net.map_or_else(|| "open".to_owned(), |net| inert(&circuit.net(net).name).into_owned());
+    let mut words = vec![format!("{} {}", inert(&device.reference), inert(&device.value))];
+    let mode = if regulator.mode == Mode::Fixed { "fixed" } else { "adjustable" };
+    let negative = if regulator.polarity == crate::knowledge::Sign::Negative { ", negative" } else { "" };
+    words.push(format!("{}, {mode}{negative}", regulator.kind.name()));
+    words.push(facts.families(regulator).next().map_or_else(
+        || "no part family matches".to_owned(),
+        |family| format!("taken for {} ({})", inert(&family.name), inert(&regulator.identity.told_by)),
+    ));
+    words.push(format!("{} → {}", net(regulator.input_net), net(regulator.output_net)));
+    if !device.sheet.is_empty() && device.sheet != "/" {
+        words.push(format!("sheet {}", inert(&device.sheet)));
+    }
+    words.join(" · ")
+}
+
+fn definitions() -> impl Iterator<Item = &'static Definition> {
+    DEFINITIONS.iter().flat_map(|file| file.iter()).filter(|entry| entry.of == SubjectKind::Regulator)
+}
+
+fn shown_name(name: &str) -> String {
+    name.replace('_', " ")
+}

@@ -1,10 +1,11 @@
 //! Capacitance at input and output, as drawn and as left.
 
+use super::context::KnownBank;
 use super::identity::of;
 use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
 use crate::circuit::{DeviceId, NetId};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Table};
-use crate::recognize::{Branch, Regulator, Side};
+use crate::recognize::{Regulator, Side};
 
 pub(super) const DEFINITIONS: &[Definition] = &[
     farads(
@@ -25,20 +26,18 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         "has_input_capacitor",
         ValueKind::Flag,
         "a capacitor lies at the input, behind no series diode",
-        |facts, subject| {
-            of(facts, subject, |regulator| facts.has_branch(regulator, Side::Input, |branch| !branch.behind_diode))
-        },
+        |facts, subject| of(facts, subject, |regulator| facts.of_bank(regulator, Side::Input, |bank| bank.near)),
     ),
     entry(
         "input_capacitor_behind_diode",
         ValueKind::Flag,
         "a capacitor lies ahead of a series diode of the input",
         |facts, subject| {
-            of(facts, subject, |regulator| facts.has_branch(regulator, Side::Input, |branch| branch.behind_diode))
+            of(facts, subject, |regulator| facts.of_bank(regulator, Side::Input, |bank| bank.behind_diode))
         },
     ),
     entry("has_output_capacitor", ValueKind::Flag, "a capacitor lies between output and ground", |facts, subject| {
-        of(facts, subject, |regulator| facts.has_branch(regulator, Side::Output, |_| true))
+        of(facts, subject, |regulator| facts.of_bank(regulator, Side::Output, |bank| bank.near || bank.behind_diode))
     }),
     entry(
         "output_capacitors",
@@ -167,10 +166,10 @@ impl Facts<'_> {
         amount.times(&Quantity::given(Dimension::ONE, Range::exactly(share), Pair::new(0.0, 1.0), evidence))
     }
 
-    fn has_branch(&self, regulator: &Regulator, side: Side, wanted: impl Fn(&Branch) -> bool) -> Value {
+    fn of_bank(&self, regulator: &Regulator, side: Side, flag: impl Fn(&KnownBank) -> bool) -> Value {
         match self.bank_of(regulator, side) {
             None => Value::inapplicable("not connected"),
-            Some(bank) => Value::flag(bank.branches.iter().any(wanted)),
+            Some(bank) => Value::flag(flag(&bank)),
         }
     }
 

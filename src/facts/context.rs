@@ -2,6 +2,7 @@
 
 use std::cell::{OnceCell, RefCell};
 use std::collections::HashMap;
+use std::ops::Deref;
 use std::rc::Rc;
 
 use super::rails::{self, Rails};
@@ -29,9 +30,35 @@ pub struct Facts<'a> {
     rails: OnceCell<Rails>,
     // Never gone through in order: only looked up.
     values: RefCell<HashMap<(Subject, &'static str), Value>>,
-    banks: RefCell<HashMap<(NetId, Option<NetId>, Side), Rc<Bank>>>,
+    banks: RefCell<HashMap<(NetId, Option<NetId>, Side), Rc<KnownBank>>>,
     totals: RefCell<HashMap<TotalKey, Quantity>>,
     index: OnceCell<Index>,
+}
+
+/// A bank with what is asked of it again and again: many regulators share an input.
+#[derive(Debug)]
+pub(super) struct KnownBank {
+    pub(super) bank: Bank,
+    /// Whether a capacitor lies behind no series diode.
+    pub(super) near: bool,
+    /// Whether a capacitor lies behind one.
+    pub(super) behind_diode: bool,
+}
+
+impl KnownBank {
+    fn new(bank: Bank) -> Self {
+        let near = bank.branches.iter().any(|branch| !branch.behind_diode);
+        let behind_diode = bank.branches.iter().any(|branch| branch.behind_diode);
+        Self { bank, near, behind_diode }
+    }
+}
+
+impl Deref for KnownBank {
+    type Target = Bank;
+
+    fn deref(&self) -> &Bank {
+        &self.bank
+    }
 }
 
 /// Regulators by where they lie; looked up, never gone through in order.
@@ -183,7 +210,7 @@ impl<'a> Facts<'a> {
     }
 
     /// The capacitors at a regulator's input or output, to ground or to the net of its ground pin.
-    pub(super) fn bank_of(&self, regulator: &Regulator, side: Side) -> Option<Rc<Bank>> {
+    pub(super) fn bank_of(&self, regulator: &Regulator, side: Side) -> Option<Rc<KnownBank>> {
         let net = match side {
             Side::Input => regulator.input_net,
             Side::Output => regulator.output_net,
@@ -192,12 +219,12 @@ impl<'a> Facts<'a> {
     }
 
     /// The capacitors between a net and ground, or `returns`.
-    pub(super) fn bank_at(&self, net: NetId, returns: Option<NetId>, side: Side) -> Rc<Bank> {
+    pub(super) fn bank_at(&self, net: NetId, returns: Option<NetId>, side: Side) -> Rc<KnownBank> {
         let returns = returns.filter(|returns| !self.circuit().net(*returns).ground);
         if let Some(known) = self.banks.borrow().get(&(net, returns, side)) {
             return Rc::clone(known);
         }
-        let found = Rc::new(bank_to(self.circuit(), net, returns.as_slice(), side));
+        let found = Rc::new(KnownBank::new(bank_to(self.circuit(), net, returns.as_slice(), side)));
         self.banks.borrow_mut().insert((net, returns, side), Rc::clone(&found));
         found
     }

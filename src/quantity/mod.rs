@@ -2,6 +2,7 @@
 //!
 //! SI units inside: volts, amperes, ohms, farads, seconds, kelvins as differences and degrees Celsius as levels.
 
+mod arithmetic;
 mod dimension;
 mod evidence;
 mod figure;

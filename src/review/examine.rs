@@ -78,7 +78,18 @@ pub fn examine(
     checks: &Checks,
     today: &str,
 ) -> Result<Examination, Vec<Problem>> {
-    let mut netlist = netlist::read(name, bytes)?;
+    Ok(examine_netlist(netlist::read(name, bytes)?, board, knowledge, checks, today))
+}
+
+/// Judges a netlist that was read; see [`examine`].
+#[must_use]
+pub fn examine_netlist(
+    mut netlist: Netlist,
+    board: Board,
+    knowledge: &Knowledge,
+    checks: &Checks,
+    today: &str,
+) -> Examination {
     let mut problems = std::mem::take(&mut netlist.problems);
     let (mut circuit, found) = Circuit::build(&netlist);
     problems.extend(found);
@@ -89,7 +100,7 @@ pub fn examine(
     let (findings, counts, told) = judged(&design, &board, knowledge, &checks, &netlist, today);
     let accepted = findings.iter().filter(|finding| finding.accepted.is_some()).count();
     let declare_first = declare_first(&findings);
-    Ok(Examination { netlist, board, design, findings, counts, accepted, told, problems, declare_first })
+    Examination { netlist, board, design, findings, counts, accepted, told, problems, declare_first }
 }
 
 /// Adds what symbol fields declare and looks up the names that the board file uses.

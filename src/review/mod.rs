@@ -7,5 +7,5 @@ mod fingerprint;
 mod settle;
 
 pub use accept::Accepted;
-pub use examine::{Examination, Reviewed, examine};
+pub use examine::{Examination, Reviewed, examine, examine_netlist};
 pub use settle::{Decisive, declare_first};

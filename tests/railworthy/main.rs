@@ -20,3 +20,4 @@ mod report;
 mod result_json;
 mod shared;
 mod small_board;
+mod spoiled;

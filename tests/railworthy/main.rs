@@ -7,6 +7,7 @@ mod check_values;
 mod circuit_corpus;
 mod cli;
 mod devices_symbols;
+mod documents;
 mod failures;
 mod house_rules;
 mod judge;

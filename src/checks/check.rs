@@ -106,6 +106,8 @@ pub struct Points {
     pub primary: String,
     /// What is marked besides.
     pub also: Vec<String>,
+    /// Figures of the subject that are listed before those that decide.
+    pub figures: Vec<String>,
 }
 
 /// What a check rests on.

@@ -10,6 +10,7 @@ use super::set::Checks;
 use super::verdict::{Level, Verdict};
 use super::wording::{Filling, missing};
 use crate::facts::{Subject, Value};
+use crate::quantity::Quantity;
 
 /// Asks every check of every subject that it is about.
 #[must_use]
@@ -125,7 +126,12 @@ fn say(check: &Check, index: usize, rule: &Rule, judged: Judged, context: Contex
             lines.push(hint.text);
         }
     }
-    let mut quantities = decision.figures.clone();
+    let mut quantities = listed(check, context);
+    for (name, figure) in &decision.figures {
+        if quantities.iter().all(|(known, _)| known != name) {
+            quantities.push((name.clone(), figure.clone()));
+        }
+    }
     for path in template.into_iter().flat_map(super::template::Template::figures) {
         let name = path.written();
         if let Value::Figure(figure) = value(context, path)
@@ -153,6 +159,15 @@ fn say(check: &Check, index: usize, rule: &Rule, judged: Judged, context: Contex
         merged: Vec::new(),
         suppresses: Vec::new(),
     })
+}
+
+/// The figures that the check lists whatever decides; those that do not apply or are missing are left out.
+fn listed(check: &Check, context: Context<'_>) -> Vec<(String, Quantity)> {
+    let figure = |name: &String| match context.figures.value(context.subject, name) {
+        Value::Figure(figure) if !figure.is_missing() => Some((name.clone(), figure)),
+        _ => None,
+    };
+    check.points.figures.iter().filter_map(figure).collect()
 }
 
 /// What a name of `[points]` stands for.

@@ -272,7 +272,7 @@ impl<'a> Reader<'a> {
     }
 
     fn points(&self, root: &mut Table<'a>, requires: &[Rule]) -> Points {
-        let mut points = Points { primary: "subject".to_owned(), also: Vec::new() };
+        let mut points = Points { primary: "subject".to_owned(), also: Vec::new(), figures: Vec::new() };
         let Some(mut table) = root.table("points") else { return points };
         if let Some(text) = table.text("primary").filter(|text| self.can_point(text, requires)) {
             text.as_str().clone_into(&mut points.primary);
@@ -281,8 +281,26 @@ impl<'a> Reader<'a> {
         points
             .also
             .extend(also.iter().filter(|text| self.can_point(text, requires)).map(|text| text.as_str().to_owned()));
+        let figures = table.texts("figures");
+        points
+            .figures
+            .extend(figures.iter().filter(|text| self.is_figure(text)).map(|text| text.as_str().to_owned()));
         table.finish();
         points
+    }
+
+    fn is_figure(&self, text: &Text<'_>) -> bool {
+        let figure = |name: &str| matches!(self.names.kind(self.about, name), Some(ValueKind::Figure(_)));
+        if figure(text.as_str()) {
+            return true;
+        }
+        let known: Vec<&str> = self.names.known(self.about).into_iter().filter(|name| figure(name)).collect();
+        let help = match nearest(text.as_str(), known) {
+            Some(near) => format!("did you mean `{near}`?"),
+            None => "`railworthy catalog quantities` lists every name".to_owned(),
+        };
+        text.refuse(format!("`{}` is no figure", text.as_str()), "unknown", help);
+        false
     }
 
     fn can_point(&self, text: &Text<'_>, requires: &[Rule]) -> bool {

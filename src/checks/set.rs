@@ -5,6 +5,7 @@ use std::collections::BTreeMap;
 use super::check::Check;
 use super::language::{Names, constant};
 use super::load;
+use super::verdict::Verdict;
 use crate::quantity::Quantity;
 use crate::source::toml::nearest;
 use crate::source::{Problem, Source, Span};
@@ -110,6 +111,16 @@ impl Checks {
             }
         }
         (checks, problems)
+    }
+
+    /// The same checks, none of which comes to anything worse than `most`.
+    #[must_use]
+    pub fn at_most(&self, most: Verdict) -> Self {
+        let mut checks = self.clone();
+        for check in checks.by_name.values_mut() {
+            check.at_most = Some(check.at_most.map_or(most, |own| own.max(most)));
+        }
+        checks
     }
 
     fn set(&mut self, change: &Override) -> Result<(), (String, String)> {

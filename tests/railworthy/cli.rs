@@ -45,7 +45,7 @@ fn what_cannot_be_done_is_told_and_wins_over_findings() {
     let absent = run(&folder, &["check", "no-such.net", "gauge-draft.net"]);
     assert_eq!(absent.status, Some(2));
     assert!(absent.out.contains("no-such.net cannot be read"), "{}", absent.out);
-    assert!(absent.out.contains("U5 never starts"), "what can be judged is judged");
+    assert!(absent.out.contains("U5 never comes up"), "what can be judged is judged");
     for arguments in [
         &["check"][..],
         &["judge"],
@@ -138,7 +138,7 @@ fn colour_is_given_where_it_is_asked_for_and_never_in_a_pipe() {
 fn quiet_leaves_the_findings_alone() {
     let loud = run(&examples(), &["check", "gauge-draft.net"]).out;
     let quiet = run(&examples(), &["check", "gauge-draft.net", "--quiet"]).out;
-    assert!(quiet.contains("U5 never starts") && !quiet.contains("regulators,") && !quiet.contains("copper"));
+    assert!(quiet.contains("U5 never comes up") && !quiet.contains("regulators,") && !quiet.contains("copper"));
     assert!(loud.contains("regulators,") && loud.contains("Distance, copper and layout cannot be seen"));
 }
 
@@ -332,4 +332,17 @@ fn checks_are_explained_and_known_things_listed() {
         assert!(list.contains(name), "{what}: {list}");
         assert!(text(&["catalog", what, name]).lines().count() >= 1);
     }
+}
+
+#[test]
+fn a_damaged_file_claims_no_failure_for_what_may_be_in_the_lost_part() {
+    let folder = tempfile::tempdir().unwrap();
+    let whole = std::fs::read_to_string(examples().join("gauge-draft.net")).unwrap();
+    let cut = whole.find("(name \"VREF\")").unwrap();
+    std::fs::write(folder.path().join("cut.net"), &whole[..cut]).unwrap();
+    let run = run(folder.path(), &["check", "cut.net"]);
+    assert_eq!(run.status, Some(2));
+    assert!(run.out.contains("incomplete"), "{}", run.out);
+    let after = run.out.split("incomplete").nth(1).unwrap();
+    assert!(!after.contains("  error:"), "{after}");
 }

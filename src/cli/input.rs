@@ -10,7 +10,7 @@ use super::{Status, Streams, args};
 use crate::board::{self, Board, FileError, Links, Options};
 use crate::checks::{Checks, DefinedNames};
 use crate::knowledge::Knowledge;
-use crate::netlist::limits::MAX_BYTES;
+use crate::netlist::limits::{MAX_BYTES, MAX_PROBLEMS};
 use crate::report::{self, BoardResult};
 use crate::review::examine;
 use crate::source::{Problem, Severity};
@@ -78,7 +78,25 @@ pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str
             }
         },
     }
+    result.problems = told(result.problems);
     result
+}
+
+/// Problems, no more errors and no more others than a reader can use; the rest is counted.
+fn told(all: Vec<Problem>) -> Vec<Problem> {
+    let (mut errors, mut others) = (0, 0);
+    let mut kept = Vec::new();
+    for problem in all {
+        let count = if problem.severity() >= Severity::Error { &mut errors } else { &mut others };
+        *count += 1;
+        if *count <= MAX_PROBLEMS {
+            kept.push(problem);
+        }
+    }
+    let more = |count: usize| Some(count.saturating_sub(MAX_PROBLEMS)).filter(|more| *more > 0);
+    kept.extend(more(errors).map(|more| Problem::error(format!("{more} more errors are not listed"))));
+    kept.extend(more(others).map(|more| Problem::warning(format!("{more} more warnings are not listed"))));
+    kept
 }
 
 /// The rules of a board that names folders of its own.

@@ -69,8 +69,8 @@ impl Excerpt {
 
     fn add_line(&mut self, source: &Source, number: usize, marks: &[(usize, &Mark, bool)]) {
         let Some((_, first, _)) = marks.first() else { return };
-        let (start, end) = bounds(source.text(), first.span.start());
-        let line = source.text().get(start..end).unwrap_or("");
+        let (start, end) = (source.line(number).start(), source.line(number).end());
+        let line = source.slice(source.line(number));
         let cut = Cut::new(line, first.span.start().saturating_sub(start));
         let base = self.text.len();
         if cut.from > 0 {
@@ -110,21 +110,6 @@ impl Excerpt {
     pub(super) fn labels(&self) -> impl Iterator<Item = LabeledSpan> + '_ {
         self.labels.iter().cloned()
     }
-}
-
-/// The bytes of the line around an offset, without its end.
-fn bounds(text: &str, offset: usize) -> (usize, usize) {
-    let bytes = text.as_bytes();
-    let offset = offset.min(bytes.len());
-    let start =
-        bytes.get(..offset).and_then(|head| head.iter().rposition(|byte| *byte == b'\n')).map_or(0, |at| at + 1);
-    let end = bytes
-        .get(offset..)
-        .and_then(|tail| tail.iter().position(|byte| *byte == b'\n'))
-        .map_or(bytes.len(), |length| offset + length);
-    let end = if end > start && bytes.get(end - 1) == Some(&b'\r') { end - 1 } else { end };
-    let start = if start == 0 && text.starts_with('\u{feff}') { 3.min(end) } else { start };
-    (start, end)
 }
 
 /// The part of a line that is shown, in bytes of it.

@@ -65,4 +65,33 @@ mod tests {
             ["[board]", "ambient = \"-20 .. 55 °C\""]
         );
     }
+    #[test]
+    fn every_declaration_that_is_asked_for_is_one_that_a_board_file_takes() {
+        use crate::board::{Board, Options};
+        use crate::checks::{Checks, DefinedNames, cases};
+        use crate::knowledge::Knowledge;
+        use crate::source::Source;
+        let knowledge = Knowledge::built_in();
+        let (checks, _) = Checks::load(&knowledge.checks, &DefinedNames);
+        let mut seen = std::collections::BTreeSet::new();
+        for (check, files) in &knowledge.checks {
+            // Without their board files, so that as much as can be is to be declared.
+            for case in cases::find(check, files).0 {
+                let bytes = case.netlist.text().as_bytes();
+                let Ok(found) =
+                    crate::review::examine("x.net", bytes, Board::default(), &knowledge, &checks, "2026-01-01")
+                else {
+                    continue;
+                };
+                let settles = found.findings.iter().flat_map(|reviewed| &reviewed.finding.settle);
+                for settle in settles.filter(|settle| seen.insert((settle.table, settle.key))) {
+                    let text = lines(settle).join("\n");
+                    let (_, problems) = Board::read(&Source::new("x.toml", text.as_str()), Options::default());
+                    let told: Vec<_> = problems.iter().map(crate::source::Problem::message).collect();
+                    assert!(told.is_empty(), "{text}: {told:?}");
+                }
+            }
+        }
+        assert!(seen.len() > 5, "{seen:?}");
+    }
 }

@@ -1,5 +1,6 @@
 //! The report of `check` as text.
 
+use std::cmp::Reverse;
 use std::collections::BTreeMap;
 use std::rc::Rc;
 
@@ -11,7 +12,10 @@ use super::problem::problems;
 use super::{finding, settle};
 use crate::checks::{Level, Verdict};
 use crate::review::{Decisive, Examination, Reviewed};
+use crate::source::Problem;
 
+/// Most problems of a board that are shown.
+const MOST_PROBLEMS: usize = 25;
 /// Most declarations that are named as the first to make.
 const MOST_DECLARATIONS: usize = 3;
 
@@ -50,7 +54,7 @@ fn one(board: &BoardResult, options: TextOptions) -> String {
         text.push_str(&heading(board, look));
         text.push('\n');
     }
-    text.push_str(&problems(&board.problems, look));
+    text.push_str(&first_problems(&board.problems, look));
     let Some(examination) = &board.examination else {
         if !options.quiet {
             text.push_str(&unread(look));
@@ -72,6 +76,18 @@ fn one(board: &BoardResult, options: TextOptions) -> String {
         text.push_str(&summary(examination, look));
     }
     text
+}
+
+/// Problems, as many as a reader can use: the errors ahead of the others where there are too many.
+fn first_problems(all: &[Problem], look: Look) -> String {
+    if all.len() <= MOST_PROBLEMS {
+        return problems(all, look);
+    }
+    let mut sorted: Vec<&Problem> = all.iter().collect();
+    sorted.sort_by_key(|problem| Reverse(problem.severity()));
+    let (shown, rest) = sorted.split_at(MOST_PROBLEMS);
+    let more = format!("{} more like these are not shown; `--format json` lists them", rest.len());
+    problems(shown.iter().copied(), look) + &format!("  {more}\n\n")
 }
 
 /// `gauge.net · Gauge station supply · board file gauge.railworthy.toml`

@@ -94,6 +94,19 @@ impl Source {
         self.text.get(span.start()..span.end()).unwrap_or("")
     }
 
+    /// The bytes of a line, counted from 1, without its end and without a byte order mark; empty behind the last line.
+    #[must_use]
+    pub fn line(&self, number: usize) -> Span {
+        let Some(start) = self.lines.get(number.saturating_sub(1)).copied() else {
+            return Span::new(self.text.len(), self.text.len());
+        };
+        let end = self.lines.get(number).map_or(self.text.len(), |next| next - 1);
+        let text = self.text.get(start..end).unwrap_or("");
+        let end = end - usize::from(text.ends_with('\r'));
+        let mark = if number <= 1 && text.starts_with('\u{feff}') { '\u{feff}'.len_utf8() } else { 0 };
+        Span::new(start + mark, end)
+    }
+
     /// Line and column of a byte; a byte behind the end is taken as the end.
     #[must_use]
     pub fn position(&self, offset: usize) -> Position {
@@ -119,6 +132,15 @@ impl fmt::Debug for Source {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn a_line_is_given_without_its_end() {
+        let source = Source::new("x", "\u{feff}ab\r\nµ2\n");
+        let line = |number| source.slice(source.line(number)).to_owned();
+        assert_eq!([line(1), line(2), line(3), line(4)], ["ab", "µ2", "", ""]);
+        assert_eq!(source.line(2), Span::new(7, 10));
+        assert_eq!(Source::new("x", "").line(1), Span::new(0, 0));
+    }
 
     #[test]
     fn a_position_counts_characters_and_line_feeds_and_not_the_byte_order_mark() {

@@ -172,7 +172,7 @@ impl Device {
         self.pins.iter().enumerate().filter_map(named)
     }
 
-    /// The part name without what rescue libraries hang on it: see [`super::symbol_name`].
+    /// The part name without what rescue libraries hang on it.
     #[must_use]
     pub fn symbol(&self) -> &str {
         super::kind::symbol_name(&self.library, &self.part)

@@ -18,6 +18,9 @@ const AMBIENT: (f64, f64) = (-10.0, 50.0);
 /// The temperature at which sheets state their typical figures (°C).
 const ROOM: f64 = 25.0;
 
+/// A bank: net, returns, side.
+type BankKey = (NetId, Option<NetId>, Side);
+
 /// A bank's total: net, returns, side, whether only ceramics count, whether as drawn.
 pub(super) type TotalKey = (NetId, Option<NetId>, Side, bool, bool);
 
@@ -30,7 +33,7 @@ pub struct Facts<'a> {
     rails: OnceCell<Rails>,
     // Never gone through in order: only looked up.
     values: RefCell<HashMap<(Subject, &'static str), Value>>,
-    banks: RefCell<HashMap<(NetId, Option<NetId>, Side), Rc<KnownBank>>>,
+    banks: RefCell<HashMap<BankKey, Rc<KnownBank>>>,
     totals: RefCell<HashMap<TotalKey, Quantity>>,
     index: OnceCell<Index>,
 }

@@ -1,5 +1,6 @@
 //! The voltages of supply nets: declared, regulated, named, and carried through series elements.
 
+use std::collections::hash_map::Entry;
 use std::collections::{HashMap, VecDeque};
 
 use super::Facts;
@@ -85,8 +86,8 @@ pub(super) fn propagate(facts: &Facts<'_>) -> Rails {
     let mut rails = Rails { known: HashMap::new() };
     let mut queue = VecDeque::new();
     for (net, rail) in declared(facts).into_iter().chain(regulated(facts)) {
-        if !rails.known.contains_key(&net) {
-            rails.known.insert(net, rail);
+        if let Entry::Vacant(free) = rails.known.entry(net) {
+            free.insert(rail);
             queue.push_back(net);
         }
     }

@@ -1,4 +1,4 @@
-//! Results as bytes: text for people, JSON for programs. Every text that comes from a file passes through [`inert`].
+//! Results as bytes: text for people, JSON for programs. Every text that comes from a file passes through [`inert()`].
 
 mod board;
 pub mod catalog;

@@ -100,8 +100,9 @@ fn faults(row: &Row, design: &Design) -> Vec<String> {
 }
 
 fn roles(row: &Row, device: &Device, found: &[&Regulator], check: &mut impl FnMut(&str, bool, String)) {
+    type Pins = fn(&Regulator) -> Vec<usize>;
     let tabs = wanted(row, "tab_pins");
-    let pick: [(&str, fn(&Regulator) -> Vec<usize>); 6] = [
+    let pick: [(&str, Pins); 6] = [
         ("input_pins", |each| each.roles.input.clone()),
         ("output_pins", |each| each.roles.output.clone()),
         ("ground_pins", |each| each.roles.ground.clone()),

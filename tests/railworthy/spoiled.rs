@@ -4,7 +4,6 @@ use std::path::PathBuf;
 
 use railworthy::board::{Board, Options};
 use railworthy::checks::Level;
-use railworthy::circuit::DeviceKind;
 use railworthy::facts::{Facts, Subject};
 use railworthy::netlist::{self, NetEntry, Netlist};
 use railworthy::quantity::Quantity;

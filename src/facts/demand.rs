@@ -4,7 +4,7 @@ use super::identity::of;
 use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
 use crate::board::PartEntry;
 use crate::knowledge::{Basis, CapacitorDemand, Cited, Family, MinimumKind};
-use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range};
+use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Table};
 use crate::recognize::{Regulator, RegulatorKind, Side};
 
 /// What a sheet that only recommends a capacitance, or gives one that covers all cases, is taken to need, as a
@@ -129,7 +129,7 @@ impl Facts<'_> {
             return Value::inapplicable("the sheet names no minimum");
         };
         let farads = if special.is_some() { minimum.value } else { self.at_output(regulator, demand, minimum) };
-        Value::Figure(self.bound(regulator, demand.kind, minimum, farads, what))
+        Value::Figure(self.bound(regulator, (side, demand.kind), minimum, farads, what))
     }
 
     /// The minimum for the part's own output voltage, where the sheet makes it depend on that.
@@ -152,13 +152,21 @@ impl Facts<'_> {
     fn bound(
         &self,
         regulator: &Regulator,
-        kind: MinimumKind,
+        (side, kind): (Side, MinimumKind),
         minimum: &Cited<f64>,
         farads: f64,
         what: String,
     ) -> Quantity {
         let recalled = minimum.recalled || kind == MinimumKind::Recalled;
-        let evidence = self.cited(regulator, &minimum.source, recalled, what);
+        let key = match side {
+            Side::Input => "minimum_input_capacitance",
+            Side::Output => "minimum_output_capacitance",
+        };
+        let mut evidence = self.cited(regulator, &minimum.source, recalled, what);
+        let settle = Settle::new(Table::Part, &self.part_of(regulator).reference, key, "10 uF");
+        if !evidence.grade.is_fact() {
+            evidence = evidence.settled_by(settle.clone());
+        }
         let shares = match kind {
             _ if recalled => RECALLED,
             MinimumKind::Recommended => RECOMMENDED,
@@ -166,7 +174,7 @@ impl Facts<'_> {
         };
         let recommended = kind == MinimumKind::Recommended && !recalled;
         let evidence = if recommended {
-            let mut weaker = evidence.at_most(Grade::Inferred).settled_by(self.which_family(regulator));
+            let mut weaker = evidence.at_most(Grade::Inferred).settled_by(settle);
             weaker.source = format!("{}, which recommends it", minimum.source);
             weaker
         } else {

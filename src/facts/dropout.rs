@@ -91,6 +91,9 @@ impl Facts<'_> {
         let rated = family.figures.get("rated_current").map_or(0.0, |cited| cited.value.high());
         let Some(cited) = family.dropout_at(rated, output) else { return Quantity::constant(Dimension::ONE, 0.0) };
         let mut evidence = self.cited(regulator, &cited.source, cited.recalled, what);
+        if !evidence.grade.is_fact() {
+            evidence = evidence.settled_by(self.dropout_of(regulator));
+        }
         let mut likely = 0.0;
         if cited.value.maximum.is_none() {
             let (usual, most) = above_typical(family);
@@ -117,7 +120,7 @@ impl Facts<'_> {
         if (range.1 - range.0).abs() < f64::EPSILON {
             return None;
         }
-        let noun = if first.recalled { "recalled dropout" } else { "dropout by maker" };
+        let noun = if first.recalled { "dropout" } else { "dropout by maker" };
         let evidence = Evidence::new(Grade::Inferred, self.about(regulator, noun), first.source)
             .settled_by(if first.recalled { self.dropout_of(regulator) } else { self.which_family(regulator) });
         let range = Range::clamped(range.0, 1.0, range.1);

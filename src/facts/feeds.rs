@@ -2,7 +2,7 @@
 
 use std::collections::HashSet;
 
-use super::Facts;
+use super::{Facts, RailOrigin};
 use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId, Polarity};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Table};
 use crate::recognize::RegulatorKind;
@@ -21,6 +21,15 @@ const TRANSISTOR: (f64, f64, f64) = (0.0, 0.03, 0.2);
 const DIODE_LIMIT: f64 = 2.0;
 /// How many loads a sum names one by one; more are one figure.
 const NAMED_LOADS: usize = 12;
+
+/// How the voltage of a supply of about this many volts could be declared: a template, not a value.
+pub(super) fn supply_example(volts: f64) -> &'static str {
+    match volts {
+        volts if volts < 0.0 => "-12.6 .. -11.4 V",
+        volts if volts < 9.0 => "4.75 .. 5.25 V",
+        _ => "10.8 .. 14.4 V",
+    }
+}
 
 /// What lies between two supply nets.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -105,37 +114,45 @@ pub(super) fn anode(part: &Device) -> Option<usize> {
 }
 
 impl Facts<'_> {
-    /// The voltage behind a series element that `from` feeds.
-    pub(super) fn behind(&self, from: &Quantity, device: DeviceId, element: Element, to: NetId) -> Quantity {
+    /// The voltage behind a series element by which `near`, at the voltage `from`, feeds `to`.
+    pub(super) fn behind(
+        &self,
+        (near, from): (NetId, &Quantity),
+        device: DeviceId,
+        element: Element,
+        to: NetId,
+    ) -> Quantity {
+        let volts = from.nominal().unwrap_or(0.0);
         let drop = match element {
             Element::Link => return from.clone(),
-            Element::Resistor => self.resistance(device).times(&self.draw(to)),
-            Element::Bead => self.bead(device, to).times(&self.draw(to)),
-            Element::Diode { schottky } => self.forward_drop(device, if schottky { SCHOTTKY } else { SILICON }, to),
-            Element::Transistor => self.forward_drop(device, TRANSISTOR, to),
+            Element::Resistor => self.resistance(device).times(&self.drawn_from(to, Some(near))),
+            Element::Bead => self.bead(device, to, volts).times(&self.drawn_from(to, Some(near))),
+            Element::Diode { schottky } => {
+                self.forward_drop(device, if schottky { SCHOTTKY } else { SILICON }, to, volts)
+            }
+            Element::Transistor => self.forward_drop(device, TRANSISTOR, to, volts),
         };
-        let positive = from.nominal().unwrap_or(0.0) >= 0.0;
-        if positive { from.minus(&drop) } else { from.plus(&drop) }
+        if volts >= 0.0 { from.minus(&drop) } else { from.plus(&drop) }
     }
 
-    fn bead(&self, device: DeviceId, to: NetId) -> Quantity {
+    fn bead(&self, device: DeviceId, to: NetId, volts: f64) -> Quantity {
         let (low, nominal, high) = BEAD;
         let range = Range::clamped(low, nominal, high);
-        let evidence = self.assumed_of(device, "resistance", to);
+        let evidence = self.assumed_of(device, "resistance", to, volts);
         Quantity::given(Dimension::RESISTANCE, range, Pair::NOT_NEGATIVE, evidence)
     }
 
-    fn forward_drop(&self, device: DeviceId, usual: (f64, f64, f64), to: NetId) -> Quantity {
+    fn forward_drop(&self, device: DeviceId, usual: (f64, f64, f64), to: NetId, volts: f64) -> Quantity {
         let (low, nominal, high) = usual;
         let range = Range::clamped(low, nominal, high);
-        let evidence = self.assumed_of(device, "forward drop", to);
+        let evidence = self.assumed_of(device, "forward drop", to, volts);
         Quantity::given(Dimension::VOLTAGE, range, Pair::new(0.0, DIODE_LIMIT), evidence)
     }
 
-    fn assumed_of(&self, device: DeviceId, noun: &str, to: NetId) -> Evidence {
+    fn assumed_of(&self, device: DeviceId, noun: &str, to: NetId, volts: f64) -> Evidence {
         let circuit = self.circuit();
         let what = format!("{noun} of {}", circuit.device(device).reference);
-        let settle = Settle::new(Table::Supply, &circuit.net(to).name, "voltage", "4.75 .. 5.25 V");
+        let settle = Settle::new(Table::Supply, &circuit.net(to).name, "voltage", supply_example(volts));
         Evidence::new(Grade::Assumed, what, "usual for its kind").settled_by(settle)
     }
 
@@ -143,7 +160,16 @@ impl Facts<'_> {
     /// that it feeds.
     #[must_use]
     pub fn draw(&self, net: NetId) -> Quantity {
-        if let Some(declared) = self.declared_draw(net) {
+        let upstream = match self.rail(net).origin {
+            RailOrigin::Through { from, .. } => Some(from),
+            _ => None,
+        };
+        self.drawn_from(net, upstream)
+    }
+
+    /// The same, for a net that `upstream` feeds: what hangs on that is not drawn from the net.
+    pub(super) fn drawn_from(&self, net: NetId, upstream: Option<NetId>) -> Quantity {
+        if let Some(declared) = self.declared_draw(net, upstream) {
             return declared;
         }
         let fed: Vec<_> = self
@@ -156,9 +182,9 @@ impl Facts<'_> {
 
     /// The declared loads on a net, on the nets behind its series elements, and behind the linear regulators that
     /// these feed. `None` where neither the net nor one behind a series element has a declared load.
-    pub(super) fn declared_draw(&self, net: NetId) -> Option<Quantity> {
+    pub(super) fn declared_draw(&self, net: NetId, upstream: Option<NetId>) -> Option<Quantity> {
         let circuit = self.circuit();
-        let mut seen = HashSet::from([net]);
+        let mut seen: HashSet<NetId> = upstream.into_iter().chain([net]).collect();
         let mut queue = vec![(net, true)];
         let (mut loads, mut direct) = (Vec::new(), false);
         while let Some((at, near)) = queue.pop() {
@@ -166,6 +192,8 @@ impl Facts<'_> {
                 loads.push(load);
                 direct |= near;
             }
+            // A protection diode leads back to the input; nothing is drawn through it.
+            seen.extend(self.feeding(at).filter_map(|regulator| regulator.input_net));
             let behind = feeds(circuit, at, true).into_iter().map(|(_, to, _)| (to, near));
             let regulated = self
                 .fed_by(at)

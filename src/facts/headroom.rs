@@ -5,7 +5,7 @@ use super::identity::of;
 use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
 use crate::knowledge::Sign;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Settle, Slope, Table};
-use crate::recognize::Regulator;
+use crate::recognize::{Regulator, RegulatorKind};
 
 pub(super) const DEFINITIONS: &[Definition] = &[
     volts("input_voltage", "the input against ground, signed", |facts, subject| {
@@ -17,13 +17,13 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         |facts, subject| of(facts, subject, |regulator| Value::Figure(facts.input_magnitude(regulator))),
     ),
     volts("headroom", "the input's magnitude less the output to hold, as one figure", |facts, subject| {
-        of(facts, subject, |regulator| Value::Figure(facts.headroom(regulator, subject)))
+        series(facts, subject, |regulator| Value::Figure(facts.headroom(regulator, subject)))
     }),
     volts("highest_headroom", "what is left at the highest input above the lowest set point", |facts, subject| {
-        of(facts, subject, |regulator| Value::Figure(facts.highest_headroom(regulator)))
+        series(facts, subject, |regulator| Value::Figure(facts.highest_headroom(regulator)))
     }),
     volts("lowest_input", "the lowest input magnitude at which the part works at all", |facts, subject| {
-        of(facts, subject, |regulator| match facts.lowest_input(regulator) {
+        series(facts, subject, |regulator| match facts.lowest_input(regulator) {
             Some(lowest) => Value::Figure(lowest),
             None => Value::inapplicable("no lowest input is known"),
         })
@@ -33,6 +33,13 @@ pub(super) const DEFINITIONS: &[Definition] = &[
 const fn volts(name: &'static str, meaning: &'static str, compute: fn(&Facts<'_>, Subject) -> Value) -> Definition {
     let kind = ValueKind::Figure(Dimension::VOLTAGE);
     Definition { name, of: SubjectKind::Regulator, kind, meaning, defined_in: file!(), compute }
+}
+
+fn series(facts: &Facts<'_>, subject: Subject, compute: impl FnOnce(&Regulator) -> Value) -> Value {
+    of(facts, subject, |regulator| match regulator.kind {
+        RegulatorKind::Series | RegulatorKind::Reference => compute(regulator),
+        _ => Value::inapplicable("nothing passes through it"),
+    })
 }
 
 impl Facts<'_> {

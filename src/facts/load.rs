@@ -39,7 +39,7 @@ impl Facts<'_> {
     /// The load: what is declared for the output net and for the nets behind series elements, with what regulators
     /// there draw; else a guess from nothing to the part's rating.
     pub(super) fn load(&self, regulator: &Regulator) -> Quantity {
-        let declared = regulator.output_net.and_then(|net| self.declared_draw(net));
+        let declared = regulator.output_net.and_then(|net| self.declared_draw(net, regulator.input_net));
         declared.unwrap_or_else(|| self.guessed_load(regulator))
     }
 

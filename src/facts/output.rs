@@ -266,9 +266,8 @@ impl Facts<'_> {
         let Some(shown) = output.shown() else { return output };
         let range = Range::clamped(shown.nominal(), shown.nominal(), shown.high());
         let settle = Settle::new(Table::Rail, &name, "may_sag", "true");
-        let what = self.about(regulator, "output to hold");
-        let evidence =
-            Evidence::new(Grade::Assumed, what, "the nominal output, up to its highest").settled_by(settle);
+        let what = self.about(regulator, "how far the output may fall");
+        let evidence = Evidence::new(Grade::Assumed, what, "taken as not below its nominal").settled_by(settle);
         let limits = Pair::new(shown.low(), shown.high());
         // Where the output itself is a guess, its own limits hold.
         let limits = if output.kind().low() > output.kind().high() { output.kind().reversed() } else { limits };

@@ -4,7 +4,7 @@ use std::collections::hash_map::Entry;
 use std::collections::{HashMap, VecDeque};
 
 use super::Facts;
-use super::feeds::feeds;
+use super::feeds::{feeds, supply_example};
 use crate::board::{SupplyEntry, SupplyNodes};
 use crate::circuit::{DeviceId, DeviceKind, NetId, supply_name};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
@@ -77,7 +77,8 @@ impl Rails {
 }
 
 fn supply_of(net: &str) -> Settle {
-    Settle::new(Table::Supply, net, "voltage", "4.75 .. 5.25 V")
+    let volts = supply_name(net).map_or(0.0, |name| name.volts);
+    Settle::new(Table::Supply, net, "voltage", supply_example(volts))
 }
 
 /// Voltages spread from the nets that have one of their own: first from declared supplies and regulator outputs,
@@ -151,7 +152,7 @@ fn sagging(facts: &Facts<'_>, entry: &SupplyEntry, voltage: Quantity, net: NetId
     let Some(resistance) = &entry.resistance else { return voltage };
     let name = &facts.circuit().net(net).name;
     let resistance = resistance.quantity(Dimension::RESISTANCE, format!("source resistance of {name}"));
-    let drop = resistance.times(&facts.draw(net));
+    let drop = resistance.times(&facts.drawn_from(net, None));
     if voltage.nominal().unwrap_or(0.0) >= 0.0 { voltage.minus(&drop) } else { voltage.plus(&drop) }
 }
 
@@ -180,7 +181,7 @@ fn spread(facts: &Facts<'_>, rails: &mut Rails, queue: &mut VecDeque<NetId>) {
                 continue;
             }
             let origin = RailOrigin::Through { device, from: net };
-            let voltage = facts.behind(&rail.voltage, device, element, to);
+            let voltage = facts.behind((net, &rail.voltage), device, element, to);
             match rails.known.get(&to) {
                 None => {
                     rails.known.insert(to, Rail { voltage, origin });

@@ -8,7 +8,7 @@ use super::feeds::{feeds, supply_example};
 use crate::board::{SupplyEntry, SupplyNodes};
 use crate::circuit::{DeviceId, DeviceKind, NetId, supply_name};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
-use crate::recognize::{Regulator, RegulatorId};
+use crate::recognize::{Regulator, RegulatorId, RegulatorKind};
 
 /// How far a supply that is only named may lie from its name; wider from [`HIGH_SUPPLY`] volts up.
 const NAMED: f64 = 0.05;
@@ -197,9 +197,14 @@ fn spread(facts: &Facts<'_>, rails: &mut Rails, queue: &mut VecDeque<NetId>) {
     }
 }
 
-/// A link from a part's own output to its input protects the part against a charged output; it feeds nothing.
+/// A link from a part's own output to its input protects the part against a charged output, and the inductor of a
+/// converter leads back to its switch pin: neither feeds anything.
 fn is_protection(facts: &Facts<'_>, from: NetId, to: NetId) -> bool {
-    facts.fed_by(to).any(|regulator: &Regulator| regulator.output_net == Some(from))
+    let switched = |regulator: &Regulator| {
+        regulator.kind == RegulatorKind::Switching
+            && facts.part_of(regulator).pins.iter().any(|pin| pin.net == Some(to))
+    };
+    facts.fed_by(to).any(|regulator| regulator.output_net == Some(from)) || facts.feeding(from).any(switched)
 }
 
 /// Whether a net that one diode feeds is fed by another one too.

@@ -84,6 +84,27 @@ fn a_feedback_part_with_3_6_and_1_18_megaohm_gives_5_023_volt() {
     close(set_point.nominal().unwrap(), 5.023, 2e-5);
 }
 
+#[test]
+fn the_feedback_divider_of_a_converter_gives_the_voltage_of_its_rail() {
+    // The formula of SUP-07; 0.8 V of feedback and 52.3k over 10k make 4.984 V.
+    let mut parts = vec![Part {
+        reference: "U1",
+        value: "MP1584EN".to_owned(),
+        symbol: ("Regulator_Switching", "MP1584EN", "Step-down converter, adjustable"),
+        pins: vec![
+            ("1", "SW", "output", "SWITCH"),
+            ("2", "EN", "input", "IN"),
+            ("4", "FB", "input", "FB"),
+            ("5", "GND", "power_in", "GND"),
+            ("7", "VIN", "power_in", "IN"),
+        ],
+    }];
+    parts.push(Part::two_ended("L1", "10uH", ("SWITCH", "MAIN")));
+    parts.push(Part::two_ended("R1", "52.3k", ("MAIN", "FB")));
+    parts.push(Part::two_ended("R2", "10k", ("FB", "GND")));
+    close(figure(&parts, "", "set_point").nominal().unwrap(), 0.8 * (1.0 + 52.3 / 10.0), 1e-9);
+}
+
 /// A low-dropout part with one output capacitor of a declared ESR.
 fn one_capacitor(value: &str, esr: &str) -> (Vec<Part>, String) {
     let parts = vec![

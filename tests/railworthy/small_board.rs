@@ -18,6 +18,7 @@ impl Part {
     ) -> Self {
         let symbol = match reference.chars().next() {
             Some('R') => ("Device", "R", "Resistor"),
+            Some('L') => ("Device", "L", "Inductor"),
             _ => ("Device", "C", "Unpolarized capacitor"),
         };
         let pins = vec![("1", "~", "passive", nets.0), ("2", "~", "passive", nets.1)];

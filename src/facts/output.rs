@@ -46,6 +46,10 @@ const fn volts(name: &'static str, meaning: &'static str, compute: fn(&Facts<'_>
 impl Facts<'_> {
     /// The set point, signed; missing where nothing tells it.
     pub(super) fn set_point(&self, regulator: &Regulator) -> Quantity {
+        let part = self.board().part(&self.part_of(regulator).reference);
+        if let Some(declared) = part.and_then(|part| part.output_voltage.as_ref()) {
+            return declared.quantity(Dimension::VOLTAGE, self.about(regulator, "output voltage"));
+        }
         let magnitude = match (regulator.mode, &regulator.nominal) {
             (Mode::Fixed, Some(_)) | (Mode::Adjustable, Some(_)) if regulator.divider.is_none() => {
                 self.fixed_output(regulator)
@@ -225,14 +229,10 @@ impl Facts<'_> {
         regulator.output_net.map(|net| self.circuit().net(net).name.clone())
     }
 
-    /// The output, signed: declared for the part, else the set point, else what the rail is meant to be, else what
+    /// The output, signed: the set point, which may be declared for the part, else what the rail is meant to be, else what
     /// its net is called.
     pub(super) fn output_voltage(&self, regulator: &Regulator) -> Quantity {
         let what = self.about(regulator, "output voltage");
-        let part = self.board().part(&self.part_of(regulator).reference);
-        if let Some(declared) = part.and_then(|part| part.output_voltage.as_ref()) {
-            return declared.quantity(Dimension::VOLTAGE, what);
-        }
         let set_point = self.set_point(regulator);
         if !set_point.is_missing() {
             return set_point;

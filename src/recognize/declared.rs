@@ -1,7 +1,9 @@
 //! What the board file overrides.
 
-use super::find::Overrides;
+use super::find::{InPlace, Overrides};
+use super::model::RegulatorKind;
 use crate::board::Board;
+use crate::knowledge::FamilyKind;
 
 impl Overrides for Board {
     fn family(&self, reference: &str) -> Option<&str> {
@@ -14,5 +16,23 @@ impl Overrides for Board {
 
     fn output_voltage(&self, net: &str) -> Option<f64> {
         self.rail(net)?.voltage.as_ref().map(|voltage| voltage.value.nominal())
+    }
+
+    fn in_place(&self, reference: &str) -> InPlace<'_> {
+        let Some(part) = self.part(reference) else { return InPlace::default() };
+        let kind = part.kind.as_ref().and_then(|kind| match kind.value {
+            FamilyKind::Series => Some(RegulatorKind::Series),
+            FamilyKind::Shunt => Some(RegulatorKind::Shunt),
+            FamilyKind::Reference => Some(RegulatorKind::Reference),
+            FamilyKind::Switching => Some(RegulatorKind::Switching),
+            FamilyKind::Other => None,
+        });
+        InPlace {
+            kind,
+            polarity: part.polarity.as_ref().map(|polarity| polarity.value),
+            pass: part.pass.as_ref().map(|pass| pass.value),
+            pins: part.pins.as_ref().map(|pins| &pins.value),
+            volts: part.output_voltage.as_ref().map(|volts| volts.value.nominal()),
+        }
     }
 }

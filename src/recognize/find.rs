@@ -1,9 +1,9 @@
 //! Finding the regulators and references of a board.
 
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 
 use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId, supply_name};
-use crate::knowledge::{Family, Knowledge, RoleName, Sign};
+use crate::knowledge::{Family, FamilyKind, Knowledge, Pass, RoleName, Sign};
 use crate::quantity::Grade;
 
 use super::divider::{self, Ends};
@@ -28,6 +28,42 @@ pub trait Overrides {
     fn ignored(&self, reference: &str) -> bool;
     /// The output voltage that is declared for a net, in volts.
     fn output_voltage(&self, net: &str) -> Option<f64>;
+    /// What is declared of a part in place of a family; nothing where not overridden.
+    fn in_place(&self, reference: &str) -> InPlace<'_> {
+        let _ = reference;
+        InPlace::default()
+    }
+}
+
+/// What a board file says of a part itself: it wins over all that the schematic tells.
+#[derive(Debug, Clone, Copy, Default)]
+pub struct InPlace<'b> {
+    /// What the part is.
+    pub kind: Option<RegulatorKind>,
+    /// The sign of its output.
+    pub polarity: Option<Sign>,
+    /// Its pass element.
+    pub pass: Option<Pass>,
+    /// Pin number to the roles that the pin may have.
+    pub pins: Option<&'b BTreeMap<String, Vec<RoleName>>>,
+    /// Its fixed output in volts, signed.
+    pub volts: Option<f64>,
+}
+
+impl InPlace<'_> {
+    fn says_anything(&self) -> bool {
+        self.kind.is_some() || self.pins.is_some()
+    }
+
+    /// Puts the declared role in place of each pin's own; of several, the one that the pin seemed to have.
+    fn assign(&self, device: &Device, roles: &mut [RoleName]) {
+        for (pin, role) in device.pins.iter().zip(roles) {
+            let told = self.pins.and_then(|pins| pins.get(&pin.number));
+            if let Some(told) = told.filter(|told| !told.contains(role)) {
+                *role = told.first().copied().unwrap_or(*role);
+            }
+        }
+    }
 }
 
 /// Nothing is declared.
@@ -53,14 +89,16 @@ pub fn recognize(circuit: Circuit, overrides: &dyn Overrides, knowledge: &Knowle
     let mut not_judged = Vec::new();
     for id in circuit.devices() {
         let device = circuit.device(id);
-        if !device.is_fitted() || !worth_looking(device.kind) || device.pins.len() < 2 {
+        let in_place = overrides.in_place(&device.reference);
+        let worth = worth_looking(device.kind) || in_place.says_anything();
+        if !device.is_fitted() || !worth || device.pins.len() < 2 {
             continue;
         }
         if overrides.ignored(&device.reference) {
             not_judged.push(NotJudged { device: id, reason: "ignored by the board file".to_owned() });
             continue;
         }
-        let finder = Finder { circuit: &circuit, id, device, overrides, knowledge };
+        let finder = Finder { circuit: &circuit, id, device, overrides, in_place, knowledge };
         finder.find(&matcher, &mut regulators, &mut not_judged);
     }
     let order = |id: DeviceId| natural(&circuit.device(id).reference);
@@ -74,6 +112,7 @@ struct Finder<'a> {
     id: DeviceId,
     device: &'a Device,
     overrides: &'a dyn Overrides,
+    in_place: InPlace<'a>,
     knowledge: &'a Knowledge,
 }
 
@@ -95,13 +134,13 @@ impl Finder<'_> {
         let mut known = identity::identify(device, self.overrides.family(&device.reference), self.knowledge, matcher);
         // Most parts of a board have neither a known name nor pins of interest; their text need not be read.
         let names: Vec<PinName> = device.pins.iter().map(|pin| pin_name::read(&pin.name, &pin.number)).collect();
-        if known.identity.families.is_empty() && !of_interest(&names) {
+        if known.identity.families.is_empty() && !of_interest(&names) && !self.in_place.says_anything() {
             return;
         }
         let text = words::read(&device.description, &device.keywords, &device.library);
         let candidate = Candidate { circuit: self.circuit, id: self.id, names, text, known: known.clone() };
-        let Some(kind) = candidate.kind(self.knowledge) else { return };
         let family = known.identity.families.first().and_then(|index| self.knowledge.families.get(*index));
+        let Some(kind) = self.kind(&candidate, &known, family) else { return };
         let told = nominal::read(device, &known, &candidate.text, self.knowledge);
         known.identity.remarks.extend(told.remark.clone());
         let hints = Hints {
@@ -111,8 +150,9 @@ impl Finder<'_> {
             family,
             nominal: told.volts.as_ref().map(|nominal| nominal.volts),
         };
-        let roles = roles::assign(self.circuit, self.id, &candidate.names, hints);
-        let sign = nominal::sign(device, &known, &candidate.text, family);
+        let mut roles = roles::assign(self.circuit, self.id, &candidate.names, hints);
+        self.in_place.assign(device, &mut roles);
+        let sign = self.in_place.polarity.or_else(|| nominal::sign(device, &known, &candidate.text, family));
         let part = Part {
             kind,
             names: &candidate.names,
@@ -128,6 +168,18 @@ impl Finder<'_> {
         } else {
             self.series(&part, regulators, not_judged);
         }
+    }
+
+    /// What the part is: declared, of a declared family, else as its names, pins and text tell.
+    fn kind(&self, candidate: &Candidate<'_>, known: &Known, family: Option<&Family>) -> Option<RegulatorKind> {
+        let of_family = || match family.filter(|_| known.identity.grade == Grade::Declared)?.kind {
+            FamilyKind::Series => Some(RegulatorKind::Series),
+            FamilyKind::Shunt => Some(RegulatorKind::Shunt),
+            FamilyKind::Reference => Some(RegulatorKind::Reference),
+            FamilyKind::Switching => Some(RegulatorKind::Switching),
+            FamilyKind::Other => None,
+        };
+        self.in_place.kind.or_else(of_family).or_else(|| candidate.kind(self.knowledge))
     }
 
     fn nets(&self, pins: &[usize]) -> Vec<NetId> {
@@ -176,7 +228,10 @@ impl Finder<'_> {
             kind: part.kind,
             polarity: sign,
             mode,
-            pass: part.family.and_then(|family| family.pass.as_ref()).map(|pass| pass.value),
+            pass: self
+                .in_place
+                .pass
+                .or_else(|| part.family.and_then(|family| family.pass.as_ref()).map(|pass| pass.value)),
             nominal,
             input_net: self.nets(&roles.input).first().copied(),
             output_net,
@@ -196,6 +251,9 @@ impl Finder<'_> {
     /// Fixed or adjustable. A part whose voltage is told is adjustable only where resistors set it: dual-mode parts have
     /// their set pin on ground, on the output or on an internal tap to be fixed.
     fn mode(&self, part: &Part<'_>, roles: &Roles, divider: Option<&Divider>) -> Mode {
+        if self.in_place.volts.is_some() {
+            return Mode::Fixed;
+        }
         let Some(divider) = divider else {
             return if roles.adjust.is_empty() || part.told.volts.is_some() { Mode::Fixed } else { Mode::Adjustable };
         };
@@ -253,6 +311,10 @@ impl Finder<'_> {
         output: Option<NetId>,
     ) -> Option<Nominal> {
         let signed = |volts: f64| if sign == Sign::Negative { -volts.abs() } else { volts.abs() };
+        if let Some(volts) = self.in_place.volts {
+            let source = "declared for the part".to_owned();
+            return Some(Nominal { volts: signed(volts), grade: Grade::Declared, source });
+        }
         let pair = part.told.pair.as_ref().filter(|_| count == 2).and_then(|pair| pair.get(index));
         let told = pair.or(part.told.volts.as_ref());
         let name = output.map_or("", |net| self.circuit.net(net).name.as_str());

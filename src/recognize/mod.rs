@@ -28,7 +28,7 @@ mod walk;
 mod words;
 
 pub use bank::{Side, bank, bank_to};
-pub use find::{Overrides, recognize};
+pub use find::{InPlace, Overrides, recognize};
 pub use model::{
     Bank, Branch, Design, Divider, EnablePin, Feed, Identity, Mode, Nominal, NotJudged, Regulator, RegulatorId,
     RegulatorKind, Roles,

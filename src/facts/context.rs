@@ -1,12 +1,12 @@
 //! What figures are computed from, and the memory of those that were.
 
 use std::cell::{OnceCell, RefCell};
-use std::collections::HashMap;
+use std::collections::{BTreeSet, HashMap};
 use std::ops::Deref;
 use std::rc::Rc;
 
 use super::rails::{self, Rails};
-use super::{Subject, Value, definition};
+use super::{Subject, SubjectKind, Value, definition};
 use crate::board::Board;
 use crate::circuit::{Circuit, Device, DeviceId, NetId};
 use crate::knowledge::{Family, Knowledge};
@@ -176,6 +176,32 @@ impl<'a> Facts<'a> {
     #[must_use]
     pub fn supply_nets(&self) -> Vec<NetId> {
         self.circuit().nets().filter(|net| self.rails().is_known(*net)).collect()
+    }
+
+    /// Everything on the board that checks about a kind of subject are asked of.
+    #[must_use]
+    pub fn subjects(&self, kind: SubjectKind) -> Vec<Subject> {
+        match kind {
+            SubjectKind::Regulator => self.regulators().map(|(id, _)| Subject::Regulator(id)).collect(),
+            SubjectKind::Net => self.supply_nets().into_iter().map(Subject::Net).collect(),
+            SubjectKind::Capacitor => self.banked().into_iter().collect(),
+        }
+    }
+
+    /// The capacitors at inputs and outputs of regulators, each once for each net.
+    fn banked(&self) -> BTreeSet<Subject> {
+        let ends = |regulator: &Regulator| {
+            let sides = [(regulator.input_net, Side::Input), (regulator.output_net, Side::Output)];
+            sides.map(|(net, side)| net.map(|net| (net, regulator.ground_net, side)))
+        };
+        let banks: BTreeSet<_> = self.design.regulators.iter().flat_map(ends).flatten().collect();
+        let each = banks.into_iter().map(|(net, returns, side)| self.bank_at(net, returns, side));
+        let capacitors = each.flat_map(|bank| {
+            let net = bank.net;
+            let devices: Vec<DeviceId> = bank.branches.iter().map(|branch| branch.capacitor).collect();
+            devices.into_iter().map(move |device| Subject::Capacitor { device, net })
+        });
+        capacitors.collect()
     }
 
     fn index(&self) -> &Index {

@@ -16,6 +16,7 @@ mod feeds;
 mod headroom;
 mod identity;
 mod load;
+mod net;
 mod output;
 mod rails;
 mod shunt;
@@ -41,6 +42,7 @@ pub const DEFINITIONS: &[&[Definition]] = &[
     demand::DEFINITIONS,
     esr::DEFINITIONS,
     capacitor::DEFINITIONS,
+    net::DEFINITIONS,
     enable::DEFINITIONS,
     shunt::DEFINITIONS,
     startup::DEFINITIONS,

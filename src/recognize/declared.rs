@@ -1,9 +1,9 @@
 //! What the board file overrides.
 
-use super::find::{InPlace, Overrides};
+use super::find::Overrides;
+use super::in_place::InPlace;
 use super::model::RegulatorKind;
 use crate::board::Board;
-use crate::knowledge::FamilyKind;
 
 impl Overrides for Board {
     fn family(&self, reference: &str) -> Option<&str> {
@@ -20,13 +20,7 @@ impl Overrides for Board {
 
     fn in_place(&self, reference: &str) -> InPlace<'_> {
         let Some(part) = self.part(reference) else { return InPlace::default() };
-        let kind = part.kind.as_ref().and_then(|kind| match kind.value {
-            FamilyKind::Series => Some(RegulatorKind::Series),
-            FamilyKind::Shunt => Some(RegulatorKind::Shunt),
-            FamilyKind::Reference => Some(RegulatorKind::Reference),
-            FamilyKind::Switching => Some(RegulatorKind::Switching),
-            FamilyKind::Other => None,
-        });
+        let kind = part.kind.as_ref().and_then(|kind| RegulatorKind::of_family(kind.value));
         InPlace {
             kind,
             polarity: part.polarity.as_ref().map(|polarity| polarity.value),

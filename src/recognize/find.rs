@@ -1,15 +1,16 @@
 //! Finding the regulators and references of a board.
 
-use std::collections::{BTreeMap, BTreeSet};
+use std::collections::BTreeSet;
 
 use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId, supply_name};
-use crate::knowledge::{Family, FamilyKind, Knowledge, Pass, RoleName, Sign};
+use crate::knowledge::{Family, Knowledge, RoleName, Sign};
 use crate::quantity::Grade;
 
 use super::divider::{self, Ends};
 use super::family_match::Matcher;
 use super::feed;
 use super::identity::{self, Known};
+use super::in_place::InPlace;
 use super::kind::{Candidate, worth_looking};
 use super::model::{Design, Divider, Mode, Nominal, NotJudged, Regulator, RegulatorKind, Roles};
 use super::nominal::{self, Told};
@@ -32,52 +33,6 @@ pub trait Overrides {
     fn in_place(&self, reference: &str) -> InPlace<'_> {
         let _ = reference;
         InPlace::default()
-    }
-}
-
-/// What a board file says of a part itself: it wins over all that the schematic tells.
-#[derive(Debug, Clone, Copy, Default)]
-pub struct InPlace<'b> {
-    /// What the part is.
-    pub kind: Option<RegulatorKind>,
-    /// The sign of its output.
-    pub polarity: Option<Sign>,
-    /// Its pass element.
-    pub pass: Option<Pass>,
-    /// Pin number to the roles that the pin may have.
-    pub pins: Option<&'b BTreeMap<String, Vec<RoleName>>>,
-    /// Its fixed output in volts, signed.
-    pub volts: Option<f64>,
-}
-
-impl InPlace<'_> {
-    fn says_anything(&self) -> bool {
-        self.kind.is_some() || self.pins.is_some()
-    }
-
-    /// Puts the declared role in place of each pin's own; of several, the one that the pin seemed to have.
-    fn assign(&self, device: &Device, roles: &mut [RoleName]) {
-        for (pin, role) in device.pins.iter().zip(roles) {
-            let told = self.pins.and_then(|pins| pins.get(&pin.number));
-            if let Some(told) = told.filter(|told| !told.contains(role)) {
-                *role = told.first().copied().unwrap_or(*role);
-            }
-        }
-    }
-}
-
-/// Nothing is declared.
-impl Overrides for () {
-    fn family(&self, _: &str) -> Option<&str> {
-        None
-    }
-
-    fn ignored(&self, _: &str) -> bool {
-        false
-    }
-
-    fn output_voltage(&self, _: &str) -> Option<f64> {
-        None
     }
 }
 
@@ -172,13 +127,8 @@ impl Finder<'_> {
 
     /// What the part is: declared, of a declared family, else as its names, pins and text tell.
     fn kind(&self, candidate: &Candidate<'_>, known: &Known, family: Option<&Family>) -> Option<RegulatorKind> {
-        let of_family = || match family.filter(|_| known.identity.grade == Grade::Declared)?.kind {
-            FamilyKind::Series => Some(RegulatorKind::Series),
-            FamilyKind::Shunt => Some(RegulatorKind::Shunt),
-            FamilyKind::Reference => Some(RegulatorKind::Reference),
-            FamilyKind::Switching => Some(RegulatorKind::Switching),
-            FamilyKind::Other => None,
-        };
+        let declared = family.filter(|_| known.identity.grade == Grade::Declared);
+        let of_family = || RegulatorKind::of_family(declared?.kind);
         self.in_place.kind.or_else(of_family).or_else(|| candidate.kind(self.knowledge))
     }
 

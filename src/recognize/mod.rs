@@ -13,6 +13,7 @@ mod family_match;
 mod feed;
 mod find;
 mod identity;
+mod in_place;
 mod kind;
 mod model;
 mod nominal;
@@ -28,7 +29,8 @@ mod walk;
 mod words;
 
 pub use bank::{Side, bank, bank_to};
-pub use find::{InPlace, Overrides, recognize};
+pub use find::{Overrides, recognize};
+pub use in_place::InPlace;
 pub use model::{
     Bank, Branch, Design, Divider, EnablePin, Feed, Identity, Mode, Nominal, NotJudged, Regulator, RegulatorId,
     RegulatorKind, Roles,

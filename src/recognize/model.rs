@@ -1,7 +1,7 @@
 //! What was found on the board.
 
 use crate::circuit::{Circuit, DeviceId, NetId};
-use crate::knowledge::{Pass, Sign};
+use crate::knowledge::{FamilyKind, Pass, Sign};
 use crate::quantity::Grade;
 
 /// A regulator or reference of the design, one for each output of a part.
@@ -30,6 +30,18 @@ pub enum RegulatorKind {
 }
 
 impl RegulatorKind {
+    /// What a part of a family of this kind is; `None` for families of parts that are no regulators.
+    #[must_use]
+    pub fn of_family(kind: FamilyKind) -> Option<Self> {
+        match kind {
+            FamilyKind::Series => Some(Self::Series),
+            FamilyKind::Shunt => Some(Self::Shunt),
+            FamilyKind::Reference => Some(Self::Reference),
+            FamilyKind::Switching => Some(Self::Switching),
+            FamilyKind::Other => None,
+        }
+    }
+
     /// Its name in results and in the check language.
     #[must_use]
     pub fn name(self) -> &'static str {

@@ -18,7 +18,7 @@ pub(super) fn figures(list: &[(String, Quantity)], indent: &str, width: usize) -
     let mut told = BTreeSet::new();
     let rows: Vec<Vec<String>> = list
         .iter()
-        .map(|(name, figure)| vec![name.replace('_', " "), range(figure), evidence(figure, &mut told)])
+        .map(|(name, figure)| vec![last(name).replace('_', " "), range(figure), evidence(figure, &mut told)])
         .collect();
     table(&rows, indent, width)
 }
@@ -163,4 +163,9 @@ pub(super) fn every_evidence(figure: &Quantity) -> Vec<String> {
         pieces.push(told(evidence) + &tail);
     }
     pieces
+}
+
+/// The figure's own name: that of a member of a group is written `one.esr`, and the finding names the member.
+fn last(name: &str) -> &str {
+    name.rsplit('.').next().unwrap_or(name)
 }

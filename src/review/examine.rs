@@ -1,5 +1,7 @@
 //! The whole way of one board.
 
+use std::collections::BTreeSet;
+
 use super::accept::{self, Accepted};
 use super::concern;
 use super::fingerprint::fingerprints;
@@ -8,7 +10,7 @@ use crate::board::{Board, Place, SettingValue};
 use crate::checks::cases::Told;
 use crate::checks::{self, Checks, Counts, Finding, Override, Verdict};
 use crate::circuit::Circuit;
-use crate::facts::{Facts, Subject};
+use crate::facts::{Facts, Subject, SubjectKind};
 use crate::knowledge::Knowledge;
 use crate::netlist::{self, Netlist};
 use crate::recognize::{Design, recognize};
@@ -136,7 +138,8 @@ fn judged(
     today: &str,
 ) -> (Vec<Reviewed>, Counts, Vec<Told>) {
     let facts = Facts::new(design, board, knowledge);
-    let subjects: Vec<Subject> = facts.regulators().map(|(id, _)| Subject::Regulator(id)).collect();
+    let kinds: BTreeSet<SubjectKind> = checks.iter().map(|check| check.about).collect();
+    let subjects: Vec<Subject> = kinds.into_iter().flat_map(|kind| facts.subjects(kind)).collect();
     let judgement = checks::judge(checks, &subjects, &facts);
     let told = Told::of(&judgement.outcomes, &facts);
     let prints = fingerprints(&facts, netlist, &judgement.findings);

@@ -7,6 +7,7 @@ use super::check::{Check, Rule};
 use super::finding::{Counts, Finding, Judgement, Outcome, Point};
 use super::language::{Answer, Condition, Context, Decision, Figures, Judged, Path, value};
 use super::set::Checks;
+use super::template::Template;
 use super::verdict::{Level, Verdict};
 use super::wording::{Filling, missing};
 use crate::facts::{Subject, Value};
@@ -126,21 +127,7 @@ fn say(check: &Check, index: usize, rule: &Rule, judged: Judged, context: Contex
             lines.push(hint.text);
         }
     }
-    let mut quantities = listed(check, context);
-    for (name, figure) in &decision.figures {
-        if quantities.iter().all(|(known, _)| known != name) {
-            quantities.push((name.clone(), figure.clone()));
-        }
-    }
-    for path in template.into_iter().flat_map(super::template::Template::figures) {
-        let name = path.written();
-        if let Value::Figure(figure) = value(context, path)
-            && !matches!(path, Path::Setting(_))
-            && quantities.iter().all(|(known, _)| *known != name)
-        {
-            quantities.push((name, figure));
-        }
-    }
+    let quantities = shown(check, template, &decision, context);
     Some(Finding {
         check: check.name.clone(),
         verdict,
@@ -159,6 +146,40 @@ fn say(check: &Check, index: usize, rule: &Rule, judged: Judged, context: Contex
         merged: Vec::new(),
         suppresses: Vec::new(),
     })
+}
+
+/// The figures of a finding: those that the check lists, those that decided, and those that the message prints.
+fn shown(
+    check: &Check,
+    template: Option<&Template>,
+    decision: &Decision,
+    context: Context<'_>,
+) -> Vec<(String, Quantity)> {
+    let mut quantities = listed(check, context);
+    for (name, figure) in &decision.figures {
+        if quantities.iter().all(|(known, _)| known != name) && is_news(figure, &quantities) {
+            quantities.push((name.clone(), figure.clone()));
+        }
+    }
+    for path in template.into_iter().flat_map(Template::figures) {
+        let name = path.written();
+        if let Value::Figure(figure) = value(context, path)
+            && !matches!(path, Path::Setting(_))
+            && quantities.iter().all(|(known, _)| *known != name)
+            && is_news(&figure, &quantities)
+        {
+            quantities.push((name, figure));
+        }
+    }
+    quantities
+}
+
+/// Whether a figure rests on other things than each of those listed: one that rests on just the same is only another
+/// end or reading of it, and says nothing more.
+fn is_news(figure: &Quantity, listed: &[(String, Quantity)]) -> bool {
+    let keys = |quantity: &Quantity| quantity.evidence().map(|evidence| evidence.key.clone()).collect::<Vec<_>>();
+    let own = keys(figure);
+    own.is_empty() || listed.iter().all(|(_, other)| keys(other) != own)
 }
 
 /// The figures that the check lists whatever decides; those that do not apply or are missing are left out.

@@ -28,6 +28,14 @@ pub(super) const DEFINITIONS: &[Definition] = &[
     farads("minimum_input_capacitance", "the least input capacitance that the part asks for", |facts, subject| {
         of(facts, subject, |regulator| facts.minimum(regulator, Side::Input))
     }),
+    farads("asked_capacitance", "the output capacitance that the sheet states, as one value", |facts, subject| {
+        of(facts, subject, |regulator| facts.asked(regulator, Side::Output))
+    }),
+    farads(
+        "asked_input_capacitance",
+        "the input capacitance that the sheet states, as one value",
+        |facts, subject| of(facts, subject, |regulator| facts.asked(regulator, Side::Input)),
+    ),
     farads("maximum_capacitance", "the largest output capacitance that the sheet allows", |facts, subject| {
         of(facts, subject, |regulator| facts.maximum(regulator))
     }),
@@ -120,16 +128,44 @@ impl Facts<'_> {
         if demand.kind == MinimumKind::Optional {
             return Value::inapplicable("the part does without");
         }
+        match self.stated(regulator, side, demand) {
+            Some((minimum, farads)) => {
+                Value::Figure(self.bound(regulator, (side, demand.kind), minimum, farads, what))
+            }
+            None => Value::inapplicable("the sheet names no minimum"),
+        }
+    }
+
+    /// The figure of the sheet that holds for this part as it is wired, and its value in farads.
+    fn stated<'d>(
+        &self,
+        regulator: &Regulator,
+        side: Side,
+        demand: &'d CapacitorDemand,
+    ) -> Option<(&'d Cited<f64>, f64)> {
         let bypassed = side == Side::Output && self.is_bypassed(regulator);
         let bypass = demand.with_bypass.as_ref().filter(|_| bypassed);
         let electrolytic = demand.minimum_electrolytic.as_ref();
         let electrolytic = electrolytic.filter(|_| side == Side::Output && self.bulk_is(regulator, "electrolytic"));
-        let special = electrolytic.or(bypass);
-        let Some(minimum) = special.or(demand.minimum.as_ref()) else {
-            return Value::inapplicable("the sheet names no minimum");
+        match electrolytic.or(bypass) {
+            Some(special) => Some((special, special.value)),
+            None => {
+                let minimum = demand.minimum.as_ref()?;
+                Some((minimum, self.at_output(regulator, demand, minimum)))
+            }
+        }
+    }
+
+    /// What a reader is told to be asked for: the sheet's own figure, whatever the part may need of it.
+    fn asked(&self, regulator: &Regulator, side: Side) -> Value {
+        let minimum = match self.minimum(regulator, side) {
+            Value::Figure(minimum) => minimum,
+            other => return other,
         };
-        let farads = if special.is_some() { minimum.value } else { self.at_output(regulator, demand, minimum) };
-        Value::Figure(self.bound(regulator, (side, demand.kind), minimum, farads, what))
+        let stated = self.demand(regulator, side).and_then(|(_, demand)| self.stated(regulator, side, demand));
+        let stated = stated.filter(|_| minimum.grade() != Some(Grade::Declared)).map(|(_, farads)| farads);
+        let Some(farads) = stated.or(minimum.nominal()) else { return Value::Figure(minimum) };
+        Value::Figure(Quantity::constant(Dimension::CAPACITANCE, farads).also_resting_on(&minimum))
     }
 
     /// The minimum for the part's own output voltage, where the sheet makes it depend on that.

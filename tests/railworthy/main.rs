@@ -25,3 +25,4 @@ mod result_json;
 mod shared;
 mod small_board;
 mod spoiled;
+mod user_checks;

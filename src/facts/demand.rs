@@ -146,7 +146,9 @@ impl Facts<'_> {
         let bypassed = side == Side::Output && self.is_bypassed(regulator);
         let bypass = demand.with_bypass.as_ref().filter(|_| bypassed);
         let electrolytic = demand.minimum_electrolytic.as_ref();
-        let electrolytic = electrolytic.filter(|_| side == Side::Output && self.bulk_is(regulator, "electrolytic"));
+        // A polarized symbol alone may as well be a tantalum, for which the sheet asks for less.
+        let surely = || self.bulk_is(regulator, "electrolytic").is_some_and(Grade::is_fact);
+        let electrolytic = electrolytic.filter(|_| side == Side::Output && surely());
         match electrolytic.or(bypass) {
             Some(special) => Some((special, special.value)),
             None => {

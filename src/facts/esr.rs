@@ -178,11 +178,11 @@ impl Facts<'_> {
             .collect()
     }
 
-    /// Whether the capacitor that dominates the output bank is of a technology.
-    pub(super) fn bulk_is(&self, regulator: &Regulator, technology: &str) -> bool {
+    /// The grade on which the capacitor that dominates the output bank is of a technology; `None` where it is another.
+    pub(super) fn bulk_is(&self, regulator: &Regulator, technology: &str) -> Option<Grade> {
         let bulk = self.bulk(regulator);
-        let told = bulk.first().and_then(|branch| self.technology(branch.capacitor));
-        told.is_some_and(|told| told.technology.name == technology)
+        let told = self.technology(bulk.first()?.capacitor)?;
+        (told.technology.name == technology).then_some(told.evidence.grade)
     }
 
     fn branch_esr(&self, branch: &Branch) -> Quantity {
@@ -264,7 +264,10 @@ impl Facts<'_> {
         let Some((_, demand)) = self.first_family(regulator, |family| family.output_capacitor.as_ref()) else {
             return Value::inapplicable("no data sheet is known");
         };
-        if end == End::High && demand.minimum_electrolytic.is_some() && self.bulk_is(regulator, "electrolytic") {
+        if end == End::High
+            && demand.minimum_electrolytic.is_some()
+            && self.bulk_is(regulator, "electrolytic").is_some()
+        {
             return Value::inapplicable("the sheet admits an electrolytic capacitor by its capacitance");
         }
         let Some(window) = &demand.esr else {

@@ -6,6 +6,7 @@ mod archive;
 mod check_values;
 mod circuit_corpus;
 mod cli;
+mod corpus_verdicts;
 mod declared_parts;
 mod devices_symbols;
 mod documents;

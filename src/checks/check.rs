@@ -1,11 +1,11 @@
 //! A check: what it asks of which subjects, and how it says what it found.
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 use super::language::{Condition, Requirement};
 use super::template::Template;
 use super::verdict::Verdict;
-use crate::facts::SubjectKind;
+use crate::facts::{SubjectKind, definition};
 use crate::quantity::{Dimension, Quantity};
 
 /// A check, loaded and typed.
@@ -125,6 +125,16 @@ pub enum Citation {
 }
 
 impl Check {
+    /// The figures that its requirements and conditions name, sorted.
+    #[must_use]
+    pub fn figures(&self) -> Vec<String> {
+        let rules = self.requires.iter().flat_map(|rule| [Some(rule.text.as_str()), rule.when_text.as_deref()]);
+        let texts = rules.chain([self.when_text.as_deref()]).flatten();
+        let words = texts.flat_map(|text| text.split(|sign: char| !(sign.is_ascii_alphanumeric() || sign == '_')));
+        let known = |word: &&str| definition(self.about, word).is_some();
+        words.filter(known).map(str::to_owned).collect::<BTreeSet<_>>().into_iter().collect()
+    }
+
     /// The dimensions of its settings.
     #[must_use]
     pub fn setting_dimensions(&self) -> BTreeMap<String, Dimension> {

@@ -31,6 +31,8 @@ pub(super) enum Command {
     Explain(Explain),
     /// List what is known: checks, part families, supplies, technologies, quantities
     Catalog(Catalog),
+    /// Begin a part file for a part that is not known, from what its symbol tells
+    Draft(Draft),
     /// Validate rule folders and run the cases of their checks
     Vet(Vet),
 }
@@ -105,10 +107,32 @@ pub(super) struct Catalog {
 }
 
 #[derive(Debug, Args)]
+pub(super) struct Draft {
+    /// Netlist export; `-` reads standard input
+    #[arg(value_name = "BOARD.net")]
+    pub(super) netlist: PathBuf,
+
+    /// The part of the board
+    #[arg(value_name = "PART")]
+    pub(super) part: String,
+
+    #[command(flatten)]
+    pub(super) input: Input,
+
+    /// Write the part file to a file, whole or not at all
+    #[arg(long, value_name = "FILE")]
+    pub(super) output: Option<PathBuf>,
+}
+
+#[derive(Debug, Args)]
 pub(super) struct Vet {
     /// Rule folders; without one the built-in rules
     #[arg(value_name = "DIR")]
     pub(super) folders: Vec<PathBuf>,
+
+    /// List what the built-in part files lack, too; of folders that are named it is always listed
+    #[arg(long)]
+    pub(super) lacks: bool,
 }
 
 /// What a board is judged under.

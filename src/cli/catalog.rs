@@ -24,7 +24,7 @@ pub(super) fn run(typed: &Catalog, terminal: Terminal, to: &mut Streams<'_>) -> 
     };
     let found = match typed.what {
         Shelf::Checks => rules.checks.get(name).map(|check| report::explain_check(check, look)),
-        Shelf::Parts => catalog::part(&rules.knowledge, name, look),
+        Shelf::Parts => catalog::part(&rules.knowledge, &rules.checks, name, look),
         Shelf::Supplies => catalog::supply(&rules.knowledge, name, look),
         Shelf::Technologies => catalog::technology(&rules.knowledge, name, look),
         Shelf::Quantities => catalog::quantity(name, look),

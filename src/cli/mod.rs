@@ -4,6 +4,7 @@ mod args;
 mod catalog;
 mod check;
 mod day;
+mod draft;
 mod explain;
 mod input;
 mod rails;
@@ -86,6 +87,7 @@ fn status(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<'
         Command::Rails(rails) => rails::run(rails, terminal, streams),
         Command::Explain(explain) => explain::run(explain, terminal, streams),
         Command::Catalog(catalog) => catalog::run(catalog, terminal, streams),
+        Command::Draft(draft) => draft::run(draft, terminal, streams),
         Command::Vet(vet) => vet::run(vet, terminal, streams),
     }
 }

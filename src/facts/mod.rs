@@ -19,6 +19,7 @@ mod load;
 mod net;
 mod output;
 mod rails;
+mod sheet;
 mod shunt;
 mod startup;
 mod target;
@@ -28,6 +29,7 @@ mod value;
 pub use context::Facts;
 pub use definition::{Definition, ValueKind};
 pub use rails::{Rail, RailOrigin};
+pub use sheet::{SHEET, SheetFigure, lacking};
 pub use value::{Flag, Subject, SubjectKind, Value, Word};
 
 /// Every name of the check language, by the file that computes it.

@@ -42,6 +42,17 @@ pub(super) fn read_dropout(root: &mut Table<'_>, cite: &Cite<'_>) -> Option<Drop
         let key = |point: &DropoutPoint| (point.from_output, point.load);
         key(&one.value).partial_cmp(&key(&other.value)).unwrap_or(std::cmp::Ordering::Equal)
     });
+    let same = dropout.points.windows(2).find(|pair| match pair {
+        [one, next] => one.value.from_output == next.value.from_output && one.value.load == next.value.load,
+        _ => false,
+    });
+    if let Some([point, ..]) = same {
+        root.refuse(
+            "two dropout points are for one load",
+            format!("both at {} A", point.value.load),
+            "keep one, or tell with `from_output` which versions each is for",
+        );
+    }
     (!dropout.points.is_empty()).then_some(dropout)
 }
 
@@ -124,6 +135,15 @@ fn check_demand(table: &Table<'_>, demand: &CapacitorDemand) {
     let minimum = demand.minimum.as_ref().map_or(0.0, |figure| figure.value);
     if demand.maximum.as_ref().is_some_and(|figure| figure.value < minimum) {
         table.refuse("`maximum` is below `minimum`", "in this table", "swap them");
+    }
+    let window = demand.esr.as_ref().map(|esr| (esr.value.low, esr.value.high));
+    if let Some((Some(low), Some(high))) = window
+        && low > high
+    {
+        table.refuse("`esr_min` is above `esr_max`", "in this table", "swap them");
+    }
+    if demand.by_output.iter().any(|(_, farads)| *farads <= 0.0) || minimum < 0.0 {
+        table.refuse("a capacitance is above zero", "in this table", "write what the sheet asks for");
     }
 }
 

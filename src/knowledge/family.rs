@@ -16,7 +16,7 @@ pub(super) fn read_family(document: &Document, file: &str) -> Option<Family> {
     let cite = Cite::of_file(&mut root, &sources);
     let name = root.require("family").and_then(|value| value.text());
     let kind = root.require("kind").and_then(|value| word(&value.text()?, "kind of part", FamilyKind::ALL));
-    let mut family = empty(name.map_or("", |text| text.as_str()), kind.unwrap_or(FamilyKind::Other), file);
+    let mut family = Family::unknown(name.map_or("", |text| text.as_str()), kind.unwrap_or(FamilyKind::Other), file);
     read_identity(&mut root, &mut family);
     read_names(&mut root, &mut family);
     family.pass = root.take("pass").and_then(|value| {
@@ -39,34 +39,37 @@ pub(super) fn read_family(document: &Document, file: &str) -> Option<Family> {
     (!document.has_problems()).then_some(family)
 }
 
-/// A family of which nothing is known yet.
-fn empty(name: &str, kind: FamilyKind, file: &str) -> Family {
-    Family {
-        name: name.to_owned(),
-        group: name.split(" / ").next().unwrap_or(name).to_owned(),
-        maker: String::new(),
-        maker_words: Vec::new(),
-        version_of: None,
-        names: Vec::new(),
-        voltages: Vec::new(),
-        codes: BTreeMap::new(),
-        adjust_codes: Vec::new(),
-        kind,
-        polarity: Sign::Positive,
-        pass: None,
-        fixed: false,
-        adjust: None,
-        figures: BTreeMap::new(),
-        by_output: BTreeMap::new(),
-        dropout: None,
-        input_capacitor: None,
-        output_capacitor: None,
-        bypass_capacitor: None,
-        enable: None,
-        packages: BTreeMap::new(),
-        note: None,
-        sources: Vec::new(),
-        file: file.to_owned(),
+impl Family {
+    /// A family of which nothing but its name and kind is known.
+    #[must_use]
+    pub fn unknown(name: &str, kind: FamilyKind, file: &str) -> Self {
+        Self {
+            name: name.to_owned(),
+            group: name.split(" / ").next().unwrap_or(name).to_owned(),
+            maker: String::new(),
+            maker_words: Vec::new(),
+            version_of: None,
+            names: Vec::new(),
+            voltages: Vec::new(),
+            codes: BTreeMap::new(),
+            adjust_codes: Vec::new(),
+            kind,
+            polarity: Sign::Positive,
+            pass: None,
+            fixed: false,
+            adjust: None,
+            figures: BTreeMap::new(),
+            by_output: BTreeMap::new(),
+            dropout: None,
+            input_capacitor: None,
+            output_capacitor: None,
+            bypass_capacitor: None,
+            enable: None,
+            packages: BTreeMap::new(),
+            note: None,
+            sources: Vec::new(),
+            file: file.to_owned(),
+        }
     }
 }
 
@@ -180,6 +183,7 @@ fn check_consistency(root: &mut Table<'_>, family: &Family) {
         ("bias_min", "bias_max"),
         ("output_min", "output_max"),
         ("tolerance_initial", "tolerance"),
+        ("input_min", "input_recommended_max"),
     ] {
         if let (Some(small), Some(large)) = (high(smaller), high(larger))
             && small > large

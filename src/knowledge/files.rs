@@ -9,7 +9,10 @@ use include_dir::{Dir, include_dir};
 use crate::source::toml::Document;
 use crate::source::{Problem, Source};
 
-static RULES: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules");
+static PARTS: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/parts");
+static TECHNOLOGIES: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/technologies");
+static SUPPLIES: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/supplies");
+static CHECKS: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/checks");
 
 /// Largest file of a knowledge folder in bytes.
 const LARGEST_FILE: u64 = 4 << 20;
@@ -32,9 +35,23 @@ impl Shelf {
         (Self::Supplies, "supplies", "supply"),
     ];
 
+    fn built_in(self) -> &'static Dir<'static> {
+        match self {
+            Self::Parts => &PARTS,
+            Self::Technologies => &TECHNOLOGIES,
+            Self::Supplies => &SUPPLIES,
+        }
+    }
+
     fn folder(self) -> &'static str {
         Self::ALL.iter().find(|(shelf, ..)| *shelf == self).map_or("", |(_, folder, _)| folder)
     }
+}
+
+/// The text of a built-in part file, by its path below `rules/`; `None` where there is none.
+#[must_use]
+pub fn built_in_part(file: &str) -> Option<&'static str> {
+    PARTS.get_file(file.strip_prefix("parts/")?)?.contents_utf8()
 }
 
 /// A check folder: where it is, and its files.
@@ -62,7 +79,7 @@ impl Files {
     pub(super) fn built_in() -> Self {
         let mut files = Self::default();
         for (shelf, folder, _) in Shelf::ALL {
-            for file in RULES.get_dir(folder).into_iter().flat_map(Dir::files) {
+            for file in shelf.built_in().files() {
                 let Some(name) = file.path().file_name().and_then(|name| name.to_str()) else { continue };
                 if let Some(text) = file.contents_utf8().filter(|_| is_toml(name)) {
                     let path = format!("rules/{folder}/{name}");
@@ -70,7 +87,7 @@ impl Files {
                 }
             }
         }
-        for folder in RULES.get_dir("checks").into_iter().flat_map(Dir::dirs) {
+        for folder in CHECKS.dirs() {
             let Some(name) = folder.path().file_name().and_then(|name| name.to_str()) else { continue };
             let texts = folder.files().filter_map(|file| {
                 let name = file.path().file_name()?.to_str()?;

@@ -14,6 +14,16 @@ const OHM: Dimension = Dimension::RESISTANCE;
 const TEMPERATURE: Dimension = Dimension::TEMPERATURE;
 const TIME: Dimension = Dimension::TIME;
 
+/// The figures without a unit that are parts of another figure, which people read as per cent.
+const RELATIVE: &[&str] =
+    &["tolerance", "tolerance_initial", "capacitance_life_change", "temperature_change", "ageing", "bias_error"];
+
+/// Whether a figure without a unit is a part of another figure.
+#[must_use]
+pub fn is_relative(key: &str) -> bool {
+    RELATIVE.contains(&key)
+}
+
 impl Family {
     /// The figure keys of a part file. Voltages are magnitudes: of a negative part, below ground. A figure of two values
     /// is typical and maximum.

@@ -15,7 +15,8 @@ mod technology;
 #[cfg(test)]
 mod tests;
 
-pub use keys::FigureKey;
+pub use files::built_in_part;
+pub use keys::{FigureKey, is_relative};
 pub use lookup::DropoutAt;
 pub use model::{
     Active, AdjustSide, Basis, CapacitorDemand, Cited, Dropout, DropoutPoint, EnableSpec, EsrWindow, Family,

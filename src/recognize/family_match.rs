@@ -3,6 +3,8 @@
 //! Patterns are written for people (`LM1117*{V}*`); they are cut into tokens once, and a name is walked along them with
 //! the set of places that can be reached, so that the cost is linear in the name whatever the pattern.
 
+use std::cell::OnceCell;
+
 use crate::knowledge::{Family, FamilyKind, VOLTAGE_CODE};
 
 /// A family whose pattern fits a name.
@@ -54,6 +56,8 @@ struct Pattern {
 pub(super) struct Matcher<'a> {
     families: &'a [Family],
     patterns: Vec<Pattern>,
+    /// The voltage codes of each family, spelled out when first asked for.
+    codes: Vec<OnceCell<Vec<(String, Code)>>>,
 }
 
 /// No order code is longer; what follows is prose.
@@ -110,7 +114,7 @@ fn compile(family: usize, pattern: &str) -> Pattern {
 
 /// The ways in which a voltage is spelled as a code, without separators. `rounded`: references are called by fewer
 /// digits than they have.
-fn spellings(volts: f64, rounded: bool) -> Vec<String> {
+pub(super) fn spellings(volts: f64, rounded: bool) -> Vec<String> {
     let mut found = vec![format!("{volts}")];
     for decimals in 1..=3_usize {
         let text = format!("{volts:.decimals$}");
@@ -158,7 +162,12 @@ impl<'a> Matcher<'a> {
             .iter()
             .enumerate()
             .flat_map(|(index, family)| family.names.iter().map(move |name| compile(index, name)));
-        Self { patterns: patterns.collect(), families }
+        Self { patterns: patterns.collect(), families, codes: vec![OnceCell::new(); families.len()] }
+    }
+
+    fn codes(&self, family: usize) -> &[(String, Code)] {
+        let (Some(kept), Some(family)) = (self.codes.get(family), self.families.get(family)) else { return &[] };
+        kept.get_or_init(|| codes_of(family))
     }
 
     /// The families that a reduced name fits: those with a voltage code first, then by how telling the pattern is, then
@@ -173,9 +182,8 @@ impl<'a> Matcher<'a> {
                     continue;
                 }
                 let coded = pattern.tokens.contains(&Token::Code);
-                let family = self.families.get(pattern.family).filter(|_| coded);
-                let codes = family.map(codes_of).unwrap_or_default();
-                let Some((base, code)) = walk(pattern, &rest, &codes) else { continue };
+                let codes = if coded { self.codes(pattern.family) } else { &[] };
+                let Some((base, code)) = walk(pattern, &rest, codes) else { continue };
                 let hit = Hit { family: pattern.family, literal: pattern.literal, base: start + base, code };
                 match found.iter_mut().find(|other| other.family == hit.family) {
                     Some(other) if rank(other) < rank(&hit) => *other = hit,

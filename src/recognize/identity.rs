@@ -8,7 +8,7 @@ use super::family_match::{Hit, Matcher, rank, reduced};
 use super::model::Identity;
 
 /// Field names that hold a maker's part number. Order numbers of distributors name no part.
-const NUMBER_FIELDS: &[&str] = &[
+pub(super) const NUMBER_FIELDS: &[&str] = &[
     "MPN",
     "MFPN",
     "MFR_PN",
@@ -165,7 +165,7 @@ fn take(known: &mut Known, text: &str, told_by: &str, place: Place, grade: Grade
 
 /// The families that are meant, best first. Makers sell versions of their own under a common name: such a version is
 /// taken only where a field names its maker, and then before the others.
-fn families(hits: &[Hit], maker: &str, knowledge: &Knowledge) -> Vec<usize> {
+pub(super) fn families(hits: &[Hit], maker: &str, knowledge: &Knowledge) -> Vec<usize> {
     let of_maker = |index: usize| {
         let words = knowledge.families.get(index).map_or(&[][..], |family| family.maker_words.as_slice());
         !maker.is_empty() && words.iter().any(|word| maker.contains(word.as_str()))
@@ -191,11 +191,40 @@ fn families(hits: &[Hit], maker: &str, knowledge: &Knowledge) -> Vec<usize> {
     found
 }
 
-/// What the fields say of the maker, lower case.
-fn maker(device: &Device) -> String {
+/// The families of a name that nothing tells apart: those that are meant without a maker, and those of one maker. Each
+/// with the maker that must be named for it.
+pub(super) fn rivals(hits: &[Hit], knowledge: &Knowledge) -> Vec<(String, Vec<usize>)> {
+    let family = |index: &usize| knowledge.families.get(*index);
+    let mut groups: Vec<(String, Vec<usize>)> = vec![(String::new(), families(hits, "", knowledge))];
+    let named = hits.iter().filter_map(|hit| family(&hit.family)).map(|family| family.name.as_str());
+    let named: Vec<&str> = named.collect();
+    let versions = knowledge
+        .families
+        .iter()
+        .filter(|family| family.version_of.as_deref().is_some_and(|parent| named.contains(&parent)));
+    for word in versions.flat_map(|version| &version.maker_words) {
+        let of_maker = |index: &usize| {
+            family(index).is_some_and(|family| family.maker_words.iter().any(|own| word.contains(own.as_str())))
+        };
+        groups.push((word.clone(), families(hits, word, knowledge).into_iter().filter(of_maker).collect()));
+    }
+    for (_, group) in &mut groups {
+        group.sort_unstable();
+    }
+    groups.retain(|(_, group)| group.len() > 1);
+    groups
+}
+
+/// What the fields say of the maker, or nothing.
+pub(super) fn maker_as_written(device: &Device) -> &str {
     const FIELDS: &[&str] =
         &["MANUFACTURER", "MFR", "MFG", "MAKER", "MANUFACTURER_NAME", "MANUFACTURER NAME", "VENDOR", "MF"];
-    FIELDS.iter().find_map(|name| device.field(name)).unwrap_or("").to_lowercase()
+    FIELDS.iter().find_map(|name| device.field(name)).unwrap_or("")
+}
+
+/// The same, lower case.
+fn maker(device: &Device) -> String {
+    maker_as_written(device).to_lowercase()
 }
 
 /// The value names one part and the symbol another: worth a remark, and the value wins.

@@ -16,11 +16,13 @@ mod identity;
 mod in_place;
 mod kind;
 mod model;
+mod named;
 mod nominal;
 mod order;
 mod outputs;
 mod pin_name;
 mod roles;
+mod sketch;
 mod stated;
 #[cfg(test)]
 mod tests;
@@ -35,3 +37,5 @@ pub use model::{
     Bank, Branch, Design, Divider, EnablePin, Feed, Identity, Mode, Nominal, NotJudged, Regulator, RegulatorId,
     RegulatorKind, Roles,
 };
+pub use named::{Named, Overlap, families_of_name, overlaps};
+pub use sketch::{NoSketch, Sketch, sketch};

@@ -2,17 +2,16 @@
 
 use std::collections::BTreeMap;
 
+pub use super::catalog_part::{lacking_figures, part, parts};
 use super::figures::title;
 use super::inert::inert;
 use super::layout::{table, wrapped};
 use super::look::Look;
+use super::part_rows::shown;
 use crate::checks::Checks;
 use crate::facts::{DEFINITIONS, Definition, ValueKind};
-use crate::knowledge::{
-    Basis, CapacitorDemand, Cited, Dropout, Family, Knowledge, MinimumKind, Pass, Sign, SourceNote, Supply,
-    Technology,
-};
-use crate::quantity::{Dimension, Range, print_amount, print_range};
+use crate::knowledge::{Cited, Knowledge, SourceNote, Supply, Technology};
+use crate::quantity::{Dimension, Range, print_range};
 
 /// Every check with its question, by group.
 #[must_use]
@@ -31,107 +30,19 @@ pub fn checks(checks: &Checks, look: Look) -> String {
     super::guarded(&text)
 }
 
-/// Every part family in a line.
-#[must_use]
-pub fn parts(knowledge: &Knowledge, look: Look) -> String {
-    let rows: Vec<Vec<String>> = knowledge
-        .families
-        .iter()
-        .map(|family| {
-            vec![
-                inert(&family.name).into_owned(),
-                kind(family),
-                inert(&family.maker).into_owned(),
-                inert(&family.names.join(" ")).into_owned(),
-            ]
-        })
-        .collect();
-    super::guarded(&table(&rows, "", look.width()))
-}
-
-fn kind(family: &Family) -> String {
-    let negative = if family.polarity == Sign::Negative { ", negative" } else { "" };
-    format!("{}{negative}", family.kind.name())
-}
-
-/// A part family in full; `None` where no family has the name.
-#[must_use]
-pub fn part(knowledge: &Knowledge, name: &str, look: Look) -> Option<String> {
-    let family = knowledge.families.iter().find(|family| family.name.eq_ignore_ascii_case(name))?;
-    let mut text = format!("{} · {} · {}\n", look.bold(&inert(&family.name)), inert(&family.maker), kind(family));
-    text.push_str(&wrapped(&inert(&family.names.join(" ")), "  names: ", "         ", look.width()));
-    let mut rows = Vec::new();
-    if let Some(pass) = &family.pass {
-        rows.push(vec!["pass".to_owned(), Pass::name(pass.value).to_owned(), title(&pass.source)]);
-    }
-    rows.extend(figures(&family.figures, Family::FIGURES));
-    rows.extend(family.dropout.iter().flat_map(dropout));
-    let demands = [("input capacitor", &family.input_capacitor), ("output capacitor", &family.output_capacitor)];
-    for (what, demand) in demands {
-        rows.extend(demand.iter().map(|demand| capacitor(what, demand)));
-    }
-    for (name, package) in &family.packages {
-        let heat = package.junction_to_ambient.as_ref();
-        rows.extend(heat.map(|heat| {
-            let shown = print_amount(heat.value, Dimension::THERMAL_RESISTANCE);
-            vec![inert(name).into_owned(), shown, title(&heat.source)]
-        }));
-    }
-    text.push_str(&table(&rows, "  ", look.width()));
-    if let Some(note) = &family.note {
-        text.push_str(&wrapped(&inert(note), "  note: ", "        ", look.width()));
-    }
-    text.push_str(&sources(&family.sources, &family.file, look));
-    Some(super::guarded(&text))
-}
-
 fn figures(
     list: &BTreeMap<String, Cited<Range>>,
     keys: &[(&'static str, Dimension, &'static str)],
 ) -> Vec<Vec<String>> {
     let row = |(key, dimension, _): &(&'static str, Dimension, &'static str)| {
         let figure = list.get(*key)?;
-        Some(vec![key.replace('_', " "), print_range(figure.value, *dimension), title(&figure.source)])
+        Some(vec![key.replace('_', " "), shown(key, figure.value, *dimension), title(&figure.source)])
     };
     keys.iter().filter_map(row).collect()
 }
 
-fn dropout(dropout: &Dropout) -> Vec<Vec<String>> {
-    let point = |cited: &Cited<crate::knowledge::DropoutPoint>| {
-        let point = cited.value;
-        let top = point.maximum.unwrap_or(point.typical);
-        let shown = print_range(Range::between(point.typical, top), Dimension::VOLTAGE);
-        let from = if point.from_output > 0.0 {
-            format!(", outputs from {}", print_amount(point.from_output, Dimension::VOLTAGE))
-        } else {
-            String::new()
-        };
-        let load = print_amount(point.load, Dimension::CURRENT);
-        vec!["dropout".to_owned(), format!("{shown} at {load}{from}"), title(&cited.source)]
-    };
-    dropout.points.iter().map(point).collect()
-}
-
-fn capacitor(what: &str, demand: &CapacitorDemand) -> Vec<String> {
-    let kind = match demand.kind {
-        MinimumKind::Required => "required",
-        MinimumKind::Recommended => "recommended",
-        MinimumKind::Recalled => "recalled",
-        MinimumKind::Optional => "optional",
-    };
-    let basis = match demand.basis {
-        Basis::Nominal => "as marked",
-        Basis::Effective => "as left under bias",
-    };
-    let minimum = demand.minimum.as_ref();
-    let shown = minimum.map_or_else(String::new, |cited| {
-        format!("{} or more {basis}, ", print_amount(cited.value, Dimension::CAPACITANCE))
-    });
-    let source = minimum.map(|cited| title(&cited.source)).unwrap_or_default();
-    vec![what.to_owned(), format!("{shown}{kind}"), source]
-}
-
-fn sources(sources: &[SourceNote], file: &str, look: Look) -> String {
+/// The sources of a file, with its name.
+pub(super) fn sources(sources: &[SourceNote], file: &str, look: Look) -> String {
     let mut text = String::new();
     for source in sources {
         let read = if source.read { "" } else { " (not read: recalled)" };
@@ -189,7 +100,7 @@ pub fn technology(knowledge: &Knowledge, name: &str, look: Look) -> Option<Strin
     for (name, dimension, _) in Technology::TABLES {
         for (row, figure) in technology.tables.get(*name).into_iter().flatten() {
             let what = format!("{}, {}", name.replace('_', " "), inert(row));
-            rows.push(vec![what, print_range(figure.value, *dimension), title(&figure.source)]);
+            rows.push(vec![what, shown(name, figure.value, *dimension), title(&figure.source)]);
         }
     }
     text.push_str(&table(&rows, "  ", look.width()));

@@ -2,7 +2,9 @@
 
 mod board;
 pub mod catalog;
+mod catalog_part;
 mod caution;
+mod draft;
 mod excerpt;
 mod explain;
 mod figures;
@@ -14,6 +16,7 @@ mod json_text;
 mod json_value;
 mod layout;
 mod look;
+mod part_rows;
 mod problem;
 mod rails;
 mod settle;
@@ -21,11 +24,13 @@ mod text;
 mod vet;
 
 pub use board::BoardResult;
+pub use draft::{draft, known as known_draft};
 pub use explain::explain_check;
 pub use inert::{acts, guarded, inert, inert_short};
 pub use json::check as check_json;
 pub use json_rails::rails as rails_json;
 pub use look::Look;
+pub use part_rows::{PartRow, part_rows};
 pub use problem::{problem, problems};
 pub use rails::{explain_part, rails as rails_text, regulator_names};
 pub use text::{TextOptions, check as check_text};

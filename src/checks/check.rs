@@ -130,14 +130,38 @@ impl Check {
     pub fn figures(&self) -> Vec<String> {
         let rules = self.requires.iter().flat_map(|rule| [Some(rule.text.as_str()), rule.when_text.as_deref()]);
         let texts = rules.chain([self.when_text.as_deref()]).flatten();
-        let words = texts.flat_map(|text| text.split(|sign: char| !(sign.is_ascii_alphanumeric() || sign == '_')));
         let known = |word: &&str| definition(self.about, word).is_some();
-        words.filter(known).map(str::to_owned).collect::<BTreeSet<_>>().into_iter().collect()
+        texts.flat_map(names).filter(known).map(str::to_owned).collect::<BTreeSet<_>>().into_iter().collect()
     }
 
     /// The dimensions of its settings.
     #[must_use]
     pub fn setting_dimensions(&self) -> BTreeMap<String, Dimension> {
         self.settings.iter().map(|(name, value)| (name.clone(), value.dimension())).collect()
+    }
+}
+
+/// The words of an expression that can be names: not those of a set, nor what a word is compared with.
+fn names(text: &str) -> impl Iterator<Item = &str> {
+    let outside = text.split('{').map(|part| part.rsplit('}').next().unwrap_or(""));
+    outside.flat_map(|part| {
+        let compared = part.split("==").flat_map(|side| side.split("!="));
+        compared.enumerate().flat_map(|(index, side)| {
+            let words = side.split(|sign: char| !(sign.is_ascii_alphanumeric() || sign == '_'));
+            words.filter(|word| !word.is_empty()).skip(usize::from(index > 0))
+        })
+    })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn words_that_are_compared_with_are_no_names() {
+        let found = |text: &str| names(text).collect::<Vec<_>>().join(" ");
+        assert_eq!(found("kind in {series, reference} and a >= b"), "kind in and a b");
+        assert_eq!(found("kind == reference and reference > 1"), "kind and reference 1");
+        assert_eq!(found("mode != fixed or abs(x - y) <= 0.5 * z"), "mode or abs x y 0 5 z");
     }
 }

@@ -142,7 +142,8 @@ fn check_demand(table: &Table<'_>, demand: &CapacitorDemand) {
     {
         table.refuse("`esr_min` is above `esr_max`", "in this table", "swap them");
     }
-    if demand.by_output.iter().any(|(_, farads)| *farads <= 0.0) || minimum < 0.0 {
+    let nothing = demand.minimum.as_ref().is_some_and(|figure| figure.value <= 0.0);
+    if nothing || demand.by_output.iter().any(|(_, farads)| *farads <= 0.0) {
         table.refuse("a capacitance is above zero", "in this table", "write what the sheet asks for");
     }
 }

@@ -68,8 +68,14 @@ fn in_full(family: &Family, checks: &Checks, look: Look) -> String {
         let line = format!("taken in place of {parent} where a field names the maker");
         text.push_str(&wrapped(&inert(&line), "  ", "    ", look.width()));
     }
-    let rows: Vec<Vec<String>> = part_rows(family).iter().map(row).collect();
-    text.push_str(&table(&rows, "  ", look.width()));
+    let rows = part_rows(family);
+    // What needs no source stands ahead of the table, whose columns long texts would tear apart.
+    for row in rows.iter().filter(|row| row.recalled.is_none()) {
+        let line = format!("{}: {}", inert(&row.what), inert(&row.figure));
+        text.push_str(&wrapped(&line, "  ", "    ", look.width()));
+    }
+    let figures: Vec<Vec<String>> = rows.iter().filter_map(figure_row).collect();
+    text.push_str(&table(&figures, "  ", look.width()));
     for (check, keys) in lacks(family, checks) {
         text.push_str(&wrapped(&format!("{check} asks for {keys}"), "  lacks: ", "         ", look.width()));
     }
@@ -80,13 +86,11 @@ fn in_full(family: &Family, checks: &Checks, look: Look) -> String {
     text
 }
 
-fn row(row: &PartRow) -> Vec<String> {
-    let source = match row.recalled {
-        None => String::new(),
-        Some(false) => title(&row.source),
-        Some(true) => format!("recalled: {}", title(&row.source)),
-    };
-    vec![inert(&row.what).into_owned(), inert(&row.figure).into_owned(), source]
+/// A figure with its source, in a line of the table.
+fn figure_row(row: &PartRow) -> Option<Vec<String>> {
+    let source = title(&row.source);
+    let source = if row.recalled? { format!("recalled: {source}") } else { source };
+    Some(vec![inert(&row.what).into_owned(), inert(&row.figure).into_owned(), source])
 }
 
 /// The checks whose figures a family does not state, each with the keys that it lacks.

@@ -211,13 +211,9 @@ fn packages(sketch: &Sketch) -> String {
         let role = |roles: &Vec<RoleName>| roles.iter().map(|role| role.name()).collect::<Vec<_>>().join(" or ");
         let pins: Vec<String> =
             package.pins.iter().map(|(number, roles)| format!("{} = \"{}\"", quoted(number), role(roles))).collect();
-        let _ = write!(
-            text,
-            "\n[packages.{}]\npins = {{ {} }} # as drawn: compare\n# junction_to_ambient = \"? C/W\" # {}\n",
-            quoted(name),
-            pins.join(", "),
-            "junction to ambient on the sheet's board"
-        );
+        let (name, pins) = (quoted(name), pins.join(", "));
+        let _ = write!(text, "\n[packages.{name}]\npins = {{ {pins} }} # by the pins' names: compare\n");
+        text.push_str("# junction_to_ambient = \"? C/W\" # junction to ambient on the sheet's board\n");
     }
     text
 }

@@ -3,9 +3,17 @@
 use std::fs;
 use std::path::Path;
 
+use railworthy::checks::{Checks, DefinedNames};
+use railworthy::circuit::Circuit;
+use railworthy::knowledge::Knowledge;
+use railworthy::netlist;
+use railworthy::recognize::{NoSketch, recognize, sketch};
+use railworthy::report;
+
 use crate::program::{Run, examples, run};
 use crate::project::text;
-use crate::small_board::{Part, netlist};
+use crate::shared::shared_folder;
+use crate::small_board::{Part, netlist as netlist_of};
 
 type Pins = Vec<(&'static str, &'static str, &'static str, &'static str)>;
 
@@ -31,7 +39,7 @@ fn board(part: Part) -> tempfile::TempDir {
         Part::two_ended("C2", "1u", ("+3V3", "GND")),
         Part::two_ended("R1", "1k", ("+3V3", "GND")),
     ];
-    fs::write(folder.path().join("a.net"), netlist(&parts)).unwrap();
+    fs::write(folder.path().join("a.net"), netlist_of(&parts)).unwrap();
     folder
 }
 
@@ -222,4 +230,57 @@ fn a_draft_is_written_to_a_file_whole_or_not_at_all() {
     let refused = run(folder.path(), &["draft", "a.net", "R1", "--output", "r1.toml"]);
     assert_eq!((refused.status, folder.path().join("r1.toml").exists()), (Some(2), false));
     assert_eq!(run(folder.path(), &["draft", "a.net", "U1", "--output", "no/qx10.toml"]).status, Some(2));
+}
+
+#[test]
+#[allow(clippy::print_stderr, reason = "what is drafted is for the reader to inspect")]
+fn drafts_of_real_boards_load_and_make_their_parts_known() {
+    let Some(shared) = shared_folder() else { return };
+    let built_in = Knowledge::built_in();
+    let (checks, _) = Checks::load(&built_in.checks, &DefinedNames);
+    let house = tempfile::tempdir().unwrap();
+    let mut boards = Vec::new();
+    let mut written = std::collections::BTreeSet::new();
+    for entry in fs::read_dir(shared.join("corpus/files")).unwrap().map(Result::unwrap) {
+        let name = entry.file_name().into_string().unwrap();
+        let Ok(read) = netlist::read(&name, &fs::read(entry.path()).unwrap()) else { continue };
+        let design = recognize(Circuit::build(&read).0, &(), &built_in);
+        for regulator in &design.regulators {
+            let reference = &design.circuit.device(regulator.device).reference;
+            let found = match sketch(&design, &built_in, reference) {
+                Ok(found) => found,
+                Err(why) => {
+                    assert!(
+                        matches!(why, NoSketch::Known(..) | NoSketch::Nameless(_) | NoSketch::NotJudged(_)),
+                        "{why:?}"
+                    );
+                    continue;
+                }
+            };
+            eprintln!(
+                "{} {reference}: {} as {:?} {:?}",
+                name.split('-').next().unwrap(),
+                found.name,
+                found.family.names,
+                found.family.voltages
+            );
+            boards.push((entry.path(), reference.clone(), found.name.clone()));
+            if written.insert(found.family.name.clone()) {
+                let file = house.path().join(format!("{}.toml", written.len()));
+                fs::write(file, report::draft(&found, &name, reference, &checks)).unwrap();
+            }
+        }
+    }
+    assert!(!written.is_empty());
+    let (knowledge, problems) = Knowledge::load(&[house.path().to_owned()]);
+    assert!(problems.is_empty(), "{problems:?}");
+    assert_eq!(knowledge.families.len(), built_in.families.len() + written.len());
+    for (path, reference, name) in boards {
+        let read = netlist::read(&name, &fs::read(path).unwrap()).unwrap();
+        let design = recognize(Circuit::build(&read).0, &(), &knowledge);
+        let of_part =
+            |each: &&railworthy::recognize::Regulator| design.circuit.device(each.device).reference == reference;
+        let regulator = design.regulators.iter().find(of_part).unwrap();
+        assert!(!regulator.identity.families.is_empty(), "{reference} {name}");
+    }
 }

@@ -26,18 +26,20 @@ pub(super) fn resolve_line_ends(atom: &str, into: &mut String) {
     }
 }
 
-/// Copies a bare atom in quotes, so that the parser takes it for neither a number nor a comment.
-pub(super) fn quote(atom: &str, into: &mut String) {
+/// Copies a bare atom in quotes, so that the parser takes it for neither a number nor a comment. `plain`: it holds
+/// nothing that would have to be escaped.
+pub(super) fn quote(atom: &str, plain: bool, into: &mut String) {
+    into.reserve(atom.len() + 2);
     into.push('"');
-    if atom.bytes().any(|byte| matches!(byte, b'"' | b'\\')) {
+    if plain {
+        into.push_str(atom);
+    } else {
         for character in atom.chars() {
             if matches!(character, '"' | '\\') {
                 into.push('\\');
             }
             into.push(character);
         }
-    } else {
-        into.push_str(atom);
     }
     into.push('"');
 }

@@ -135,7 +135,7 @@ impl<'a> Builder<'a> {
                         component.sheet = self.value(names, place);
                     }
                 }
-                "tstamp" | "tstamps" => component.ids.extend(form.words()),
+                "tstamp" | "tstamps" => form.words_into(&mut component.ids),
                 "property" => self.field(&mut component.fields, form, place),
                 "fields" => {
                     for field in form.lists().filter(|inner| inner.head == "field") {

@@ -3,6 +3,7 @@
 use sexp::{Atom, Sexp};
 
 /// The text of an atom; none for a list.
+#[inline]
 pub(super) fn text(item: Sexp) -> Option<String> {
     match item {
         Sexp::Atom(Atom::S(text)) => Some(text),
@@ -21,6 +22,7 @@ pub(super) struct Form {
 
 impl Form {
     /// The list as a form; none for an atom, for an empty list and for a list that begins with a list.
+    #[inline]
     pub(super) fn of(item: Sexp) -> Option<Self> {
         let Sexp::List(items) = item else { return None };
         let mut rest = items.into_iter();
@@ -29,6 +31,7 @@ impl Form {
     }
 
     /// The one text behind the head, empty where there is none; an error for a list or a second text.
+    #[inline]
     pub(super) fn value(mut self) -> Result<String, Misshapen> {
         let Some(first) = self.rest.next() else { return Ok(String::new()) };
         if self.rest.next().is_some() {
@@ -38,14 +41,18 @@ impl Form {
     }
 
     /// All texts behind the head, each cut at blanks.
-    pub(super) fn words(self) -> Vec<String> {
-        self.rest
-            .filter_map(text)
-            .flat_map(|item| item.split_ascii_whitespace().map(str::to_owned).collect::<Vec<_>>())
-            .collect()
+    pub(super) fn words_into(self, words: &mut Vec<String>) {
+        for item in self.rest.filter_map(text) {
+            if item.is_empty() || item.contains(|each: char| each.is_ascii_whitespace()) {
+                words.extend(item.split_ascii_whitespace().map(str::to_owned));
+            } else {
+                words.push(item);
+            }
+        }
     }
 
     /// The lists behind the head.
+    #[inline]
     pub(super) fn lists(self) -> impl Iterator<Item = Form> {
         self.rest.filter_map(Form::of)
     }

@@ -70,7 +70,10 @@ impl<'a, S: Sink> Scanner<'a, S> {
         let bytes = self.text.as_bytes();
         while let Some(byte) = bytes.get(self.at) {
             match byte {
-                b' ' | b'\t' | b'\r' | b'\n' => self.at += 1,
+                b' ' | b'\t' | b'\r' | b'\n' => {
+                    self.at += 1;
+                    continue;
+                }
                 b'(' => self.open_list(),
                 b')' => self.close_list(),
                 b'"' => self.quoted(),
@@ -315,13 +318,21 @@ impl<'a, S: Sink> Scanner<'a, S> {
     fn bare(&mut self) {
         let start = self.at;
         let rest = self.text.as_bytes().get(start..).unwrap_or(&[]);
-        let length = rest.iter().position(|byte| separates(*byte)).unwrap_or(rest.len());
+        let mut plain = true;
+        let mut length = rest.len();
+        for (at, byte) in rest.iter().enumerate() {
+            if separates(*byte) {
+                length = at;
+                break;
+            }
+            plain &= !matches!(byte, b'"' | b'\\');
+        }
         self.at += length;
         if !self.atom(start) {
             return;
         }
         let atom = self.slice(start, self.at);
-        quote(atom, &mut self.rewritten);
+        quote(atom, plain, &mut self.rewritten);
     }
 
     fn quoted(&mut self) {

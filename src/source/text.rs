@@ -1,7 +1,7 @@
 //! A text with its name, and places in it.
 
 use std::fmt;
-use std::sync::Arc;
+use std::sync::{Arc, OnceLock};
 
 /// A run of bytes in a [`Source`]: `start` up to, not including, `end`.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, Default)]
@@ -62,18 +62,15 @@ pub struct Position {
 pub struct Source {
     name: Arc<str>,
     text: Arc<str>,
-    lines: Arc<[usize]>,
+    /// Where each line begins; looked up only once a place is shown.
+    lines: Arc<OnceLock<Vec<usize>>>,
 }
 
 impl Source {
     /// A text under a name (a path as the user gave it, or `<stdin>`).
     #[must_use]
     pub fn new(name: impl Into<Arc<str>>, text: impl Into<Arc<str>>) -> Self {
-        let text = text.into();
-        let lines = std::iter::once(0)
-            .chain(text.bytes().enumerate().filter(|(_, byte)| *byte == b'\n').map(|(at, _)| at + 1))
-            .collect();
-        Self { name: name.into(), text, lines }
+        Self { name: name.into(), text: text.into(), lines: Arc::default() }
     }
 
     /// The name it is known by.
@@ -97,22 +94,31 @@ impl Source {
     /// The bytes of a line, counted from 1, without its end and without a byte order mark; empty behind the last line.
     #[must_use]
     pub fn line(&self, number: usize) -> Span {
-        let Some(start) = self.lines.get(number.saturating_sub(1)).copied() else {
+        let lines = self.lines();
+        let Some(start) = lines.get(number.saturating_sub(1)).copied() else {
             return Span::new(self.text.len(), self.text.len());
         };
-        let end = self.lines.get(number).map_or(self.text.len(), |next| next - 1);
+        let end = lines.get(number).map_or(self.text.len(), |next| next - 1);
         let text = self.text.get(start..end).unwrap_or("");
         let end = end - usize::from(text.ends_with('\r'));
         let mark = if number <= 1 && text.starts_with('\u{feff}') { '\u{feff}'.len_utf8() } else { 0 };
         Span::new(start + mark, end)
     }
 
+    fn lines(&self) -> &[usize] {
+        self.lines.get_or_init(|| {
+            let ends = self.text.bytes().enumerate().filter(|(_, byte)| *byte == b'\n');
+            std::iter::once(0).chain(ends.map(|(at, _)| at + 1)).collect()
+        })
+    }
+
     /// Line and column of a byte; a byte behind the end is taken as the end.
     #[must_use]
     pub fn position(&self, offset: usize) -> Position {
         let offset = offset.min(self.text.len());
-        let line = self.lines.partition_point(|start| *start <= offset).max(1);
-        let start = self.lines.get(line - 1).copied().unwrap_or(0);
+        let lines = self.lines();
+        let line = lines.partition_point(|start| *start <= offset).max(1);
+        let start = lines.get(line - 1).copied().unwrap_or(0);
         let before = self.text.as_bytes().get(start..offset).unwrap_or(&[]);
         // Counting the bytes that begin a character works within a cut character too.
         let mut column = before.iter().filter(|byte| (**byte & 0xC0) != 0x80).count() + 1;

@@ -1,5 +1,6 @@
 //! Arithmetic of figures.
 
+use super::ledger::Ledger;
 use super::{Dimension, Pair, Quantity, Slope};
 
 /// Sums, products and choices that the check language and the figures share.
@@ -106,7 +107,7 @@ impl Quantity {
         if self.guesses.is_empty() {
             figure.nominal = end(self.worst);
         }
-        figure.ranged_facts.clear();
+        figure.ranged_facts = Ledger::EMPTY;
         figure
     }
 

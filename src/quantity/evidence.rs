@@ -1,6 +1,8 @@
 //! What a figure rests on.
 
+use std::cmp::Ordering;
 use std::fmt;
+use std::hash::{Hash, Hasher};
 use std::sync::Arc;
 
 /// How well a figure is founded, strongest first.
@@ -54,8 +56,33 @@ impl fmt::Display for Grade {
 }
 
 /// Identifies one fact or guess: two figures that share a key share what lies behind it. Stable between runs.
-#[derive(Debug, Clone, PartialEq, Eq, PartialOrd, Ord, Hash)]
+#[derive(Debug, Clone, Eq)]
 pub struct Key(Arc<str>);
+
+// Keys are compared all the time and most that are equal are copies of one.
+impl PartialEq for Key {
+    fn eq(&self, other: &Self) -> bool {
+        Arc::ptr_eq(&self.0, &other.0) || self.0 == other.0
+    }
+}
+
+impl Hash for Key {
+    fn hash<H: Hasher>(&self, state: &mut H) {
+        self.0.hash(state);
+    }
+}
+
+impl Ord for Key {
+    fn cmp(&self, other: &Self) -> Ordering {
+        if Arc::ptr_eq(&self.0, &other.0) { Ordering::Equal } else { self.0.cmp(&other.0) }
+    }
+}
+
+impl PartialOrd for Key {
+    fn partial_cmp(&self, other: &Self) -> Option<Ordering> {
+        Some(self.cmp(other))
+    }
+}
 
 impl Key {
     /// A key from a text that is unique for the fact, such as `U2 dropout` or `+5V voltage`.

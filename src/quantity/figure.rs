@@ -1,9 +1,9 @@
 //! A figure with its three pairs of bounds.
 
-use std::collections::{BTreeMap, BTreeSet};
 use std::sync::Arc;
 
-use super::{Dimension, Evidence, Grade, Key, Pair, Range};
+use super::ledger::Ledger;
+use super::{Dimension, Evidence, Grade, Pair, Range};
 
 /// A guess that a figure hangs on, and how far it moves that figure over its range.
 #[derive(Debug, Clone, PartialEq)]
@@ -34,10 +34,10 @@ pub struct Quantity {
     pub(super) worst: Pair,
     pub(super) likely: Pair,
     pub(super) kind: Pair,
-    evidence: BTreeMap<Key, Arc<Evidence>>,
-    pub(super) ranged_facts: BTreeSet<Key>,
-    pub(super) guesses: BTreeMap<Key, Guess>,
-    missing: BTreeMap<Key, Arc<Evidence>>,
+    evidence: Ledger<Arc<Evidence>>,
+    pub(super) ranged_facts: Ledger<()>,
+    pub(super) guesses: Ledger<Guess>,
+    missing: Ledger<Arc<Evidence>>,
 }
 
 impl Quantity {
@@ -51,10 +51,10 @@ impl Quantity {
             worst: pair,
             likely: pair,
             kind: pair,
-            evidence: BTreeMap::new(),
-            ranged_facts: BTreeSet::new(),
-            guesses: BTreeMap::new(),
-            missing: BTreeMap::new(),
+            evidence: Ledger::EMPTY,
+            ranged_facts: Ledger::EMPTY,
+            guesses: Ledger::EMPTY,
+            missing: Ledger::EMPTY,
         }
     }
 
@@ -70,15 +70,15 @@ impl Quantity {
             figure.likely = figure.worst;
             figure.kind = figure.worst;
             if !range.is_exact() {
-                figure.ranged_facts.insert(key.clone());
+                figure.ranged_facts = Ledger::of(key.clone(), ());
             }
         } else {
             let limits = Pair::new(limits.low().min(range.low()), limits.high().max(range.high()));
             figure.kind = limits.reversed();
             let guess = Guess { evidence: Arc::clone(&evidence), moves: range.high() - range.low() };
-            figure.guesses.insert(key.clone(), guess);
+            figure.guesses = Ledger::of(key.clone(), guess);
         }
-        figure.evidence.insert(key, evidence);
+        figure.evidence = Ledger::of(key, evidence);
         figure
     }
 
@@ -98,7 +98,7 @@ impl Quantity {
         figure.likely = limits;
         figure.kind = limits.reversed();
         figure.nominal = f64::NAN;
-        figure.missing.insert(evidence.key.clone(), evidence);
+        figure.missing = Ledger::of(evidence.key.clone(), evidence);
         figure
     }
 
@@ -108,25 +108,27 @@ impl Quantity {
     /// For such formulas the reversed bounds follow the same ends (Kaucher's extension of a monotone function).
     #[must_use]
     pub fn monotone(dimension: Dimension, inputs: &[(&Quantity, Slope)], formula: impl Fn(&[f64]) -> f64) -> Self {
-        let ends = |pick: &dyn Fn(&Quantity) -> Pair, low: bool| {
-            let values: Vec<f64> = inputs
-                .iter()
-                .map(|(input, slope)| {
-                    let pair = pick(input);
-                    if low == (*slope == Slope::Rising) { pair.low() } else { pair.high() }
-                })
-                .collect();
+        let mut values = vec![0.0; inputs.len()];
+        let mut ends = |pick: &dyn Fn(&Quantity) -> Pair, low: bool| {
+            for (value, (input, slope)) in values.iter_mut().zip(inputs) {
+                let pair = pick(input);
+                *value = if low == (*slope == Slope::Rising) { pair.low() } else { pair.high() };
+            }
             formula(&values)
         };
         let mut figure = Self::constant(dimension, 0.0);
         figure.worst = Pair::new(ends(&Quantity::worst, true), ends(&Quantity::worst, false));
         figure.likely = Pair::new(ends(&Quantity::likely, true), ends(&Quantity::likely, false));
         figure.kind = Pair::kind(ends(&Quantity::kind, true), ends(&Quantity::kind, false));
-        let nominals: Vec<f64> = inputs.iter().map(|(input, _)| input.nominal).collect();
-        figure.nominal = formula(&nominals);
+        for (value, (input, _)) in values.iter_mut().zip(inputs) {
+            *value = input.nominal;
+        }
+        figure.nominal = formula(&values);
         for (index, (input, _)) in inputs.iter().enumerate() {
             figure.inherit(input);
-            figure.inherit_guesses(input, swing(&formula, &nominals, index, input.worst));
+            if !input.guesses.is_empty() {
+                figure.inherit_guesses(input, swing(&formula, &mut values, index, input.worst));
+            }
         }
         figure
     }
@@ -139,22 +141,25 @@ impl Quantity {
     }
 
     fn inherit(&mut self, other: &Quantity) {
-        self.evidence.extend(other.evidence.iter().map(|(key, evidence)| (key.clone(), Arc::clone(evidence))));
-        self.ranged_facts.extend(other.ranged_facts.iter().cloned());
-        self.missing.extend(other.missing.iter().map(|(key, evidence)| (key.clone(), Arc::clone(evidence))));
+        // Copies of one fact are one allocation; where they are not, the later one counts, as for any other.
+        self.evidence.take_over(&other.evidence, Arc::ptr_eq);
+        self.ranged_facts.take_over(&other.ranged_facts, |(), ()| true);
+        self.missing.take_over(&other.missing, Arc::ptr_eq);
     }
 
     /// Takes over the guesses of an input which, moved over its whole range, moves this figure by `swing`.
     fn inherit_guesses(&mut self, input: &Quantity, swing: f64) {
         let total: f64 = input.guesses.values().map(|guess| guess.moves).sum();
-        for (key, guess) in &input.guesses {
+        let shared = input.guesses.map(|guess| {
             let share = if total > 0.0 && total.is_finite() { guess.moves / total } else { 1.0 };
             let moves = if swing.is_nan() { 0.0 } else { swing.abs() * share };
-            self.guesses
-                .entry(key.clone())
-                .and_modify(|known| known.moves += moves)
-                .or_insert_with(|| Guess { evidence: Arc::clone(&guess.evidence), moves });
-        }
+            Guess { evidence: Arc::clone(&guess.evidence), moves }
+        });
+        self.guesses = if self.guesses.is_empty() {
+            shared
+        } else {
+            self.guesses.joined(&shared, |known, more| Guess { moves: known.moves + more.moves, ..known.clone() })
+        };
     }
 
     /// What it measures.
@@ -217,7 +222,7 @@ impl Quantity {
     /// Whether a fact that has a range stands behind both figures.
     #[must_use]
     pub fn shares_a_ranged_fact(&self, other: &Quantity) -> bool {
-        self.ranged_facts.intersection(&other.ranged_facts).next().is_some()
+        self.ranged_facts.shares_a_key(&other.ranged_facts)
     }
 
     /// The range to show: worst bounds around the nominal value; `None` where a figure is missing.
@@ -228,13 +233,14 @@ impl Quantity {
 }
 
 /// How far a formula moves when one input goes over its worst bounds and the others stay at nominal.
-fn swing(formula: impl Fn(&[f64]) -> f64, nominals: &[f64], index: usize, bounds: Pair) -> f64 {
-    let at = |end: f64| {
-        let mut values = nominals.to_vec();
-        if let Some(value) = values.get_mut(index) {
-            *value = end;
+fn swing(formula: impl Fn(&[f64]) -> f64, nominals: &mut [f64], index: usize, bounds: Pair) -> f64 {
+    let mut at = |end: f64| {
+        let nominal = nominals.get_mut(index).map(|value| std::mem::replace(value, end));
+        let moved = formula(nominals);
+        if let (Some(value), Some(nominal)) = (nominals.get_mut(index), nominal) {
+            *value = nominal;
         }
-        formula(&values)
+        moved
     };
     at(bounds.high()) - at(bounds.low())
 }

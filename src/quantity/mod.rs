@@ -6,6 +6,7 @@ mod arithmetic;
 mod dimension;
 mod evidence;
 mod figure;
+mod ledger;
 mod pair;
 mod range;
 mod text;

@@ -1,7 +1,7 @@
 //! Asks every check of every subject that it is about.
 
 use std::cmp::Ordering;
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, HashMap};
 
 use super::check::{Check, Rule};
 use super::finding::{Counts, Finding, Judgement, Outcome, Point};
@@ -207,24 +207,29 @@ fn point(name: &str, context: Context<'_>) -> Vec<Point> {
 /// Marks what another finding about the same subject makes superfluous: a milder or equal verdict beside one that
 /// fails or is doubtful.
 fn suppress(checks: &Checks, judged: &mut [(Outcome, Option<Finding>)]) {
-    let known: BTreeMap<(String, Subject), Verdict> =
-        judged.iter().map(|(outcome, _)| ((outcome.check.clone(), outcome.subject), outcome.verdict)).collect();
-    let mut told: Vec<(String, Subject, String)> = Vec::new();
-    for (outcome, finding) in judged.iter_mut().filter(|(_, finding)| finding.is_some()) {
+    // Where the outcomes of a subject stand; only looked up.
+    let mut places: HashMap<Subject, Vec<(usize, Verdict)>> = HashMap::new();
+    for (at, (outcome, _)) in judged.iter().enumerate() {
+        places.entry(outcome.subject).or_default().push((at, outcome.verdict));
+    }
+    let mut told: Vec<(usize, String)> = Vec::new();
+    for at in 0..judged.len() {
+        let Some((outcome, Some(_))) = judged.get(at) else { continue };
         let others = checks.get(&outcome.check).map_or(&[][..], |check| &check.suppressed_by);
-        let by = others.iter().find(|other| {
-            let verdict = known.get(&((*other).clone(), outcome.subject));
-            verdict.is_some_and(|verdict| *verdict <= Verdict::Doubtful && *verdict <= outcome.verdict)
+        let beside = places.get(&outcome.subject).map_or(&[][..], Vec::as_slice);
+        let by = others.iter().find_map(|other| {
+            let named = |at: usize| judged.get(at).is_some_and(|(outcome, _)| outcome.check == *other);
+            let (place, verdict) = beside.iter().copied().find(|(at, _)| named(*at))?;
+            (verdict <= Verdict::Doubtful && verdict <= outcome.verdict).then(|| (place, other.clone()))
         });
-        if let Some(by) = by {
-            told.push((by.clone(), outcome.subject, outcome.check.clone()));
-            outcome.suppressed_by = Some(by.clone());
+        if let (Some((place, by)), Some((outcome, finding))) = (by, judged.get_mut(at)) {
+            told.push((place, outcome.check.clone()));
+            outcome.suppressed_by = Some(by);
             *finding = None;
         }
     }
-    for (by, subject, check) in told {
-        let finding = judged.iter_mut().find(|(outcome, _)| outcome.check == by && outcome.subject == subject);
-        if let Some((_, Some(finding))) = finding {
+    for (place, check) in told {
+        if let Some((_, Some(finding))) = judged.get_mut(place) {
             finding.suppresses.push(check);
         }
     }

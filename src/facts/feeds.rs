@@ -183,6 +183,10 @@ impl Facts<'_> {
     /// The declared loads on a net, on the nets behind its series elements, and behind the linear regulators that
     /// these feed. `None` where neither the net nor one behind a series element has a declared load.
     pub(super) fn declared_draw(&self, net: NetId, upstream: Option<NetId>) -> Option<Quantity> {
+        // Boards without declared loads need no walk at all.
+        if self.board().loads.is_empty() {
+            return None;
+        }
         let circuit = self.circuit();
         let mut seen: HashSet<NetId> = upstream.into_iter().chain([net]).collect();
         let mut queue = vec![(net, true)];
@@ -202,10 +206,6 @@ impl Facts<'_> {
                 .map(|to| (to, false));
             let next: Vec<_> = behind.chain(regulated).filter(|(to, _)| seen.insert(*to)).collect();
             queue.extend(next);
-            // Boards without declared loads need no walk at all.
-            if self.board().loads.is_empty() {
-                return None;
-            }
         }
         direct.then(|| self.sum(&loads, net))
     }

@@ -204,7 +204,8 @@ fn is_protection(facts: &Facts<'_>, from: NetId, to: NetId) -> bool {
         regulator.kind == RegulatorKind::Switching
             && facts.part_of(regulator).pins.iter().any(|pin| pin.net == Some(to))
     };
-    facts.fed_by(to).any(|regulator| regulator.output_net == Some(from)) || facts.feeding(from).any(switched)
+    // Many parts share an input, few an output.
+    facts.feeding(from).any(|regulator| regulator.input_net == Some(to) || switched(regulator))
 }
 
 /// Whether a net that one diode feeds is fed by another one too.

@@ -3,7 +3,8 @@
 //! Patterns are written for people (`LM1117*{V}*`); they are cut into tokens once, and a name is walked along them with
 //! the set of places that can be reached, so that the cost is linear in the name whatever the pattern.
 
-use std::cell::OnceCell;
+use std::cell::{OnceCell, RefCell};
+use std::collections::HashMap;
 
 use crate::knowledge::{Family, FamilyKind, VOLTAGE_CODE};
 
@@ -58,6 +59,8 @@ pub(super) struct Matcher<'a> {
     patterns: Vec<Pattern>,
     /// The voltage codes of each family, spelled out when first asked for.
     codes: Vec<OnceCell<Vec<(String, Code)>>>,
+    /// What was found for a name: most parts of a board share theirs with others. Only looked up.
+    known: RefCell<HashMap<String, Vec<Hit>>>,
 }
 
 /// No order code is longer; what follows is prose.
@@ -162,7 +165,12 @@ impl<'a> Matcher<'a> {
             .iter()
             .enumerate()
             .flat_map(|(index, family)| family.names.iter().map(move |name| compile(index, name)));
-        Self { patterns: patterns.collect(), families, codes: vec![OnceCell::new(); families.len()] }
+        Self {
+            patterns: patterns.collect(),
+            families,
+            codes: vec![OnceCell::new(); families.len()],
+            known: RefCell::default(),
+        }
     }
 
     fn codes(&self, family: usize) -> &[(String, Code)] {
@@ -173,6 +181,15 @@ impl<'a> Matcher<'a> {
     /// The families that a reduced name fits: those with a voltage code first, then by how telling the pattern is, then
     /// in order of the families.
     pub(super) fn hits(&self, name: &str) -> Vec<Hit> {
+        if let Some(known) = self.known.borrow().get(name) {
+            return known.clone();
+        }
+        let found = self.find(name);
+        self.known.borrow_mut().insert(name.to_owned(), found.clone());
+        found
+    }
+
+    fn find(&self, name: &str) -> Vec<Hit> {
         let mut found: Vec<Hit> = Vec::new();
         for start in starts(name) {
             let rest: Vec<char> = name.get(start..).unwrap_or("").chars().collect();

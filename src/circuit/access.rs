@@ -17,6 +17,12 @@ impl Circuit {
         self.nets.iter().copied()
     }
 
+    /// Whether nothing of the netlist was lost. Of a damaged one, a pin without a net may have had one.
+    #[must_use]
+    pub fn is_whole(&self) -> bool {
+        self.whole
+    }
+
     /// A device.
     ///
     /// # Panics

@@ -49,6 +49,7 @@ impl<'a> Builder<'a> {
             nets: Vec::with_capacity(netlist.nets.len()),
             by_reference: HashMap::with_capacity(netlist.components.len()),
             by_name: HashMap::with_capacity(netlist.nets.len()),
+            whole: netlist.is_complete(),
         };
         Self { netlist, circuit, problems: Vec::new(), components: Vec::new(), places: HashMap::new() }
     }

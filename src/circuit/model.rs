@@ -132,6 +132,8 @@ pub struct Pin {
     pub name: String,
     /// Electrical type.
     pub kind: PinType,
+    /// Whether the schematic marks it as left open on purpose.
+    pub marked_open: bool,
     /// The net it is on; `None` where it is on no net or on one that connects nothing else and is named so.
     pub net: Option<NetId>,
     /// Its `(node …)`; empty where it is on no net.
@@ -235,4 +237,5 @@ pub struct Circuit {
     pub(super) nets: Vec<NetId>,
     pub(super) by_reference: HashMap<String, DeviceId>,
     pub(super) by_name: HashMap<String, Vec<NetId>>,
+    pub(super) whole: bool,
 }

@@ -20,6 +20,11 @@ impl PinType {
     }
 }
 
+/// `power_in+no_connect`: the schematic has a no-connect mark on the pin.
+fn is_marked_open(text: &str) -> bool {
+    text.split('+').skip(1).any(|part| part.trim().eq_ignore_ascii_case("no_connect"))
+}
+
 const SPELLINGS: &[(&str, PinType)] = &[
     ("input", PinType::Input),
     ("output", PinType::Output),
@@ -61,6 +66,7 @@ pub(super) fn pins<'a>(part: Option<&'a LibraryPart>, connections: &[Connection<
                 number: pin.number.clone(),
                 name: plain_name(&pin.name).to_owned(),
                 kind: PinType::read(&pin.kind),
+                marked_open: is_marked_open(&pin.kind),
                 net: None,
                 span: Span::default(),
             });
@@ -95,6 +101,7 @@ pub(super) fn pins<'a>(part: Option<&'a LibraryPart>, connections: &[Connection<
 fn connect(pin: &mut Pin, node: &NetNode, net: Option<NetId>) {
     if !node.kind.is_empty() {
         pin.kind = PinType::read(&node.kind);
+        pin.marked_open = is_marked_open(&node.kind);
     }
     if !node.function.is_empty() {
         let without = without_number(&node.function, &node.pin);
@@ -112,6 +119,7 @@ fn named_by_net(node: &NetNode, net: Option<NetId>) -> Pin {
         number: node.pin.clone(),
         name: plain_name(without_number(&node.function, &node.pin)).to_owned(),
         kind: PinType::read(&node.kind),
+        marked_open: is_marked_open(&node.kind),
         net,
         span: node.span,
     }
@@ -168,6 +176,7 @@ mod tests {
         assert_eq!(PinType::read("openCol"), PinType::OpenCollector);
         assert_eq!(PinType::read("NotConnected"), PinType::NoConnect);
         assert_eq!(PinType::read("passive+no_connect"), PinType::Passive);
+        assert!(is_marked_open("passive+no_connect") && !is_marked_open("no_connect"));
         assert_eq!(PinType::read("unspc"), PinType::Unspecified);
         assert_eq!(PinType::read("something new"), PinType::Unspecified);
     }

@@ -17,7 +17,9 @@ mod headroom;
 mod identity;
 mod load;
 mod net;
+mod open_pins;
 mod output;
+mod pins;
 mod rails;
 mod sheet;
 mod shunt;
@@ -48,6 +50,8 @@ pub const DEFINITIONS: &[&[Definition]] = &[
     enable::DEFINITIONS,
     shunt::DEFINITIONS,
     startup::DEFINITIONS,
+    pins::DEFINITIONS,
+    open_pins::DEFINITIONS,
 ];
 
 /// The definition of a name for a kind of subject.

@@ -188,6 +188,10 @@ pub(super) fn read_packages(root: &mut Table<'_>, cite: &Cite<'_>) -> BTreeMap<S
             let roles = pin.text().and_then(|text| read_roles(&text));
             pins.insert(pin.key().to_owned(), roles.unwrap_or_default());
         }
+        let pins_from = match table.text("pins_from") {
+            Some(text) => Cited { value: (), source: text.as_str().to_owned(), recalled: false },
+            None => cite.cite("pins", ()),
+        };
         let thermal = table.take("junction_to_ambient");
         let junction_to_ambient = thermal.and_then(|value| {
             let figure = cite.figure(value, Dimension::THERMAL_RESISTANCE)?;
@@ -195,7 +199,7 @@ pub(super) fn read_packages(root: &mut Table<'_>, cite: &Cite<'_>) -> BTreeMap<S
         });
         Cite::check_keys(&mut table, &["junction_to_ambient", "pins"]);
         table.finish();
-        packages.insert(value.key().to_owned(), Package { pins, junction_to_ambient });
+        packages.insert(value.key().to_owned(), Package { pins, pins_from, junction_to_ambient });
     }
     packages
 }

@@ -288,6 +288,8 @@ impl RoleName {
 pub struct Package {
     /// Pin number (or `tab`) to the roles it may have (`adjust or ground` gives two).
     pub pins: BTreeMap<String, Vec<RoleName>>,
+    /// Where the order of the pins was read, and whether it was recalled.
+    pub pins_from: Cited<()>,
     /// Junction to ambient in kelvins per watt, on the sheet's board.
     pub junction_to_ambient: Option<Cited<f64>>,
 }

@@ -9,6 +9,7 @@
 mod bank;
 mod declared;
 mod divider;
+mod drawn;
 mod family_match;
 mod feed;
 mod find;
@@ -20,6 +21,7 @@ mod named;
 mod nominal;
 mod order;
 mod outputs;
+mod package;
 mod pin_name;
 mod roles;
 mod sketch;
@@ -31,6 +33,7 @@ mod walk;
 mod words;
 
 pub use bank::{Side, bank, bank_to};
+pub use drawn::{DrawnPin, drawn_pins};
 pub use find::{Overrides, recognize};
 pub use in_place::InPlace;
 pub use model::{
@@ -39,3 +42,4 @@ pub use model::{
 };
 pub use named::{Named, Overlap, families_of_name, overlaps};
 pub use sketch::{NoSketch, Sketch, sketch};
+pub use package::{family_package, package_of};

@@ -7,6 +7,7 @@ use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId, PinType, supp
 use crate::knowledge::{Family, RoleName};
 
 use super::model::RegulatorKind;
+use super::package::{family_package, package_of};
 use super::pin_name::{PinName, Word};
 use super::walk::{Chain, SAMPLE, chains, is_tap};
 
@@ -154,7 +155,14 @@ impl Assignment<'_> {
             let name = normal(name);
             footprint.contains(&name) || symbol.contains(&name)
         };
-        let fitting = family.packages.iter().find(|(name, _)| named(name)).map(|(_, package)| package);
+        // The footprint's package first; else the longest name that fits, for `SOT-23` is part of `SOT-23-5`.
+        let fitting = package_of(&self.device.footprint)
+            .and_then(|package| family_package(family, &package))
+            .filter(|package| !package.pins.is_empty())
+            .or_else(|| {
+                let fitting = family.packages.iter().filter(|(name, _)| named(name));
+                fitting.max_by_key(|(name, _)| name.len()).map(|(_, package)| package)
+            });
         // Where all packages agree on the pins it does not matter which it is.
         let only = || {
             let mut packages = family.packages.values();

@@ -30,3 +30,4 @@ mod shared;
 mod small_board;
 mod spoiled;
 mod user_checks;
+mod wiring;

@@ -109,6 +109,7 @@ mod tests {
             number: (index + 1).to_string(),
             name: (*name).to_owned(),
             kind: *kind,
+            marked_open: false,
             net: None,
             span: Span::default(),
         };

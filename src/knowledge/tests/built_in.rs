@@ -39,6 +39,33 @@ fn every_file_names_its_sources_and_every_figure_one_of_them() {
 }
 
 #[test]
+fn an_order_of_pins_names_where_it_was_read_or_is_recalled_and_its_tab_is_one_of_its_leads() {
+    for family in &Knowledge::shared().families {
+        for (name, package) in family.packages.iter().filter(|(_, package)| !package.pins.is_empty()) {
+            let told = package.pins_from.recalled || package.pins_from.source.starts_with("KiCad symbol library");
+            assert!(told, "{} {name}: {:?}", family.file, package.pins_from);
+            assert!(package.pins.values().all(|roles| !roles.is_empty()), "{} {name}", family.file);
+            let Some(tab) = package.pins.get("tab") else { continue };
+            let leads = package.pins.iter().filter(|(number, _)| *number != "tab");
+            assert!(leads.map(|(_, roles)| roles).any(|roles| roles == tab), "{} {name}", family.file);
+        }
+    }
+    // TO-92 and SOT-23 of one part differ, as do positive and negative parts in TO-220.
+    let order = |name: &str, package: &str| -> Vec<RoleName> {
+        family(name).packages[package]
+            .pins
+            .iter()
+            .filter(|(number, _)| *number != "tab")
+            .map(|(_, roles)| roles[0])
+            .collect()
+    };
+    assert_eq!(order("MCP1700", "TO-92"), [RoleName::Ground, RoleName::Input, RoleName::Output]);
+    assert_eq!(order("MCP1700", "SOT-23"), [RoleName::Ground, RoleName::Output, RoleName::Input]);
+    assert_eq!(order("78xx / L78xx", "TO-220"), [RoleName::Input, RoleName::Ground, RoleName::Output]);
+    assert_eq!(order("79xx / L79xx", "TO-220"), [RoleName::Ground, RoleName::Input, RoleName::Output]);
+}
+
+#[test]
 fn figures_are_in_order_and_of_a_size_that_exists() {
     for family in &Knowledge::shared().families {
         for (key, dimension, _) in Family::FIGURES {

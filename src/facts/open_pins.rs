@@ -32,10 +32,10 @@ pub(super) const DEFINITIONS: &[Definition] = &[
     }),
     word("bias_pins", "the bias supply pins", |facts, subject| group(facts, subject, Group::Bias, names)),
     flag("twin_open", "a pin is open beside others of its role that are connected", |facts, subject| {
-        of(facts, subject, |regulator| Value::flag(!facts.open_twins(regulator).is_empty()))
+        twins(facts, subject, |open| Value::flag(!open.is_empty()))
     }),
     word("open_twins", "the pins that are open beside others of their role", |facts, subject| {
-        of(facts, subject, |regulator| Value::word(listed(&facts.open_twins(regulator))))
+        twins(facts, subject, |open| Value::word(listed(open)))
     }),
     flag("several_outputs", "the part has more outputs than one", |facts, subject| {
         of(facts, subject, |regulator| Value::flag(facts.in_part(regulator.device).count() > 1))
@@ -50,6 +50,9 @@ const fn word(name: &'static str, meaning: &'static str, compute: fn(&Facts<'_>,
     let kind = ValueKind::Word(&[]);
     Definition { name, of: SubjectKind::Regulator, kind, meaning, defined_in: file!(), compute }
 }
+
+/// Why nothing is said of pins on a damaged board.
+const LOST: &str = "what was lost of the netlist may connect it";
 
 /// Pins of one role.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -106,12 +109,21 @@ fn group(
             return Value::inapplicable("it has no such pin");
         }
         if !facts.circuit().is_whole() {
-            return Value::inapplicable("what was lost of the netlist may connect it");
+            return Value::inapplicable(LOST);
         }
         if !group.is_needed(regulator) {
             return Value::inapplicable("the part does without this pin");
         }
         compute(facts, regulator, group)
+    })
+}
+
+fn twins(facts: &Facts<'_>, subject: Subject, compute: fn(&[&Pin]) -> Value) -> Value {
+    of(facts, subject, |regulator| {
+        if regulator.kind == RegulatorKind::Switching || !facts.circuit().is_whole() {
+            return Value::inapplicable(LOST);
+        }
+        compute(&facts.open_twins(regulator))
     })
 }
 
@@ -151,9 +163,6 @@ impl Facts<'_> {
             copy || pin.marked_open
         };
         let mut found = Vec::new();
-        if !self.circuit().is_whole() {
-            return found;
-        }
         for group in Group::ALL.into_iter().filter(|group| group.is_needed(regulator)) {
             let (open, joined): (Vec<usize>, Vec<usize>) =
                 group.pins(regulator).iter().partition(|pin| self.is_open(regulator, **pin, group));

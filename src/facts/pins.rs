@@ -6,7 +6,7 @@ use super::identity::of;
 use super::{Definition, Facts, Flag, RailOrigin, Subject, SubjectKind, Value, ValueKind};
 use crate::circuit::{Device, NetId, Pin};
 use crate::knowledge::{Family, Package, RoleName};
-use crate::quantity::{Evidence, Grade};
+use crate::quantity::{Evidence, Grade, Settle, Table};
 use crate::recognize::{Mode, Regulator, RegulatorKind, drawn_pins, family_package, package_of};
 
 /// The key of the tab in a part file.
@@ -94,6 +94,10 @@ fn tabbed(facts: &Facts<'_>, subject: Subject, compute: impl FnOnce(Tab) -> Valu
 impl Facts<'_> {
     /// The package of a part and what each family that it may be has in it; an error says why nothing is known.
     fn in_package<'r>(&'r self, regulator: &'r Regulator) -> Result<(String, Orders<'r>), String> {
+        let declared = self.board().part(&self.part_of(regulator).reference).is_some_and(|part| part.pins.is_some());
+        if declared {
+            return Err("its pins are declared".to_owned());
+        }
         let package = package_of(&self.part_of(regulator).footprint).ok_or("the footprint tells no package")?;
         let known = self.families(regulator).filter_map(|family| Some((family, family_package(family, &package)?)));
         let known: Vec<_> = known.filter(|(_, found)| !found.pins.is_empty()).collect();
@@ -129,7 +133,17 @@ impl Facts<'_> {
     fn pins_evidence(&self, regulator: &Regulator, entry: &Package, all: bool) -> Evidence {
         let what = self.about(regulator, "order of the pins");
         let evidence = self.cited(regulator, &entry.pins_from.source, entry.pins_from.recalled, what);
-        if all { evidence } else { evidence.at_most(Grade::Inferred).settled_by(self.which_family(regulator)) }
+        let evidence = if all { evidence } else { evidence.at_most(Grade::Inferred) };
+        if evidence.grade.is_fact() {
+            return evidence;
+        }
+        let part = &self.part_of(regulator).reference;
+        evidence.settled_by(Settle::new(
+            Table::Part,
+            part,
+            "pins",
+            "{ 1 = \"ground\", 2 = \"output\", 3 = \"input\" }",
+        ))
     }
 
     /// The tab of a part as it is drawn and connected; every family that the part may be must have it joined alike.

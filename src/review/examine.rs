@@ -93,8 +93,8 @@ pub fn examine_netlist(
     today: &str,
 ) -> Examination {
     let whole = netlist.is_complete();
-    let mut problems = std::mem::take(&mut netlist.problems);
     let (mut circuit, found) = Circuit::build(&netlist);
+    let mut problems = std::mem::take(&mut netlist.problems);
     problems.extend(found);
     let board = declared(board, &netlist, &mut circuit, knowledge, checks, &mut problems);
     let (mut checks, found) = checks.with_settings(&overrides(&board));

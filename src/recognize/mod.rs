@@ -41,5 +41,5 @@ pub use model::{
     RegulatorKind, Roles,
 };
 pub use named::{Named, Overlap, families_of_name, overlaps};
-pub use sketch::{NoSketch, Sketch, sketch};
 pub use package::{family_package, package_of};
+pub use sketch::{NoSketch, Sketch, sketch};

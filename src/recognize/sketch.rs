@@ -122,7 +122,8 @@ fn begun(
     family.enable = outputs.iter().find_map(|regulator| enable(regulator));
     let package = package_name(&device.footprint);
     let pins = pins(device, outputs);
-    family.packages.insert(package.clone(), Package { pins, junction_to_ambient: None });
+    let pins_from = Cited { value: (), source: "the symbol as drawn".to_owned(), recalled: true };
+    family.packages.insert(package.clone(), Package { pins, pins_from, junction_to_ambient: None });
     let perhaps = told.filter(|_| volts.is_none()).map(|nominal| (nominal.volts.abs(), nominal.source.clone()));
     Sketch { family, name, told_by, perhaps: perhaps.into_iter().collect(), package }
 }

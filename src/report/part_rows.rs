@@ -203,7 +203,7 @@ fn package(name: &str, package: &Package) -> Vec<PartRow> {
         };
         let pins: Vec<String> =
             package.pins.iter().map(|(number, roles)| format!("{number} {}", role(roles))).collect();
-        rows.push(PartRow::plain(name, pins.join(", ")));
+        rows.push(PartRow::new(name.to_owned(), pins.join(", "), &package.pins_from));
     }
     rows.extend(package.junction_to_ambient.iter().map(|heat| {
         let figure = print_amount(heat.value, Dimension::THERMAL_RESISTANCE);

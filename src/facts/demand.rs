@@ -130,7 +130,8 @@ impl Facts<'_> {
         }
         match self.stated(regulator, side, demand) {
             Some((minimum, farads)) => {
-                Value::Figure(self.bound(regulator, (side, demand.kind), minimum, farads, what))
+                let told = self.bound(regulator, (side, demand.kind), minimum, farads, what);
+                Value::Figure(self.with_versions(regulator, side, (minimum, demand.kind), told))
             }
             None => Value::inapplicable("the sheet names no minimum"),
         }
@@ -170,6 +171,32 @@ impl Facts<'_> {
         Value::Figure(Quantity::constant(Dimension::CAPACITANCE, farads).also_resting_on(&minimum))
     }
 
+    /// The minimum, over the versions of other makers that the name can mean.
+    fn with_versions(
+        &self,
+        regulator: &Regulator,
+        side: Side,
+        (minimum, kind): (&Cited<f64>, MinimumKind),
+        (mut range, mut evidence): (Range, Evidence),
+    ) -> Quantity {
+        let others = self.families(regulator).skip(1).filter_map(|family| match side {
+            Side::Input => family.input_capacitor.as_ref(),
+            Side::Output => family.output_capacitor.as_ref(),
+        });
+        let mut differ = false;
+        for other in others {
+            let needed = other.minimum.as_ref().filter(|_| other.kind != MinimumKind::Optional);
+            let farads = needed.map_or(0.0, |needed| self.at_output(regulator, other, needed));
+            differ |= other.kind != kind || (farads / minimum.value - 1.0).abs() > SAME;
+            let (low, _, high) = shares(other.kind, needed.is_some_and(|needed| needed.recalled));
+            range = range.union(Range::clamped(farads * low, farads * low, farads * high));
+        }
+        if differ {
+            evidence = self.by_version(regulator, evidence, &minimum.source);
+        }
+        Quantity::given(Dimension::CAPACITANCE, range, Pair::NOT_NEGATIVE, evidence)
+    }
+
     /// The minimum for the part's own output voltage, where the sheet makes it depend on that.
     fn at_output(&self, regulator: &Regulator, demand: &CapacitorDemand, minimum: &Cited<f64>) -> f64 {
         let volts = self.output_voltage(regulator).magnitude().nominal();
@@ -194,7 +221,7 @@ impl Facts<'_> {
         minimum: &Cited<f64>,
         farads: f64,
         what: String,
-    ) -> Quantity {
+    ) -> (Range, Evidence) {
         let recalled = minimum.recalled || kind == MinimumKind::Recalled;
         let key = match side {
             Side::Input => "minimum_input_capacitance",
@@ -205,11 +232,6 @@ impl Facts<'_> {
         if !evidence.grade.is_fact() {
             evidence = evidence.settled_by(settle.clone());
         }
-        let shares = match kind {
-            _ if recalled => RECALLED,
-            MinimumKind::Recommended => RECOMMENDED,
-            _ => (1.0, 1.0, 1.0),
-        };
         let recommended = kind == MinimumKind::Recommended && !recalled;
         let evidence = if recommended {
             let mut weaker = evidence.at_most(Grade::Inferred).settled_by(settle);
@@ -218,9 +240,8 @@ impl Facts<'_> {
         } else {
             evidence
         };
-        let (low, nominal, high) = shares;
-        let range = Range::clamped(farads * low, farads * nominal, farads * high);
-        Quantity::given(Dimension::CAPACITANCE, range, Pair::NOT_NEGATIVE, evidence)
+        let (low, nominal, high) = shares(kind, recalled);
+        (Range::clamped(farads * low, farads * nominal, farads * high), evidence)
     }
 
     /// A series regulator that no family knows: some capacitor at each side.
@@ -229,8 +250,9 @@ impl Facts<'_> {
             return Value::inapplicable("no minimum is known");
         }
         let (low, nominal, high) = SOME_CERAMIC;
-        let evidence = Evidence::new(Grade::Assumed, what, "no data sheet known: some capacitor")
-            .settled_by(self.which_family(regulator));
+        let evidence =
+            Evidence::new(Grade::Assumed, what, format!("{}: some capacitor is usual", self.no_sheet(regulator)))
+                .settled_by(self.which_family(regulator));
         let range = Range::clamped(low, nominal, high);
         Value::Figure(Quantity::given(Dimension::CAPACITANCE, range, Pair::NOT_NEGATIVE, evidence))
     }
@@ -275,5 +297,15 @@ impl Facts<'_> {
             Some(MinimumKind::Recalled) | None => "recalled",
         };
         Value::word(word)
+    }
+}
+
+/// What a minimum is taken to need, as multiples: least, nominal, most.
+fn shares(kind: MinimumKind, recalled: bool) -> (f64, f64, f64) {
+    match kind {
+        _ if recalled => RECALLED,
+        MinimumKind::Recalled => RECALLED,
+        MinimumKind::Recommended => RECOMMENDED,
+        _ => (1.0, 1.0, 1.0),
     }
 }

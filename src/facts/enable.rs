@@ -215,7 +215,7 @@ impl Facts<'_> {
             }
             None => {
                 let (low, nominal, high) = THRESHOLD;
-                let evidence = Evidence::new(Grade::Assumed, what, "no data sheet known")
+                let evidence = Evidence::new(Grade::Assumed, what, self.no_sheet(regulator))
                     .settled_by(self.which_family(regulator));
                 (Range::clamped(low, nominal, high), evidence)
             }

@@ -3,7 +3,7 @@
 use super::identity::of;
 use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
 use crate::circuit::DeviceId;
-use crate::knowledge::{MinimumKind, Technology};
+use crate::knowledge::{Family, MinimumKind, Technology};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
 use crate::recognize::{Bank, Branch, Regulator, Side};
 
@@ -283,12 +283,25 @@ impl Facts<'_> {
         match bound {
             None => Value::inapplicable("no bound"),
             Some(bound) => {
-                let evidence = self.cited(regulator, &window.source, window.recalled, what);
-                let range = Range::exactly(bound);
+                let mut evidence = self.cited(regulator, &window.source, window.recalled, what);
+                let others: Vec<f64> =
+                    self.families(regulator).skip(1).filter_map(|other| bound_of(other, end)).collect();
+                let range =
+                    others.iter().fold(Range::exactly(bound), |range, other| range.union(Range::exactly(*other)));
+                let versions = self.families(regulator).filter(|family| family.output_capacitor.is_some()).count();
+                if !range.is_exact() || others.len() + 1 < versions {
+                    evidence = self.by_version(regulator, evidence, &window.source);
+                }
                 Value::Figure(Quantity::given(Dimension::RESISTANCE, range, Pair::NOT_NEGATIVE, evidence))
             }
         }
     }
+}
+
+/// An end of the window that a family's sheet gives.
+fn bound_of(family: &Family, end: End) -> Option<f64> {
+    let window = family.output_capacitor.as_ref()?.esr.as_ref()?.value;
+    if end == End::Low { window.low } else { window.high }
 }
 
 /// The branches that act as capacitors of the net itself: those behind a ferrite or inductor do not.

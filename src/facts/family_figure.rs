@@ -46,12 +46,22 @@ impl Facts<'_> {
         let differ = told.iter().any(|other| other.value != first.value);
         let range = told.iter().fold(first.value, |range, other| range.union(other.value));
         let recalled = if differ { told.iter().all(|cited| cited.recalled) } else { first.recalled };
-        let mut evidence = self.cited(regulator, &first.source, recalled, what);
-        if differ {
-            evidence = evidence.at_most(Grade::Inferred).settled_by(self.which_family(regulator));
-            evidence.source = format!("{} and other makers' versions of the name", first.source);
-        }
-        Some((range, evidence))
+        let evidence = self.cited(regulator, &first.source, recalled, what);
+        Some((range, if differ { self.by_version(regulator, evidence, &first.source) } else { evidence }))
+    }
+
+    /// Evidence of a figure that the makers' versions which a name can mean have different: a guess that the maker's
+    /// own version settles.
+    pub(super) fn by_version(&self, regulator: &Regulator, evidence: Evidence, source: &str) -> Evidence {
+        /// More families than these are counted.
+        const NAMED: usize = 3;
+        let names: Vec<&str> = self.families(regulator).map(|family| family.name.as_str()).collect();
+        let named = names.iter().take(NAMED).copied().collect::<Vec<_>>().join(", ");
+        let others = names.len().saturating_sub(NAMED);
+        let more = if others > 0 { format!(" and {others} more") } else { String::new() };
+        let mut evidence = evidence.at_most(Grade::Inferred).settled_by(self.which_family(regulator));
+        evidence.source = format!("{source} and other makers' versions of the name ({named}{more})");
+        evidence
     }
 
     /// The evidence of a family's figure: no stronger than the identification, a guess where it was recalled.
@@ -59,6 +69,11 @@ impl Facts<'_> {
         let grade = if recalled { Grade::Inferred } else { Grade::Published };
         let shown = if recalled { format!("{source}, recalled") } else { source.to_owned() };
         let mut evidence = Evidence::new(grade, what, shown).at_most(regulator.identity.grade);
+        if !regulator.identity.grade.is_fact()
+            && let Some(remark) = regulator.identity.remarks.first()
+        {
+            evidence.source = format!("{}; {remark}", evidence.source);
+        }
         if !evidence.grade.is_fact() {
             evidence = evidence.settled_by(self.which_family(regulator));
         }
@@ -68,6 +83,15 @@ impl Facts<'_> {
     /// The declaration that would settle which family a part is.
     pub(super) fn which_family(&self, regulator: &Regulator) -> Settle {
         Settle::new(Table::Part, &self.part_of(regulator).reference, "family", "1117 / LM1117")
+    }
+
+    /// Why a figure is missing, in words that end in what to do.
+    pub(super) fn no_sheet(&self, regulator: &Regulator) -> &'static str {
+        if self.families(regulator).next().is_none() {
+            "part not known: declare its family or draft a part file"
+        } else {
+            "its part file does not say"
+        }
     }
 
     /// `dropout of U2`; the outputs of a part with several are told apart.

@@ -92,7 +92,7 @@ impl Facts<'_> {
         let relative = told.as_ref().and_then(Quantity::shown).map(|range| range.low().abs().max(range.high().abs()));
         let range = Range::with_tolerance(1.0, relative.unwrap_or(usual));
         let evidence = told.as_ref().and_then(|told| told.evidence().next().cloned()).unwrap_or_else(|| {
-            Evidence::new(Grade::Assumed, self.about(regulator, ask.noun), "no data sheet known")
+            Evidence::new(Grade::Assumed, self.about(regulator, ask.noun), self.no_sheet(regulator))
                 .settled_by(Settle::new(Table::Part, &self.part_of(regulator).reference, "tolerance", "±2 %"))
         });
         Quantity::given(Dimension::ONE, range, Pair::new(1.0 - widest, 1.0 + widest), evidence)

@@ -65,7 +65,7 @@ impl Facts<'_> {
         self.family_figure(regulator, bias("bias_min", "minimum bias")).unwrap_or_else(|| {
             let (low, nominal, high) = MINIMUM_BIAS;
             let evidence =
-                Evidence::new(Grade::Assumed, self.about(regulator, "minimum bias"), "no data sheet known")
+                Evidence::new(Grade::Assumed, self.about(regulator, "minimum bias"), self.no_sheet(regulator))
                     .settled_by(self.which_family(regulator));
             Quantity::fact(Dimension::CURRENT, Range::clamped(low, nominal, high), evidence)
         })

@@ -301,12 +301,12 @@ pub struct Family {
     pub name: String,
     /// The group of look-alikes that it belongs to, such as `1117`.
     pub group: String,
-    /// The maker.
+    /// The maker; `various` stands for all that have no file, and the known ones of the group then count as well.
     pub maker: String,
     /// Words, lower case, by which a manufacturer field names the maker.
     pub maker_words: Vec<String>,
-    /// The family under whose names this maker sells a version of its own; such a family is taken only where the
-    /// schematic names the maker.
+    /// The family under whose names this maker sells a version of its own. Such a name means both, so that their
+    /// figures are guesses where they differ, until the schematic names the maker or the board file the family.
     pub version_of: Option<String>,
     /// Name patterns: letters, digits and `-./+` as they are, in any case; `?` one character; `*` any run, also none;
     /// `{V}` a voltage code with the separators around it (`-3.3`, `33`, `3V3`, `05`, `-ADJ`), which must be there: one

@@ -42,21 +42,21 @@ enum Token {
 }
 
 #[derive(Debug)]
-struct Pattern {
+pub(super) struct Pattern {
     family: usize,
     literal: usize,
     tokens: Vec<Token>,
     /// Number of tokens that stand before the first `?`, `*` or code.
     beginning: usize,
-    /// The literal beginning, with runs of one character cut to one.
-    squeezed: String,
+    /// The letters and digits of the literal beginning.
+    pub(super) start: String,
 }
 
 /// The patterns of all families, with the spellings of their voltages.
 #[derive(Debug)]
 pub(super) struct Matcher<'a> {
     families: &'a [Family],
-    patterns: Vec<Pattern>,
+    pub(super) patterns: Vec<Pattern>,
     /// The voltage codes of each family, spelled out when first asked for.
     codes: Vec<OnceCell<Vec<(String, Code)>>>,
     /// What was found for a name: most parts of a board share theirs with others. Only looked up.
@@ -85,11 +85,6 @@ fn is_separator(each: char) -> bool {
     matches!(each, '-' | '.' | '/' | ' ' | '_')
 }
 
-fn squeezed(text: &str) -> String {
-    let mut last = None;
-    text.chars().filter(|each| last.replace(*each) != Some(*each)).collect()
-}
-
 fn compile(family: usize, pattern: &str) -> Pattern {
     let mut tokens = Vec::new();
     let mut rest = pattern;
@@ -111,8 +106,8 @@ fn compile(family: usize, pattern: &str) -> Pattern {
     let beginning = tokens.iter().take_while(plain).count();
     let text = |token: &Token| if let Token::Literal(each) = token { Some(*each) } else { None };
     let literal = tokens.iter().filter_map(text).count();
-    let squeezed = squeezed(&tokens.iter().take(beginning).filter_map(text).collect::<String>());
-    Pattern { family, literal, tokens, beginning, squeezed }
+    let start = tokens.iter().take(beginning).filter_map(text).collect();
+    Pattern { family, literal, tokens, beginning, start }
 }
 
 /// The ways in which a voltage is spelled as a code, without separators. `rounded`: references are called by fewer
@@ -210,22 +205,6 @@ impl<'a> Matcher<'a> {
             }
             if !found.is_empty() {
                 break;
-            }
-        }
-        found.sort_by(|one, other| rank(other).cmp(&rank(one)).then(one.family.cmp(&other.family)));
-        found
-    }
-
-    /// Families whose number the name spells with a doubled or a missing repeated character (`AMS117` for `AMS1117`).
-    pub(super) fn misspelt(&self, name: &str) -> Vec<Hit> {
-        let name = squeezed(name);
-        let mut found: Vec<Hit> = Vec::new();
-        for pattern in &self.patterns {
-            let goes_on = |rest: &str| rest.starts_with(|each: char| each.is_ascii_digit());
-            let fits = pattern.squeezed.len() >= 5
-                && name.strip_prefix(&pattern.squeezed).is_some_and(|rest| !goes_on(rest));
-            if fits && !found.iter().any(|hit| hit.family == pattern.family) {
-                found.push(Hit { family: pattern.family, literal: pattern.literal, base: 0, code: None });
             }
         }
         found.sort_by(|one, other| rank(other).cmp(&rank(one)).then(one.family.cmp(&other.family)));
@@ -365,11 +344,5 @@ mod tests {
         assert_eq!(fits("L78{V}*", "L78L05"), None);
         assert_eq!(fits("L78{V}*", "L7812CV"), Some((3, Some(Code::Volts(12.0)))));
         assert_eq!(fits("78{V}*", "78233"), None);
-    }
-
-    #[test]
-    fn a_missing_repeated_digit_is_told_as_a_misspelling() {
-        assert_eq!(squeezed("AMS1117"), squeezed("AMS117"));
-        assert_ne!(squeezed("LM317"), squeezed("LM337"));
     }
 }

@@ -9,9 +9,9 @@ use crate::quantity::Grade;
 use super::divider::{self, Ends};
 use super::family_match::Matcher;
 use super::feed;
-use super::identity::{self, Known};
+use super::identity::{self, Known, Sources};
 use super::in_place::InPlace;
-use super::kind::{Candidate, worth_looking};
+use super::kind::{Candidate, regulates, worth_looking};
 use super::model::{Design, Divider, Mode, Nominal, NotJudged, Regulator, RegulatorKind, Roles};
 use super::nominal::{self, Told};
 use super::order::natural;
@@ -86,9 +86,11 @@ struct Part<'a> {
 impl Finder<'_> {
     fn find(&self, matcher: &Matcher<'_>, regulators: &mut Vec<Regulator>, not_judged: &mut Vec<NotJudged>) {
         let device = self.device;
-        let mut known = identity::identify(device, self.overrides.family(&device.reference), self.knowledge, matcher);
         // Most parts of a board have neither a known name nor pins of interest; their text need not be read.
         let names: Vec<PinName> = device.pins.iter().map(|pin| pin_name::read(&pin.name, &pin.number)).collect();
+        let regulating = || regulates(device, &names);
+        let sources = Sources { matcher, knowledge: self.knowledge, regulating: &regulating };
+        let mut known = identity::identify(device, self.overrides.family(&device.reference), sources);
         if known.identity.families.is_empty() && !of_interest(&names) && !self.in_place.says_anything() {
             return;
         }

@@ -4,7 +4,8 @@ use crate::circuit::Device;
 use crate::knowledge::Knowledge;
 use crate::quantity::Grade;
 
-use super::family_match::{Hit, Matcher, rank, reduced};
+use super::family_match::{Hit, Matcher, reduced};
+use super::makers;
 use super::model::Identity;
 
 /// Field names that hold a maker's part number. Order numbers of distributors name no part.
@@ -53,12 +54,12 @@ pub(super) struct Known {
 }
 
 /// What names are matched against.
-#[derive(Debug, Clone, Copy)]
-struct Sources<'a> {
-    matcher: &'a Matcher<'a>,
-    knowledge: &'a Knowledge,
-    /// What the fields say of the maker, lower case.
-    maker: &'a str,
+#[derive(Clone, Copy)]
+pub(super) struct Sources<'a> {
+    pub(super) matcher: &'a Matcher<'a>,
+    pub(super) knowledge: &'a Knowledge,
+    /// Whether pins and text are those of a regulator or reference: only then a name may be taken for a similar one.
+    pub(super) regulating: &'a dyn Fn() -> bool,
 }
 
 /// Whether a text looks like a part number: letters, then digits, in one word.
@@ -97,14 +98,8 @@ pub(super) fn same_part(one: &str, other: &str) -> bool {
 }
 
 /// Identifies a device. `declared` is the family that the board file names for it.
-pub(super) fn identify(
-    device: &Device,
-    declared: Option<&str>,
-    knowledge: &Knowledge,
-    matcher: &Matcher<'_>,
-) -> Known {
-    let maker = maker(device);
-    let sources = Sources { matcher, knowledge, maker: &maker };
+pub(super) fn identify(device: &Device, declared: Option<&str>, sources: Sources<'_>) -> Known {
+    let maker = maker_as_written(device);
     let value = device.value.trim();
     let symbol = device.symbol();
     let symbol_agrees = value.is_empty() || same_part(value, symbol) || reduced(value) == reduced(symbol);
@@ -123,7 +118,7 @@ pub(super) fn identify(
         value_names_part,
     };
     if let Some(name) = declared
-        && let Some(family) = knowledge.families.iter().position(|family| family.name == name)
+        && let Some(family) = sources.knowledge.families.iter().position(|family| family.name == name)
     {
         known.identity.families = vec![family];
         known.identity.told_by = "board file".to_owned();
@@ -131,100 +126,95 @@ pub(super) fn identify(
         known.place = Place::Board;
         return known;
     }
-    if take(&mut known, value, "value", Place::Value, Grade::Drawn, sources) {
-        note_disagreement(&mut known, symbol, matcher);
+    if take(&mut known, value, ("value", Place::Value, Grade::Drawn), maker, sources) {
+        note_disagreement(&mut known, symbol, sources.matcher);
         return known;
     }
     for field in &device.fields {
         let name = field.name.trim();
         if NUMBER_FIELDS.iter().any(|each| each.eq_ignore_ascii_case(name)) && !field.value.trim().is_empty() {
             let told_by = format!("{name} field");
-            if take(&mut known, field.value.trim(), &told_by, Place::Number, Grade::Drawn, sources) {
+            if take(&mut known, field.value.trim(), (&told_by, Place::Number, Grade::Drawn), maker, sources) {
                 return known;
             }
         }
     }
-    by_symbol(&mut known, value, symbol, sources);
+    if !by_similar_name(&mut known, device, maker, sources) {
+        by_symbol(&mut known, value, symbol, maker, sources);
+    }
     known
 }
 
 /// Takes the families that a text fits; `false` where it fits none.
-fn take(known: &mut Known, text: &str, told_by: &str, place: Place, grade: Grade, sources: Sources<'_>) -> bool {
-    let Sources { matcher, knowledge, maker } = sources;
-    let hits = matcher.hits(&reduced(text));
-    let Some(best) = hits.first() else { return false };
-    known.identity.families = families(&hits, maker, knowledge);
-    let Some(first) = known.identity.families.first().copied() else { return false };
+fn take(
+    known: &mut Known,
+    text: &str,
+    (told_by, place, grade): (&str, Place, Grade),
+    maker: &str,
+    sources: Sources<'_>,
+) -> bool {
+    let hits = sources.matcher.hits(&reduced(text));
+    known.identity.grade = grade;
+    if !take_hits(known, &hits, maker, sources.knowledge) {
+        known.identity.grade = Grade::Drawn;
+        return false;
+    }
     text.clone_into(&mut known.identity.name);
     told_by.clone_into(&mut known.identity.told_by);
-    known.identity.grade = grade;
-    known.hit = Some(hits.iter().find(|hit| hit.family == first).copied().unwrap_or(*best));
     known.place = place;
     true
 }
 
-/// The families that are meant, best first. Makers sell versions of their own under a common name: such a version is
-/// taken only where a field names its maker, and then before the others.
-pub(super) fn families(hits: &[Hit], maker: &str, knowledge: &Knowledge) -> Vec<usize> {
-    let of_maker = |index: usize| {
-        let words = knowledge.families.get(index).map_or(&[][..], |family| family.maker_words.as_slice());
-        !maker.is_empty() && words.iter().any(|word| maker.contains(word.as_str()))
+/// Takes the families of hits. Another maker than theirs makes them a guess.
+fn take_hits(known: &mut Known, hits: &[Hit], maker: &str, knowledge: &Knowledge) -> bool {
+    let meant = makers::meant(hits, &maker.to_lowercase(), knowledge);
+    let Some(first) = meant.families.first().copied() else { return false };
+    known.hit = hits.iter().find(|hit| hit.family == first).or(hits.first()).copied();
+    known.identity.families = meant.families;
+    if meant.foreign
+        && let Some(family) = knowledge.families.get(first)
+    {
+        known.identity.grade = known.identity.grade.weaker(Grade::Inferred);
+        let remark = format!("made by {maker}, whose data sheet is not known; judged as that of {}", family.maker);
+        known.identity.remarks.push(remark);
+    }
+    true
+}
+
+/// No text names a known part, but the value may be one of a maker that is not known, or a known part misspelt.
+fn by_similar_name(known: &mut Known, device: &Device, maker: &str, sources: Sources<'_>) -> bool {
+    let value = device.value.trim();
+    if !known.value_names_part || !(sources.regulating)() {
+        return false;
+    }
+    let name = reduced(value);
+    let anyones = sources.matcher.without_maker(&name);
+    let (hits, remark) = if anyones.is_empty() {
+        // A library that draws and describes such a part knows how it is written.
+        let described = known.symbol_agrees && !device.description.is_empty() && !device.description_of_other;
+        let misspelt = sources.matcher.misspelt(&name, !described);
+        (misspelt.hits, format!("the value {value} is taken for a misspelling of {}", misspelt.meant))
+    } else {
+        (anyones, format!("the maker of {value} is not known; the figures of all known makers are guesses"))
     };
-    let is_version = |index: usize| knowledge.families.get(index).is_some_and(|family| family.version_of.is_some());
-    let Some(best) = hits.first() else { return Vec::new() };
-    // A more telling pattern is meant alone: TL431B is no TL431 of the wide grade, LM1117 no 1117 of an unknown maker.
-    let as_telling = |hit: &&Hit| rank(hit) == rank(best);
-    let mut found: Vec<usize> = hits.iter().filter(as_telling).map(|hit| hit.family).collect();
-    let named: Vec<&str> =
-        found.iter().filter_map(|index| knowledge.families.get(*index)).map(|family| family.name.as_str()).collect();
-    let versions: Vec<usize> = (0..knowledge.families.len())
-        .filter(|index| {
-            let parent = knowledge.families.get(*index).and_then(|family| family.version_of.as_deref());
-            parent.is_some_and(|parent| named.contains(&parent))
-        })
-        .filter(|index| !found.contains(index))
-        .collect();
-    found.extend(versions);
-    found.retain(|index| !is_version(*index) || of_maker(*index));
-    // A stable sort keeps the most telling pattern first among the rest.
-    found.sort_by_key(|index| !of_maker(*index));
-    found
+    let before = known.identity.remarks.len();
+    if !take_hits(known, &hits, maker, sources.knowledge) {
+        return false;
+    }
+    known.identity.remarks.truncate(before);
+    known.identity.grade = Grade::Inferred;
+    known.identity.remarks.push(remark);
+    true
 }
 
-/// The families of a name that nothing tells apart: those that are meant without a maker, and those of one maker. Each
-/// with the maker that must be named for it.
-pub(super) fn rivals(hits: &[Hit], knowledge: &Knowledge) -> Vec<(String, Vec<usize>)> {
-    let family = |index: &usize| knowledge.families.get(*index);
-    let mut groups: Vec<(String, Vec<usize>)> = vec![(String::new(), families(hits, "", knowledge))];
-    let named = hits.iter().filter_map(|hit| family(&hit.family)).map(|family| family.name.as_str());
-    let named: Vec<&str> = named.collect();
-    let versions = knowledge
-        .families
-        .iter()
-        .filter(|family| family.version_of.as_deref().is_some_and(|parent| named.contains(&parent)));
-    for word in versions.flat_map(|version| &version.maker_words) {
-        let of_maker = |index: &usize| {
-            family(index).is_some_and(|family| family.maker_words.iter().any(|own| word.contains(own.as_str())))
-        };
-        groups.push((word.clone(), families(hits, word, knowledge).into_iter().filter(of_maker).collect()));
-    }
-    for (_, group) in &mut groups {
-        group.sort_unstable();
-    }
-    groups.retain(|(_, group)| group.len() > 1);
-    groups
-}
-
-/// What the fields say of the maker, or nothing.
+/// What the fields say of the maker. Shops that stand in such a field make nothing.
 pub(super) fn maker_as_written(device: &Device) -> &str {
+    const SHOPS: &[&str] =
+        &["mouser", "digikey", "digi-key", "lcsc", "farnell", "newark", "arrow", "tme", "reichelt", "rs components"];
     const FIELDS: &[&str] =
         &["MANUFACTURER", "MFR", "MFG", "MAKER", "MANUFACTURER_NAME", "MANUFACTURER NAME", "VENDOR", "MF"];
-    FIELDS.iter().find_map(|name| device.field(name)).unwrap_or("")
-}
-
-/// The same, lower case.
-fn maker(device: &Device) -> String {
-    maker_as_written(device).to_lowercase()
+    let shop = |text: &&str| SHOPS.iter().any(|shop| text.to_lowercase().contains(shop));
+    FIELDS.iter().filter_map(|name| device.field(name)).find(|text| !shop(text)).unwrap_or("").trim()
 }
 
 /// The value names one part and the symbol another: worth a remark, and the value wins.
@@ -239,19 +229,9 @@ fn note_disagreement(known: &mut Known, symbol: &str, matcher: &Matcher) {
 }
 
 /// No text but perhaps the symbol's names a known part.
-fn by_symbol(known: &mut Known, value: &str, symbol: &str, sources: Sources<'_>) {
-    let matcher = sources.matcher;
-    // A value one repeated digit short of a known number is that part, misspelt.
-    let misspelt = if known.value_names_part { matcher.misspelt(&reduced(value)) } else { Vec::new() };
-    if let Some(best) = misspelt.first() {
-        known.identity.families = families(&misspelt, sources.maker, sources.knowledge);
-        known.identity.grade = Grade::Inferred;
-        known.identity.remarks.push(format!("the value {value} is taken for a misspelling"));
-        known.hit = Some(*best);
-        return;
-    }
+fn by_symbol(known: &mut Known, value: &str, symbol: &str, maker: &str, sources: Sources<'_>) {
     if known.symbol_agrees {
-        take(known, symbol, "symbol", Place::Symbol, Grade::Described, sources);
+        take(known, symbol, ("symbol", Place::Symbol, Grade::Described), maker, sources);
         // The value may carry the voltage code that the symbol lacks.
         return;
     }
@@ -262,7 +242,7 @@ fn by_symbol(known: &mut Known, value: &str, symbol: &str, sources: Sources<'_>)
         }
         return;
     }
-    if take(known, symbol, "symbol", Place::Symbol, Grade::Inferred, sources) && !value.is_empty() {
+    if take(known, symbol, ("symbol", Place::Symbol, Grade::Inferred), maker, sources) && !value.is_empty() {
         known.identity.remarks.push(format!("known only by its symbol {symbol}; the value is {value}"));
     }
 }

@@ -5,7 +5,7 @@
 //! linear regulator has (a bus, a flying capacitor, a switch node) is none, whatever its text says: many parts hold a
 //! small regulator inside and mention it.
 
-use crate::circuit::{Circuit, DeviceId, DeviceKind, PinType, supply_name};
+use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, PinType, supply_name};
 use crate::knowledge::{FamilyKind, Knowledge};
 
 use super::identity::{Known, Place};
@@ -32,6 +32,21 @@ pub(super) fn worth_looking(kind: DeviceKind) -> bool {
 
 fn drawn_discrete(kind: DeviceKind) -> bool {
     matches!(kind, DeviceKind::Zener | DeviceKind::Diode | DeviceKind::Bipolar | DeviceKind::OtherSemiconductor)
+}
+
+/// Whether pins or text are those of a regulator or a reference, whatever the part is called.
+pub(super) fn regulates(device: &Device, names: &[PinName]) -> bool {
+    let has = |word: Word| names.iter().any(|name| name.is(word));
+    let ends = (has(Word::Input) || has(Word::Supply)) && (has(Word::Output) || has(Word::ReferenceOutput));
+    let series = ends && (has(Word::Ground) || has(Word::Adjust) || has(Word::Reference));
+    let shunt = has(Word::Cathode) && has(Word::Anode) && (has(Word::Reference) || has(Word::Adjust));
+    if has(Word::Alien) || has(Word::Switching) || has(Word::Pump) {
+        return false;
+    }
+    series || shunt || {
+        let text = super::words::read(&device.description, &device.keywords, &device.library);
+        (text.linear || text.reference) && !text.foreign && !text.switching
+    }
 }
 
 /// Reference prefixes of parts that are no regulators: connectors, filters, oscillators, switches, microphones, motors.

@@ -5,7 +5,7 @@ use std::collections::{BTreeMap, BTreeSet};
 use crate::knowledge::{Family, Knowledge, VOLTAGE_CODE};
 
 use super::family_match::{Code, Matcher, reduced};
-use super::identity;
+use super::makers;
 use super::voltage_code::{Arbiters, choose, read_name};
 
 /// A family that a name fits.
@@ -17,7 +17,7 @@ pub struct Named {
     pub volts: Option<f64>,
     /// Whether the name says that the part is adjustable.
     pub adjustable: bool,
-    /// Whether it is taken only where a field names its maker.
+    /// Whether it is another maker's version of the name, meant alone only where a field names that maker.
     pub by_maker: bool,
 }
 
@@ -38,7 +38,7 @@ pub fn families_of_name(name: &str, knowledge: &Knowledge) -> Vec<Named> {
     let matcher = Matcher::new(&knowledge.families);
     let text = reduced(name);
     let hits = matcher.hits(&text);
-    let meant = identity::families(&hits, "", knowledge);
+    let meant = makers::owners(&hits, knowledge);
     let fitting = hits.iter().filter(|hit| meant.contains(&hit.family));
     let mut found: Vec<Named> = fitting
         .map(|hit| {
@@ -84,7 +84,7 @@ pub fn overlaps<'a>(knowledge: &Knowledge, of: &[&Family], names: impl IntoItera
     let mut found: BTreeMap<Vec<usize>, (String, String)> = BTreeMap::new();
     for name in names {
         let hits = matcher.hits(&name);
-        for (maker, families) in identity::rivals(&hits, knowledge) {
+        for (maker, families) in makers::rivals(&hits, knowledge) {
             found.entry(families).or_insert_with(|| (name.clone(), maker));
         }
     }

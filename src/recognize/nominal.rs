@@ -49,11 +49,11 @@ fn texts<'a>(device: &'a Device, known: &'a Known) -> Vec<(&'a str, &'static str
     texts
 }
 
-/// Whether a name says that the part is adjustable.
-fn says_adjustable(name: &str) -> bool {
+/// Whether a name says that the part is adjustable. A lone `A` does where such a version can exist: `HT7333-A` is fixed.
+fn says_adjustable(name: &str, family: Option<&Family>) -> bool {
     let name = reduced(name);
-    name.match_indices("ADJ").next().is_some()
-        || name.split(['-', ' ']).skip(1).any(|part| part == "A" || part == "AD")
+    let lone = || name.split(['-', ' ']).skip(1).any(|part| part == "A" || part == "AD");
+    name.contains("ADJ") || family.is_none_or(|family| family.adjust.is_some()) && lone()
 }
 
 /// Reads what the texts say. `negative` is what is known of the sign.
@@ -65,7 +65,7 @@ pub(super) fn read(device: &Device, known: &Known, text: &TextSigns, knowledge: 
     let described = described && !device.description_of_other;
     let stated: &[_] = if described { &text.volts } else { &[] };
     for (name, place, grade) in texts(device, known) {
-        if says_adjustable(name) {
+        if says_adjustable(name, family) {
             told.adjustable = true;
             return told;
         }
@@ -85,7 +85,9 @@ pub(super) fn read(device: &Device, known: &Known, text: &TextSigns, knowledge: 
         }
         break;
     }
-    if described {
+    // Beside a part that is made adjustable only, the volts of a description are the most that it bears.
+    let adjustable_only = family.is_some_and(|family| !family.fixed && family.adjust.is_some());
+    if described && !adjustable_only {
         from_description(&mut told, device, known, text);
     }
     if told.volts.is_none()
@@ -96,7 +98,7 @@ pub(super) fn read(device: &Device, known: &Known, text: &TextSigns, knowledge: 
         let source = format!("the only voltage of {}", family.name);
         told.volts = Some(Nominal { volts: *only, grade: known.identity.grade.weaker(Grade::Published), source });
     }
-    told.adjustable |= told.volts.is_none() && text.adjustable && described;
+    told.adjustable |= told.volts.is_none() && (adjustable_only || text.adjustable && described);
     told
 }
 

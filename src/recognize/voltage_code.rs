@@ -91,7 +91,8 @@ pub(super) fn read_name(name: &str, base: usize) -> Vec<Reading> {
         upper.replace_range(range, "_");
     }
     let mut readings = Vec::new();
-    spelled(&upper, &mut readings);
+    // `LD1117V50` spells no 17.5 V: the digits of the family's own number belong to no voltage.
+    spelled(upper.get(base.min(upper.len())..).unwrap_or(""), &mut readings);
     let seventy = SEVENTY.captures(&upper).and_then(|found| seventy_reading(&found));
     let is_seventy = seventy.is_some();
     readings.extend(seventy);
@@ -469,6 +470,13 @@ mod tests {
         ] {
             assert_eq!(with(name, description), Some(volts), "{name}");
         }
+    }
+
+    #[test]
+    fn the_familys_own_number_is_part_of_no_voltage() {
+        let readings = read_name("LD1117V50", 6);
+        let chosen = choose(&readings, Arbiters { made_for: &[1.2, 3.3, 5.0], rounded: false, stated: &[] });
+        assert_eq!(chosen, Some(Chosen::sure(5.0, false)));
     }
 
     #[test]

@@ -12,7 +12,7 @@ use super::text::{heading, unread};
 use crate::circuit::NetId;
 use crate::facts::{DEFINITIONS, Definition, Facts, RailOrigin, Subject, SubjectKind, Value};
 use crate::quantity::Evidence;
-use crate::recognize::{Mode, Regulator};
+use crate::recognize::{Mode, Regulator, RegulatorKind};
 use crate::review::Examination;
 
 /// The supply tree of a board, then each regulator with every figure known.
@@ -145,6 +145,9 @@ fn row(facts: &Facts<'_>, net: NetId, depth: usize) -> Vec<String> {
 /// A regulator and its figures; with everything behind them where `whole`.
 fn block(facts: &Facts<'_>, subject: Subject, regulator: &Regulator, look: Look, whole: bool) -> String {
     let mut text = wrapped(&title(facts, regulator), "", "  ", look.width());
+    for note in notes(facts, regulator) {
+        text.push_str(&wrapped(&note, "  note: ", "        ", look.width()));
+    }
     let mut rows = Vec::new();
     let mut unknown = Vec::new();
     let (mut holding, mut sources) = (Vec::new(), BTreeSet::new());
@@ -209,6 +212,20 @@ fn title(facts: &Facts<'_>, regulator: &Regulator) -> String {
         words.push(format!("sheet {}", inert(&device.sheet)));
     }
     words.join(" · ")
+}
+
+/// What was odd about the name of a part, and what to do about one that is not known.
+fn notes(facts: &Facts<'_>, regulator: &Regulator) -> Vec<String> {
+    let mut notes: Vec<String> = regulator.identity.remarks.iter().map(|remark| inert(remark).into_owned()).collect();
+    let judged = regulator.kind != RegulatorKind::Switching;
+    if judged && facts.families(regulator).next().is_none() {
+        let reference = inert(&facts.part_of(regulator).reference).into_owned();
+        notes.push(format!(
+            "{reference} is not known and judged by what its symbol says: declare its `family` in the board file, or \
+             begin a part file with `railworthy draft`"
+        ));
+    }
+    notes
 }
 
 fn definitions() -> impl Iterator<Item = &'static Definition> {

@@ -43,7 +43,7 @@ fn family(family: &Family, count: &mut Count) -> String {
     let sign = if family.polarity == Sign::Negative { ", negative" } else { "" };
     let (names, file) = (family.names.join(" "), &family.file);
     let version =
-        family.version_of.as_ref().map(|parent| format!(", where the maker is named, in place of {parent}"));
+        family.version_of.as_ref().map(|parent| format!(", also sold under the names of {parent}"));
     let mut text = format!(
         "\n### {}\n\n{}, {}{sign}: `{names}`{} ([{file}]({file}))\n\n",
         family.name,

@@ -42,8 +42,7 @@ fn lines(grouped: Grouped) -> String {
 fn family(family: &Family, count: &mut Count) -> String {
     let sign = if family.polarity == Sign::Negative { ", negative" } else { "" };
     let (names, file) = (family.names.join(" "), &family.file);
-    let version =
-        family.version_of.as_ref().map(|parent| format!(", also sold under the names of {parent}"));
+    let version = family.version_of.as_ref().map(|parent| format!(", also sold under the names of {parent}"));
     let mut text = format!(
         "\n### {}\n\n{}, {}{sign}: `{names}`{} ([{file}]({file}))\n\n",
         family.name,

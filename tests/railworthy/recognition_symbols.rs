@@ -15,9 +15,9 @@ use crate::shared::shared_folder;
 /// The share of the circuits that must be recognized in full.
 const WANTED: f64 = 0.98;
 
-type Row = BTreeMap<String, String>;
+pub(crate) type Row = BTreeMap<String, String>;
 
-fn rows(text: &str) -> Vec<Row> {
+pub(crate) fn rows(text: &str) -> Vec<Row> {
     let mut lines = text.lines();
     let head: Vec<&str> = lines.next().unwrap().split('\t').collect();
     let row =
@@ -235,7 +235,7 @@ fn parts_drawn_by_another_library_without_a_word_are_recognized() {
 }
 
 /// A symbol of a table alone on a board, every pin on a net of its own, grounds on ground.
-fn alone(row: &Row) -> String {
+pub(crate) fn alone(row: &Row) -> String {
     let (mut pins, mut nets) = (String::new(), String::new());
     for (code, pin) in row["pins"].split(' ').enumerate() {
         let (number, rest) = pin.split_once(':').unwrap();

@@ -153,7 +153,7 @@ fn kinds_polarity_mode_and_enable_follow_the_drawing() {
         assert!(text.contains(part), "{part}: {text}");
     }
     let negative = regulator(
-        "QX79-05",
+        "QX88-05",
         "Negative 5V linear regulator",
         vec![("1", "GND", "power_in", "GND"), ("2", "VI", "power_in", "+5V"), ("3", "VO", "power_out", "+3V3")],
     );
@@ -232,6 +232,14 @@ fn a_draft_is_written_to_a_file_whole_or_not_at_all() {
     assert_eq!(run(folder.path(), &["draft", "a.net", "U1", "--output", "no/qx10.toml"]).status, Some(2));
 }
 
+/// A real board whose parts are called by numbers that nobody makes: those on the collected boards are all known.
+fn renamed(path: &Path) -> Vec<u8> {
+    let text = String::from_utf8_lossy(&fs::read(path).unwrap()).into_owned();
+    let known = ["AP2114H", "NCP4620", "MIC5365", "TPS7A49", "ADP3335", "ADP3336", "MCP1725", "MCP1700"];
+    let renamed = known.iter().fold(text, |text, name| text.replace(name, &format!("QX{}", &name[name.len() - 4..])));
+    renamed.into_bytes()
+}
+
 #[test]
 #[allow(clippy::print_stderr, reason = "what is drafted is for the reader to inspect")]
 fn drafts_of_real_boards_load_and_make_their_parts_known() {
@@ -243,7 +251,7 @@ fn drafts_of_real_boards_load_and_make_their_parts_known() {
     let mut written = std::collections::BTreeSet::new();
     for entry in fs::read_dir(shared.join("corpus/files")).unwrap().map(Result::unwrap) {
         let name = entry.file_name().into_string().unwrap();
-        let Ok(read) = netlist::read(&name, &fs::read(entry.path()).unwrap()) else { continue };
+        let Ok(read) = netlist::read(&name, &renamed(&entry.path())) else { continue };
         let design = recognize(Circuit::build(&read).0, &(), &built_in);
         for regulator in &design.regulators {
             let reference = &design.circuit.device(regulator.device).reference;
@@ -276,7 +284,7 @@ fn drafts_of_real_boards_load_and_make_their_parts_known() {
     assert!(problems.is_empty(), "{problems:?}");
     assert_eq!(knowledge.families.len(), built_in.families.len() + written.len());
     for (path, reference, name) in boards {
-        let read = netlist::read(&name, &fs::read(path).unwrap()).unwrap();
+        let read = netlist::read(&name, &renamed(&path)).unwrap();
         let design = recognize(Circuit::build(&read).0, &(), &knowledge);
         let of_part =
             |each: &&railworthy::recognize::Regulator| design.circuit.device(each.device).reference == reference;

@@ -91,20 +91,8 @@ fn group<'a>(first: &'a Family, knowledge: &'a Knowledge) -> impl Iterator<Item 
             && other.kind == first.kind
             && other.polarity == first.polarity
             && other.adjust == first.adjust
-            // Grades of one part are no versions of it, nor are their pins always the same.
-            && (other.packages.is_empty() || first.packages.is_empty() || shares_pins(first, other))
     };
     knowledge.families.iter().enumerate().filter(move |(_, other)| alike(other)).map(|(index, _)| index)
-}
-
-/// Whether no package that both have has other pins in one.
-fn shares_pins(one: &Family, other: &Family) -> bool {
-    one.packages.iter().all(|(name, package)| {
-        other
-            .packages
-            .get(name)
-            .is_none_or(|same| same.pins.is_empty() || package.pins.is_empty() || same.pins == package.pins)
-    })
 }
 
 /// Whether a field that names the maker (lower case) names that of a family. Words begin where words of the field do

@@ -136,13 +136,21 @@ impl Facts<'_> {
             return Drive::Level(rail.voltage);
         }
         if regulator.input_net == Some(net) {
-            // On its own input: whatever that is worth, it is what the part runs from.
-            return Drive::Level(rail.voltage);
+            return Drive::Level(self.own_input(regulator, rail.voltage));
         }
         match self.pulls(regulator, net) {
             Ok(pulls) => self.pulled(regulator, &pulls),
             Err(by) => Drive::Elsewhere(by),
         }
+    }
+
+    /// The part's own input, of which nothing is known: whatever it is worth, while the part regulates it is no less than
+    /// the output.
+    fn own_input(&self, regulator: &Regulator, unknown: Quantity) -> Quantity {
+        let Some(least) = self.set_point(regulator).magnitude().nominal() else { return unknown };
+        let Some(evidence) = unknown.missing_evidence().next().cloned() else { return unknown };
+        let evidence = Evidence { source: "at least the output".to_owned(), ..evidence };
+        Quantity::given(Dimension::VOLTAGE, Range::exactly(least), Pair::NOT_NEGATIVE, evidence)
     }
 
     /// The resistors from a net to rails. An error names a part that drives the net in a way that no netlist tells.

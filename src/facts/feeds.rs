@@ -17,6 +17,8 @@ const SCHOTTKY: (f64, f64, f64) = (0.15, 0.35, 0.6);
 const SILICON: (f64, f64, f64) = (0.5, 0.75, 1.1);
 /// What a reverse-polarity transistor drops in volts: low, nominal, high; at most its body diode.
 const TRANSISTOR: (f64, f64, f64) = (0.0, 0.03, 0.2);
+/// The same where the gate hangs on another supply: between the two neither is on and the body diode carries the load.
+const SHARING: (f64, f64, f64) = (0.0, 0.03, 1.1);
 /// No diode of a supply line drops more than this many volts.
 const DIODE_LIMIT: f64 = 2.0;
 /// How many loads a sum names one by one; more are one figure.
@@ -45,6 +47,8 @@ pub(super) enum Element {
     /// A field-effect transistor whose body diode conducts and which is switched on by the supply itself: protection
     /// against a reversed supply.
     Transistor,
+    /// The same, switched off by another supply that feeds the same net through a diode.
+    Sharing,
 }
 
 /// The fitted series elements by which a supply net feeds others: the device, the fed net and what it is. A diode
@@ -68,7 +72,8 @@ pub(super) fn feeds(circuit: &Circuit, net: NetId, positive: bool) -> Vec<(Devic
 }
 
 /// Transistors by which a supply net feeds another through their body diode: a P channel from drain to source on a
-/// positive supply, an N channel on a negative one, the gate held by resistors and zeners alone.
+/// positive supply, an N channel on a negative one, the gate held by resistors and zeners alone, or by a supply that
+/// takes over through a diode.
 fn transistors(circuit: &Circuit, net: NetId, positive: bool) -> Vec<(DeviceId, NetId, Element)> {
     let wanted = if positive { Polarity::P } else { Polarity::N };
     let found = circuit.devices_on(net).filter_map(|device| {
@@ -83,10 +88,23 @@ fn transistors(circuit: &Circuit, net: NetId, positive: bool) -> Vec<(DeviceId, 
             let kind = circuit.device(other).kind;
             other == device || matches!(kind, DeviceKind::Resistor | DeviceKind::Zener | DeviceKind::Capacitor)
         });
-        let held = circuit.net(gate).ground || passive;
-        (drain == net && source != net && held).then_some((device, source, Element::Transistor))
+        if drain != net || source == net {
+            return None;
+        }
+        if circuit.net(gate).ground || passive {
+            return Some((device, source, Element::Transistor));
+        }
+        shares(circuit, gate, source).then_some((device, source, Element::Sharing))
     });
     found.collect()
+}
+
+/// Whether a diode leads from one net to another, either way: the sign of the supply has been looked at already.
+fn shares(circuit: &Circuit, gate: NetId, source: NetId) -> bool {
+    circuit.neighbours(gate).any(|(device, to)| {
+        let kind = circuit.device(device).kind;
+        to == source && matches!(kind, DeviceKind::Diode | DeviceKind::Schottky)
+    })
 }
 
 fn element(part: &Device) -> Option<Element> {
@@ -131,6 +149,7 @@ impl Facts<'_> {
                 self.forward_drop(device, if schottky { SCHOTTKY } else { SILICON }, to, volts)
             }
             Element::Transistor => self.forward_drop(device, TRANSISTOR, to, volts),
+            Element::Sharing => self.forward_drop(device, SHARING, to, volts),
         };
         if volts >= 0.0 { from.minus(&drop) } else { from.plus(&drop) }
     }

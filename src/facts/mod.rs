@@ -2,6 +2,7 @@
 //!
 //! A figure is one [`Definition`] in the file that computes it, and that file one line in [`DEFINITIONS`].
 
+mod battery;
 mod capacitance;
 mod capacitor;
 mod circuit_values;
@@ -20,6 +21,7 @@ mod net;
 mod open_pins;
 mod output;
 mod pins;
+mod programmed;
 mod rails;
 mod sheet;
 mod shunt;

@@ -128,8 +128,11 @@ impl Facts<'_> {
         )
     }
 
-    /// The magnitude of an output that resistors set.
+    /// The magnitude of an output that resistors or pins set.
     fn adjusted_output(&self, regulator: &Regulator) -> Option<Quantity> {
+        if let Some(programmed) = self.programmed_output(regulator) {
+            return Some(programmed);
+        }
         let divider = regulator.divider.as_ref()?;
         if divider.trimmed {
             return self.trimmed_output(regulator);

@@ -4,6 +4,7 @@ use std::collections::hash_map::Entry;
 use std::collections::{HashMap, VecDeque};
 
 use super::Facts;
+use super::battery::battery;
 use super::feeds::{feeds, supply_example};
 use crate::board::{SupplyEntry, SupplyNodes};
 use crate::circuit::{DeviceId, DeviceKind, NetId, supply_name};
@@ -16,8 +17,6 @@ const NAMED: f64 = 0.05;
 const NAMED_HIGH: f64 = 0.10;
 /// Volts from which a named supply is taken to the wider tolerance.
 const HIGH_SUPPLY: f64 = 9.0;
-/// A lithium cell in volts: empty, nominal, full.
-const LITHIUM_CELL: (f64, f64, f64) = (3.0, 3.7, 4.2);
 
 /// Where the voltage of a net comes from.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -208,10 +207,13 @@ fn is_protection(facts: &Facts<'_>, from: NetId, to: NetId) -> bool {
     facts.feeding(from).any(|regulator| regulator.input_net == Some(to) || switched(regulator))
 }
 
-/// Whether a net that one diode feeds is fed by another one too.
+/// Whether a net that one diode or transistor feeds is fed by another one too.
 fn is_second_feed(facts: &Facts<'_>, rail: &Rail, device: DeviceId) -> bool {
-    let diode = |device| matches!(facts.circuit().device(device).kind, DeviceKind::Diode | DeviceKind::Schottky);
-    matches!(rail.origin, RailOrigin::Through { device: first, .. } if first != device && diode(first) && diode(device))
+    let gate = |device| {
+        let kind = facts.circuit().device(device).kind;
+        matches!(kind, DeviceKind::Diode | DeviceKind::Schottky | DeviceKind::Mosfet)
+    };
+    matches!(rail.origin, RailOrigin::Through { device: first, .. } if first != device && gate(first) && gate(device))
 }
 
 /// Either of two supplies behind diodes may be the one that is there: the range over both.
@@ -226,7 +228,7 @@ fn either(one: &Quantity, other: &Quantity) -> Quantity {
 /// The voltage that a net's name, or a cell on it, tells.
 fn named(facts: &Facts<'_>, net: NetId) -> Option<Rail> {
     let name = &facts.circuit().net(net).name;
-    let (range, source) = standard_by_name(facts, name).or_else(|| cell(facts, net, name)).or_else(|| {
+    let (range, source) = standard_by_name(facts, name).or_else(|| battery(facts, net, name)).or_else(|| {
         let volts = supply_name(name)?.volts;
         let tolerance = if volts.abs() >= HIGH_SUPPLY { NAMED_HIGH } else { NAMED };
         Some((Range::with_tolerance(volts, tolerance), "net name".to_owned()))
@@ -244,27 +246,4 @@ fn standard_by_name(facts: &Facts<'_>, name: &str) -> Option<(Range, String)> {
         .iter()
         .find(|supply| supply.nets.iter().any(|pattern| pattern.eq_ignore_ascii_case(last)))?;
     Some((supply.voltage.value, format!("net name, taken as {}", supply.name)))
-}
-
-/// A single cell on the net, or a battery's name beside a lithium charger.
-fn cell(facts: &Facts<'_>, net: NetId, name: &str) -> Option<(Range, String)> {
-    let circuit = facts.circuit();
-    let upper = name.to_ascii_uppercase();
-    let battery_name = upper.contains("BAT");
-    let mut source = None;
-    for (device, pin) in circuit.fitted_on(net) {
-        let part = circuit.device(device);
-        let text = || format!("{} {} {}", part.part, part.description, part.keywords).to_ascii_lowercase();
-        let positive = || part.pins.get(pin).is_some_and(|pin| pin.name.contains('+') || pin.number == "1");
-        if part.kind == DeviceKind::Battery && text().contains("cell") && !text().contains("multiple") && positive() {
-            source = Some(format!("the cell {}", part.reference));
-        } else if battery_name && part.kind == DeviceKind::Integrated {
-            let text = text();
-            if text.contains("charge") && text.contains("li") && !text.contains("charge pump") {
-                source = Some(format!("the charger {}", part.reference));
-            }
-        }
-    }
-    let (low, nominal, high) = LITHIUM_CELL;
-    source.map(|source| (Range::clamped(low, nominal, high), format!("{source}, taken as one lithium cell")))
 }

@@ -286,9 +286,8 @@ fn pass_code(reached: &[Reached], name: &[char], codes: &[(String, Code)], loose
         let separators = name.iter().skip(*start).take_while(|each| is_separator(**each)).count();
         let at = start + separators;
         let before = at.checked_sub(1).and_then(|before| name.get(before)).copied().unwrap_or(' ');
-        if loose && separators == 0 && (before.is_ascii_digit() || before == '.') {
-            continue;
-        }
+        // Digits there go on the number before them; letters (`STA` for adjustable) do not.
+        let inside = loose && separators == 0 && (before.is_ascii_digit() || before == '.');
         // A point that was taken for a separator must not cut a number.
         if loose && before == '.' && at >= 2 && digit(at - 2) {
             continue;
@@ -299,7 +298,8 @@ fn pass_code(reached: &[Reached], name: &[char], codes: &[(String, Code)], loose
             let fits = name.get(at..at + length).is_some_and(|part| part.iter().copied().eq(text.chars()));
             let cut = name.get(at + length).is_some_and(|each| *each == '.') && digit(at + length + 1);
             let alone = length > 1 || !loose || detached;
-            if fits && alone && !digit(at + length) && !cut {
+            let goes_on = inside && text.starts_with(|each: char| each.is_ascii_digit());
+            if fits && alone && !goes_on && !digit(at + length) && !cut {
                 next.push((at + length, Some(*code)));
                 break;
             }
@@ -344,5 +344,7 @@ mod tests {
         assert_eq!(fits("L78{V}*", "L78L05"), None);
         assert_eq!(fits("L78{V}*", "L7812CV"), Some((3, Some(Code::Volts(12.0)))));
         assert_eq!(fits("78{V}*", "78233"), None);
+        assert_eq!(fits("LM1117*{V}*", "LM1117ADJ"), Some((6, Some(Code::Adjustable))));
+        assert_eq!(fits("TLV11*{V}*", "TLV1133"), None);
     }
 }

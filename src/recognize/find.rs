@@ -17,6 +17,7 @@ use super::nominal::{self, Told};
 use super::order::natural;
 use super::outputs::{Rail, rails, roles_of};
 use super::pin_name::{self, PinName, Word};
+use super::programming::programming_pins;
 use super::roles::{self, Hints};
 use super::walk::SAMPLE;
 use super::words;
@@ -205,6 +206,9 @@ impl Finder<'_> {
     fn mode(&self, part: &Part<'_>, roles: &Roles, divider: Option<&Divider>) -> Mode {
         if self.in_place.volts.is_some() {
             return Mode::Fixed;
+        }
+        if part.told.volts.is_none() && !programming_pins(self.device).is_empty() {
+            return Mode::Adjustable;
         }
         let Some(divider) = divider else {
             return if roles.adjust.is_empty() || part.told.volts.is_some() { Mode::Fixed } else { Mode::Adjustable };

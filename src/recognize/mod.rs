@@ -25,6 +25,7 @@ mod order;
 mod outputs;
 mod package;
 mod pin_name;
+mod programming;
 mod roles;
 mod sketch;
 mod stated;
@@ -44,4 +45,5 @@ pub use model::{
 };
 pub use named::{Named, Overlap, families_of_name, overlaps};
 pub use package::{family_package, package_of};
+pub use programming::programming_pins;
 pub use sketch::{NoSketch, Sketch, sketch};

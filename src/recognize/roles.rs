@@ -4,7 +4,7 @@
 //! with two meanings (`ADJ/GND`, `SENSE/FB`) are settled by what the part is known to be and by their net.
 
 use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId, PinType, supply_name};
-use crate::knowledge::{Family, RoleName};
+use crate::knowledge::{Family, Package, RoleName};
 
 use super::model::RegulatorKind;
 use super::package::{family_package, package_of};
@@ -36,6 +36,7 @@ pub(super) fn assign(circuit: &Circuit, id: DeviceId, names: &[PinName], hints: 
         assignment.series();
     }
     assignment.fill_by_family();
+    assignment.ground_of_a_fixed_symbol();
     if hints.kind != RegulatorKind::Shunt {
         assignment.fill_by_type();
         assignment.fill_by_net();
@@ -146,9 +147,9 @@ impl Assignment<'_> {
         }
     }
 
-    /// Pins whose names say nothing get the role of the family's pin table, by package.
-    fn fill_by_family(&mut self) {
-        let Some(family) = self.hints.family else { return };
+    /// The family's pins in the package that the footprint or the symbol names, or in any where all agree.
+    fn package(&self) -> Option<&Package> {
+        let family = self.hints.family?;
         let footprint = normal(&self.device.footprint);
         let symbol = normal(&self.device.part);
         let named = |name: &str| {
@@ -169,7 +170,29 @@ impl Assignment<'_> {
             let first = packages.next()?;
             packages.all(|other| other.pins == first.pins).then_some(first)
         };
-        let Some(package) = fitting.or_else(only) else { return };
+        fitting.or_else(only)
+    }
+
+    /// The adjustable version under the symbol of a fixed one: the pin that the symbol calls ground is the adjust pin.
+    fn ground_of_a_fixed_symbol(&mut self) {
+        if self.hints.fixed || !self.hints.adjustable || self.has(RoleName::Adjust) {
+            return;
+        }
+        let both = |roles: &Vec<RoleName>| roles.contains(&RoleName::Adjust) && roles.contains(&RoleName::Ground);
+        let shared = self
+            .device
+            .pins
+            .iter()
+            .position(|pin| self.package().and_then(|package| package.pins.get(&pin.number)).is_some_and(both));
+        let Some(index) = shared else { return };
+        if self.roles.get(index).copied().flatten() == Some(RoleName::Ground) {
+            self.set(index, RoleName::Adjust);
+        }
+    }
+
+    /// Pins whose names say nothing get the role of the family's pin table, by package.
+    fn fill_by_family(&mut self) {
+        let Some(package) = self.package().cloned() else { return };
         for index in 0..self.names.len() {
             let Some(number) = self.device.pins.get(index).map(|pin| pin.number.as_str()) else { continue };
             if !self.open(index) || self.names.get(index).is_some_and(|name| name.words.len() > 1) {

@@ -56,7 +56,7 @@ static PACKAGE: LazyLock<Regex> = LazyLock::new(|| {
     )
 });
 static SPELLED_V: LazyLock<Regex> =
-    LazyLock::new(|| regex(r"(\d{1,2})V(\d{1,3})|(\d{1,2})P(\d{1,2})(?:V|$|[^A-Z0-9])"));
+    LazyLock::new(|| regex(r"(?:^|[^0-9])(?:(\d{1,2})V(\d{1,3})|(\d{1,2})P(\d{1,2})(?:V|$|[^A-Z0-9]))"));
 static POINT: LazyLock<Regex> = LazyLock::new(|| regex(r"(\d{1,4})\.(\d{1,3})"));
 static VOLTS: LazyLock<Regex> = LazyLock::new(|| regex(r"(?:^|[^0-9.])(\d{1,2})V(?:DC)?(?:$|[^A-Z0-9])"));
 static SEVENTY: LazyLock<Regex> =
@@ -91,14 +91,15 @@ pub(super) fn read_name(name: &str, base: usize) -> Vec<Reading> {
         upper.replace_range(range, "_");
     }
     let mut readings = Vec::new();
-    // `LD1117V50` spells no 17.5 V: the digits of the family's own number belong to no voltage.
-    spelled(upper.get(base.min(upper.len())..).unwrap_or(""), &mut readings);
+    // The digits of the family's own number begin no voltage (`LD1117V33`), and one may follow them (`AMS11173V3`).
+    let behind = upper.get(base.min(upper.len())..).unwrap_or("");
+    spelled(behind, &mut readings);
     let seventy = SEVENTY.captures(&upper).and_then(|found| seventy_reading(&found));
     let is_seventy = seventy.is_some();
     readings.extend(seventy);
     let has_spelled = !readings.is_empty();
     if base > 0 {
-        behind_base(upper.get(base.min(upper.len())..).unwrap_or(""), &mut readings);
+        behind_base(behind, &mut readings);
     }
     if !is_seventy {
         coded(&upper, &mut readings);
@@ -437,6 +438,8 @@ mod tests {
             ("LM2940CT-12", 1.2),
             ("LM7805_TO220", 5.0),
             ("XC6220B331MR", 3.3),
+            ("LD1117V33", 3.3),
+            ("LD1117V50C", 5.0),
             ("AP2127K-4.75", 4.75),
         ] {
             assert_eq!(alone(name), Some(volts), "{name}");
@@ -473,10 +476,12 @@ mod tests {
     }
 
     #[test]
-    fn the_familys_own_number_is_part_of_no_voltage() {
-        let readings = read_name("LD1117V50", 6);
-        let chosen = choose(&readings, Arbiters { made_for: &[1.2, 3.3, 5.0], rounded: false, stated: &[] });
-        assert_eq!(chosen, Some(Chosen::sure(5.0, false)));
+    fn the_number_of_the_part_is_no_part_of_a_spelled_voltage() {
+        for (name, base, volts) in [("LD1117V33", 6, 3.3), ("LD1117V50", 6, 5.0), ("AMS11173V3", 7, 3.3)] {
+            let readings = read_name(name, base);
+            let chosen = choose(&readings, Arbiters { made_for: &[1.8, 3.3, 5.0], rounded: false, stated: &[] });
+            assert_eq!(chosen, Some(Chosen::sure(volts, false)), "{name}");
+        }
     }
 
     #[test]

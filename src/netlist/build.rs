@@ -13,12 +13,21 @@ use crate::source::{Problem, Source, Span};
 
 const EXPORT_AGAIN: &str = "export the netlist again from the schematic editor";
 
+/// A net that is read in pieces.
+#[derive(Debug, Default)]
+struct BegunNet {
+    net: NetEntry,
+    named: bool,
+}
+
 /// What was built so far.
 #[derive(Debug)]
 pub(super) struct Builder<'a> {
     source: &'a Source,
     limits: &'a Limits,
     nodes: usize,
+    /// The net that has not ended.
+    begun: BegunNet,
     pub(super) version: Option<String>,
     pub(super) schematic: String,
     pub(super) tool: String,
@@ -30,16 +39,25 @@ pub(super) struct Builder<'a> {
 
 impl Sink for Builder<'_> {
     fn island(&mut self, island: Island<'_>) -> ControlFlow<Problem> {
-        let Island { kind, span, places, items } = island;
+        let Island { kind, ends, span, places, items } = island;
         let mut placed = items.into_iter().skip(1);
         match kind {
             Kind::Version => self.version = placed.find_map(text),
             Kind::Design => self.design(placed),
             Kind::Component => self.component(span, places, placed),
             Kind::Part => self.part(span, places, placed),
-            Kind::Net => self.net(span, places, placed),
+            Kind::Net => {
+                self.net(places, placed);
+                if ends {
+                    self.end_net(span);
+                }
+            }
         }
         self.within_limits(span)
+    }
+
+    fn abandon(&mut self) {
+        self.begun = BegunNet::default();
     }
 
     fn problem(&mut self, problem: Problem) {
@@ -59,6 +77,7 @@ impl<'a> Builder<'a> {
             source,
             limits,
             nodes: 0,
+            begun: BegunNet::default(),
             version: None,
             schematic: String::new(),
             tool: String::new(),
@@ -237,9 +256,8 @@ impl<'a> Builder<'a> {
         Some(pin)
     }
 
-    fn net(&mut self, span: Span, places: &[Place], items: impl Iterator<Item = Sexp>) {
-        let mut net = NetEntry { span, ..NetEntry::default() };
-        let mut named = false;
+    fn net(&mut self, places: &[Place], items: impl Iterator<Item = Sexp>) {
+        let BegunNet { mut net, mut named } = std::mem::take(&mut self.begun);
         for (form, place) in forms(items, places) {
             match form.head.as_str() {
                 "code" | "name"
@@ -258,6 +276,12 @@ impl<'a> Builder<'a> {
                 _ => {}
             }
         }
+        self.begun = BegunNet { net, named };
+    }
+
+    fn end_net(&mut self, span: Span) {
+        let BegunNet { mut net, named } = std::mem::take(&mut self.begun);
+        net.span = span;
         if net.code.is_empty() || !named {
             let missing = if named { "code" } else { "name" };
             let label = format!("expected `{missing}` with a text; left out");

@@ -142,7 +142,9 @@ pub(super) struct Place {
 #[derive(Debug)]
 pub(super) struct Island<'a> {
     pub(super) kind: Kind,
-    /// The whole piece.
+    /// Whether it ends here; if not, the next island is more of it.
+    pub(super) ends: bool,
+    /// The whole piece, as far as it was read.
     pub(super) span: Span,
     /// The place of each list right inside it, in order.
     pub(super) places: &'a [Place],
@@ -154,6 +156,8 @@ pub(super) struct Island<'a> {
 pub(super) trait Sink {
     /// Takes an island; a problem in return is a limit that was passed and ends the scan.
     fn island(&mut self, island: Island<'_>) -> ControlFlow<Problem>;
+    /// The island that has not ended is damaged: what was taken of it is void.
+    fn abandon(&mut self);
     /// Takes a problem.
     fn problem(&mut self, problem: Problem);
 }
@@ -163,11 +167,21 @@ pub(super) trait Sink {
 #[must_use]
 pub fn islands(text: &str) -> Vec<(Span, Sexp)> {
     #[derive(Default)]
-    struct Collector(Vec<(Span, Sexp)>);
+    struct Collector {
+        whole: Vec<(Span, Sexp)>,
+        begun: Vec<Sexp>,
+    }
     impl Sink for Collector {
         fn island(&mut self, island: Island<'_>) -> ControlFlow<Problem> {
-            self.0.push((island.span, Sexp::List(island.items)));
+            let head = usize::from(!self.begun.is_empty());
+            self.begun.extend(island.items.into_iter().skip(head));
+            if island.ends {
+                self.whole.push((island.span, Sexp::List(std::mem::take(&mut self.begun))));
+            }
             ControlFlow::Continue(())
+        }
+        fn abandon(&mut self) {
+            self.begun.clear();
         }
         fn problem(&mut self, _problem: Problem) {}
     }
@@ -179,5 +193,5 @@ pub fn islands(text: &str) -> Vec<(Span, Sexp)> {
     } else {
         Scanner::new(&source, &limits, &mut found).run();
     }
-    found.0
+    found.whole
 }

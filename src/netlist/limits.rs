@@ -27,6 +27,10 @@ pub const MAX_FIELDS: usize = 256;
 /// Most attributes on one XML element; exports write 4.
 pub const MAX_ATTRIBUTES: usize = 64;
 
+/// A net that is longer than this many bytes is parsed in pieces: the lists of a ground net of a large board are many
+/// times as large as what is kept of them.
+pub const PIECE_BYTES: usize = 16 * 1024;
+
 /// Most errors, and most warnings, told one by one; the rest is counted.
 pub const MAX_PROBLEMS: usize = 200;
 
@@ -41,6 +45,7 @@ pub(super) struct Limits {
     pub(super) nets: usize,
     pub(super) nodes: usize,
     pub(super) attributes: usize,
+    pub(super) piece: usize,
 }
 
 impl Default for Limits {
@@ -54,6 +59,7 @@ impl Default for Limits {
             nets: MAX_NETS,
             nodes: MAX_NODES,
             attributes: MAX_ATTRIBUTES,
+            piece: PIECE_BYTES,
         }
     }
 }

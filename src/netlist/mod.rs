@@ -2,8 +2,8 @@
 //!
 //! [`read()`] takes the bytes of a file. What is no netlist is refused by name (`refuse`). A scanner, one for
 //! S-expressions (`scan`) and one for XML (`xml`), walks the text once and cuts it into islands (`island`): one
-//! component, library part or net each. `build` turns an island into a thing of the [`model`](Netlist), and `verify`
-//! looks at how these fit together.
+//! component, library part or net each (a long net in several pieces). `build` turns an island into a thing of the
+//! [`model`](Netlist), and `verify` looks at how these fit together.
 
 mod atoms;
 mod build;

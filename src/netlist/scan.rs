@@ -140,6 +140,7 @@ impl<'a, S: Sink> Scanner<'a, S> {
     /// Drops the island being scanned, for the first reason that was found.
     fn abandon(&mut self, reason: Problem) {
         if let Some(open) = self.open.take() {
+            self.sink.abandon();
             self.damage(open.damage.unwrap_or(reason));
         }
     }
@@ -257,19 +258,40 @@ impl<'a, S: Sink> Scanner<'a, S> {
         open.depth -= 1;
         if open.depth == 0 {
             self.close_island();
+        } else if open.depth == 1 && open.kind == Kind::Net && self.rewritten.len() > self.limits.piece {
+            self.cut_net();
         }
     }
 
     fn close_island(&mut self) {
-        let Some(open) = self.open.take() else { return };
-        let span = Span::new(open.start, self.at);
-        if let Some(damage) = open.damage {
-            self.damage(damage);
-            return;
+        let Some(mut open) = self.open.take() else { return };
+        match open.damage.take() {
+            None => self.hand_over(&open, true),
+            Some(damage) => {
+                self.sink.abandon();
+                self.damage(damage);
+            }
         }
+    }
+
+    /// Hands over what was met of a long net so far.
+    fn cut_net(&mut self) {
+        let Some(open) = self.open.take() else { return };
+        self.rewritten.push(')');
+        if open.damage.is_none() {
+            self.hand_over(&open, false);
+        }
+        self.open = Some(open);
+        self.rewritten.clear();
+        self.rewritten.push_str("(net");
+        self.places.clear();
+    }
+
+    fn hand_over(&mut self, open: &Open, ends: bool) {
+        let span = Span::new(open.start, self.at);
         match sexp::parse(&self.rewritten) {
             Ok(Sexp::List(items)) => {
-                let island = Island { kind: open.kind, span, places: &self.places, items };
+                let island = Island { kind: open.kind, ends, span, places: &self.places, items };
                 if let ControlFlow::Break(problem) = self.sink.island(island) {
                     self.stop(problem);
                 }
@@ -392,6 +414,7 @@ impl<'a, S: Sink> Scanner<'a, S> {
         let end = self.text.len();
         let last = self.text.char_indices().next_back().map_or(end, |(at, _)| at);
         if let Some(open) = self.open.take() {
+            self.sink.abandon();
             let noun = open.kind.noun();
             let problem = Problem::error(format!("the file ends inside a {noun}"))
                 .at(self.source, last..end, format!("the {noun} that began before this is not complete"))

@@ -347,6 +347,39 @@ fn each_limit_is_told_and_what_came_before_is_kept() {
 }
 
 #[test]
+fn a_net_that_is_read_in_pieces_is_the_same_net() {
+    let pieces = Limits { piece: 0, ..Limits::default() };
+    let messages =
+        |netlist: &Netlist| netlist.problems.iter().map(|each| each.message().to_owned()).collect::<Vec<_>>();
+    let lost_pin = BOARD_D.replace("(ref U1) (pin 1)", "(ref U1)");
+    let twice_named = BOARD_D.replace("(name -12V)", "(name -12V) (name -12V)");
+    let stray = BOARD_D.replace("(name -12V)", "(name -12V) stray");
+    for text in [BOARD_D, &lost_pin, &twice_named, &stray] {
+        let whole = read("board.net", text.as_bytes()).unwrap();
+        let cut = read_within("board.net", text.as_bytes(), &pieces).unwrap();
+        assert_eq!((&cut.nets, &cut.components, &cut.parts), (&whole.nets, &whole.components, &whole.parts));
+        assert_eq!(messages(&cut), messages(&whole));
+    }
+}
+
+#[test]
+fn a_net_that_is_read_in_pieces_and_damaged_is_left_out_whole() {
+    let pieces = Limits { piece: 0, ..Limits::default() };
+    let open_quote = BOARD_D.replace("(ref U1) (pin 0805)", "(ref U1) (pin \"0805)");
+    let unclosed = BOARD_D.replace("(node (ref U1) (pin 0805)))", "(node (ref U1) (pin 0805))");
+    for text in [open_quote, unclosed] {
+        let netlist = read_within("board.net", text.as_bytes(), &pieces).unwrap();
+        assert!(!netlist.is_complete());
+        let codes: Vec<&str> = netlist.nets.iter().map(|net| net.code.as_str()).collect();
+        assert_eq!(codes, ["2"], "{:?}", netlist.problems);
+        assert_eq!(netlist.nets[0].nodes.len(), 1);
+    }
+    let cut_off = BOARD_D.split_once("(node (ref U1) (pin 0805)").unwrap().0;
+    let netlist = read_within("board.net", cut_off.as_bytes(), &pieces).unwrap();
+    assert!(netlist.nets.is_empty() && netlist.components.len() == 2);
+}
+
+#[test]
 fn nesting_is_read_up_to_the_limit() {
     let nested = |depth: usize| {
         let inner = depth - 3;

@@ -329,7 +329,7 @@ impl<'a, S: Sink> XmlScanner<'a, S> {
     }
 
     fn give(&mut self, kind: Kind, span: Span, places: &[Place], items: Vec<Sexp>) {
-        if let ControlFlow::Break(problem) = self.sink.island(Island { kind, span, places, items }) {
+        if let ControlFlow::Break(problem) = self.sink.island(Island { kind, ends: true, span, places, items }) {
             self.stop(problem);
         }
     }

@@ -10,6 +10,9 @@ const PREFIXES: &[(i32, &str)] =
 /// What stands for "no bound" in a range is printed as such, whether it is infinite or was clipped to a finite number.
 const UNBOUNDED: f64 = 1e300;
 
+/// Below a thousandth of the smallest prefix an amount is what rounding leaves of a difference.
+const NOTHING: f64 = 1e-18;
+
 /// Prints an amount with its unit and a prefix, to four digits where the first is a 1 and three otherwise: `3.3 V`,
 /// `4.7 µF`, `25.5 mΩ`, `1.24 kΩ`, `-12 V`, `0 A`, `∞`.
 #[must_use]
@@ -20,6 +23,7 @@ pub fn print_amount(value: f64, dimension: Dimension) -> String {
     if value.abs() >= UNBOUNDED {
         return if value < 0.0 { "-∞" } else { "∞" }.to_owned();
     }
+    let value = cleared(value, dimension);
     let thousands = thousands(value, dimension);
     with_unit(&digits(value, thousands), thousands, dimension)
 }
@@ -28,7 +32,7 @@ pub fn print_amount(value: f64, dimension: Dimension) -> String {
 /// are not, `3.3 V` where both print alike, `≥ 3 V`, `≤ 5 V` or `any` where it has no bound.
 #[must_use]
 pub fn print_range(range: Range, dimension: Dimension) -> String {
-    let (low, high) = (range.low(), range.high());
+    let (low, high) = (cleared(range.low(), dimension), cleared(range.high(), dimension));
     match (low <= -UNBOUNDED, high >= UNBOUNDED) {
         (true, true) => return "any".to_owned(),
         (true, false) => return format!("≤ {}", print_amount(high, dimension)),
@@ -45,6 +49,11 @@ pub fn print_range(range: Range, dimension: Dimension) -> String {
     };
     let high_alone = print_amount(high, dimension);
     if print_amount(low, dimension) == high_alone { high_alone } else { format!("{first} .. {last}") }
+}
+
+/// The amount without what rounding left of a difference of equals.
+fn cleared(value: f64, dimension: Dimension) -> f64 {
+    if has_prefixes(dimension) && value.abs() < NOTHING { 0.0 } else { value }
 }
 
 /// The power of a thousand whose prefix an amount takes.
@@ -131,6 +140,14 @@ mod tests {
     use proptest::prelude::*;
 
     #[test]
+    fn what_rounding_leaves_of_a_difference_is_nothing() {
+        assert_eq!(print_amount(1.694e-21, Dimension::CURRENT), "0 A");
+        let range = Range::clamped(-1.694e-21, 1e-6, 2e-6);
+        assert_eq!(print_range(range, Dimension::CURRENT), "0 .. 2 µA");
+        assert_eq!(print_amount(1e-15, Dimension::CAPACITANCE), "1 fF");
+    }
+
+    #[test]
     fn amounts_print_with_a_prefix_and_without_noise() {
         let amounts = [
             (3.3, Dimension::VOLTAGE, "3.3 V"),
@@ -153,7 +170,7 @@ mod tests {
             (0.05, Dimension::ONE, "0.05"),
             (2.5e6, Dimension::FREQUENCY, "2.5 MHz"),
             (0.5e6, Dimension::VOLTAGE.over(Dimension::TIME), "500000 V·s^-1"),
-            (1e-20, Dimension::CURRENT, "1e-5 fA"),
+            (1e-17, Dimension::CURRENT, "0.01 fA"),
         ];
         for (value, dimension, expected) in amounts {
             assert_eq!(print_amount(value, dimension), expected);

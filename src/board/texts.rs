@@ -145,20 +145,7 @@ pub(super) fn read_tolerance(text: &str) -> Result<Range, TextFault> {
 
 /// `-0.2 V`, `12°`, `-3`: a figure in any unit.
 pub(super) fn read_slack(text: &str) -> Result<Slack, TextFault> {
-    const DIMENSIONS: &[Dimension] = &[
-        Dimension::ONE,
-        Dimension::VOLTAGE,
-        Dimension::CURRENT,
-        Dimension::RESISTANCE,
-        Dimension::CAPACITANCE,
-        Dimension::INDUCTANCE,
-        Dimension::POWER,
-        Dimension::TIME,
-        Dimension::FREQUENCY,
-        Dimension::TEMPERATURE,
-        Dimension::THERMAL_RESISTANCE,
-    ];
-    let found = DIMENSIONS
+    let found = Dimension::NAMED
         .iter()
         .find_map(|dimension| read_amount(text, *dimension).ok().map(|value| Slack { value, dimension: *dimension }));
     found.ok_or_else(|| {

@@ -42,6 +42,21 @@ impl Dimension {
     /// Metres and degrees of angle count as plain numbers: nothing is computed with them across units.
     pub const LENGTH: Self = Self::ONE;
 
+    /// Every dimension whose unit has a name of its own, plain numbers first.
+    pub const NAMED: &'static [Self] = &[
+        Self::ONE,
+        Self::VOLTAGE,
+        Self::CURRENT,
+        Self::RESISTANCE,
+        Self::CAPACITANCE,
+        Self::INDUCTANCE,
+        Self::POWER,
+        Self::TIME,
+        Self::FREQUENCY,
+        Self::TEMPERATURE,
+        Self::THERMAL_RESISTANCE,
+    ];
+
     /// The dimension of a product.
     #[must_use]
     pub const fn times(self, other: Self) -> Self {
@@ -122,6 +137,11 @@ impl fmt::Display for Dimension {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn every_dimension_with_a_name_is_listed_once_and_in_order() {
+        assert_eq!(Dimension::NAMED, NAMES.iter().map(|(dimension, ..)| *dimension).collect::<Vec<_>>());
+    }
 
     #[test]
     fn units_of_the_trade_follow_from_each_other() {

@@ -5,21 +5,6 @@ use crate::quantity::{Dimension, read_amount};
 use crate::source::Span;
 use crate::source::toml::nearest;
 
-/// What a number can measure: its unit tells which.
-const DIMENSIONS: &[Dimension] = &[
-    Dimension::ONE,
-    Dimension::VOLTAGE,
-    Dimension::CURRENT,
-    Dimension::RESISTANCE,
-    Dimension::CAPACITANCE,
-    Dimension::INDUCTANCE,
-    Dimension::POWER,
-    Dimension::TIME,
-    Dimension::FREQUENCY,
-    Dimension::TEMPERATURE,
-    Dimension::THERMAL_RESISTANCE,
-];
-
 /// Units to suggest in place of one that is not known.
 const UNITS: &[&str] = &["V", "A", "ohm", "F", "H", "W", "s", "Hz", "°C", "°C/W", "%", "deg"];
 
@@ -29,7 +14,7 @@ const UNITS: &[&str] = &["V", "A", "ohm", "F", "H", "W", "s", "Hz", "°C", "°C/
 /// When it is no number, or its unit is missing or not known, with the place inside `text`.
 pub fn constant(text: &str) -> Result<(f64, Dimension), Refusal> {
     let read = |dimension: &Dimension| read_amount(text, *dimension).ok().map(|value| (value, *dimension));
-    let mut readings = DIMENSIONS.iter().filter_map(read);
+    let mut readings = Dimension::NAMED.iter().filter_map(read);
     let whole = Span::new(0, text.len());
     match (readings.next(), readings.next()) {
         (Some(reading), None) => return Ok(reading),

@@ -192,20 +192,6 @@ mod tests {
         assert_eq!(print_range(range(f64::MIN, f64::MAX), Dimension::VOLTAGE), "any");
     }
 
-    const DIMENSIONS: &[Dimension] = &[
-        Dimension::ONE,
-        Dimension::VOLTAGE,
-        Dimension::CURRENT,
-        Dimension::RESISTANCE,
-        Dimension::CAPACITANCE,
-        Dimension::INDUCTANCE,
-        Dimension::POWER,
-        Dimension::TIME,
-        Dimension::FREQUENCY,
-        Dimension::TEMPERATURE,
-        Dimension::THERMAL_RESISTANCE,
-    ];
-
     /// Values of every size that the trade knows, both signs, and zero.
     fn value() -> impl Strategy<Value = f64> {
         prop_oneof![
@@ -221,8 +207,8 @@ mod tests {
 
     proptest! {
         #[test]
-        fn what_is_printed_reads_back_to_the_printed_digits(value in value(), which in 0..DIMENSIONS.len()) {
-            let dimension = DIMENSIONS[which];
+        fn what_is_printed_reads_back_to_the_printed_digits(value in value(), which in 0..Dimension::NAMED.len()) {
+            let dimension = Dimension::NAMED[which];
             let text = print_amount(value, dimension);
             let read = read_amount(&text, dimension).map_err(|error| TestCaseError::fail(format!("{text}: {error}")))?;
             prop_assert!(as_printed(value, read), "{value} {text} {read}");
@@ -230,8 +216,8 @@ mod tests {
         }
 
         #[test]
-        fn a_printed_range_reads_back(one in value(), other in value(), which in 0..DIMENSIONS.len()) {
-            let dimension = DIMENSIONS[which];
+        fn a_printed_range_reads_back(one in value(), other in value(), which in 0..Dimension::NAMED.len()) {
+            let dimension = Dimension::NAMED[which];
             let range = Range::between(one, other);
             let text = print_range(range, dimension);
             let read = read_range(&text, dimension).map_err(|error| TestCaseError::fail(format!("{text}: {error}")))?;
@@ -239,8 +225,8 @@ mod tests {
         }
 
         #[test]
-        fn no_text_makes_a_reader_fail_otherwise_than_by_an_error(text in "\\PC{0,24}", which in 0..DIMENSIONS.len()) {
-            let errors = [read_amount(&text, DIMENSIONS[which]).err(), read_range(&text, DIMENSIONS[which]).err()];
+        fn no_text_makes_a_reader_fail_otherwise_than_by_an_error(text in "\\PC{0,24}", which in 0..Dimension::NAMED.len()) {
+            let errors = [read_amount(&text, Dimension::NAMED[which]).err(), read_range(&text, Dimension::NAMED[which]).err()];
             for error in errors.into_iter().flatten() {
                 prop_assert!(text.get(error.span().start()..error.span().end()).is_some());
             }

@@ -40,6 +40,7 @@ impl Figures for Facts<'_> {
             }
             Subject::Net(net) => circuit.net(net).name.clone(),
             Subject::Capacitor { device, .. } => circuit.device(device).reference.clone(),
+            Subject::Board => String::new(),
         }
     }
 }

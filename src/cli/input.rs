@@ -3,7 +3,7 @@
 use std::fs;
 use std::io::{self, Read};
 use std::path::{Path, PathBuf};
-use std::rc::Rc;
+use std::sync::Arc;
 
 use super::settings::Terminal;
 use super::{Status, Streams, args};
@@ -21,9 +21,9 @@ const STANDARD_INPUT: &str = "<stdin>";
 /// Rules with what was wrong in them.
 #[derive(Debug)]
 pub(super) struct Rules {
-    pub(super) knowledge: Rc<Knowledge>,
+    pub(super) knowledge: Arc<Knowledge>,
     pub(super) checks: Checks,
-    pub(super) problems: Rc<[Problem]>,
+    pub(super) problems: Arc<[Problem]>,
 }
 
 impl Rules {
@@ -32,7 +32,7 @@ impl Rules {
         let (knowledge, mut problems) = Knowledge::load(folders);
         let (checks, found) = Checks::load(&knowledge.checks, &DefinedNames);
         problems.extend(found);
-        Self { knowledge: Rc::new(knowledge), checks, problems: problems.into() }
+        Self { knowledge: Arc::new(knowledge), checks, problems: problems.into() }
     }
 }
 
@@ -63,8 +63,8 @@ pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str
         netlist: name(path),
         board_file: declared.own_file,
         house_file: declared.house_file,
-        knowledge: Rc::clone(&rules.knowledge),
-        rule_problems: Rc::clone(&rules.problems),
+        knowledge: Arc::clone(&rules.knowledge),
+        rule_problems: Arc::clone(&rules.problems),
         problems: declared.problems,
         examination: None,
     };

@@ -185,6 +185,7 @@ impl<'a> Facts<'a> {
             SubjectKind::Regulator => self.regulators().map(|(id, _)| Subject::Regulator(id)).collect(),
             SubjectKind::Net => self.supply_nets().into_iter().map(Subject::Net).collect(),
             SubjectKind::Capacitor => self.banked().into_iter().collect(),
+            SubjectKind::Board => vec![Subject::Board],
         }
     }
 

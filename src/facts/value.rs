@@ -18,6 +18,8 @@ pub enum Subject {
         /// The net whose bank it is in.
         net: NetId,
     },
+    /// The board as a whole.
+    Board,
 }
 
 /// The kinds of subject, as check files name them in `about`.
@@ -29,10 +31,12 @@ pub enum SubjectKind {
     Net,
     /// `capacitor`
     Capacitor,
+    /// The board as a whole: what is said of its files; no check file is about it.
+    Board,
 }
 
 impl SubjectKind {
-    /// Every kind with its name in check files.
+    /// Every kind that a check file can be about, with its name there.
     pub const ALL: &'static [(Self, &'static str)] =
         &[(Self::Regulator, "regulator"), (Self::Net, "net"), (Self::Capacitor, "capacitor")];
 
@@ -51,6 +55,7 @@ impl Subject {
             Self::Regulator(_) => SubjectKind::Regulator,
             Self::Net(_) => SubjectKind::Net,
             Self::Capacitor { .. } => SubjectKind::Capacitor,
+            Self::Board => SubjectKind::Board,
         }
     }
 }

@@ -1,6 +1,6 @@
 //! A board as a report shows it.
 
-use std::rc::Rc;
+use std::sync::Arc;
 
 use crate::checks::Level;
 use crate::knowledge::Knowledge;
@@ -17,9 +17,9 @@ pub struct BoardResult {
     /// The house file above it.
     pub house_file: Option<String>,
     /// What it was judged with.
-    pub knowledge: Rc<Knowledge>,
+    pub knowledge: Arc<Knowledge>,
     /// What is wrong or odd in its rules.
-    pub rule_problems: Rc<[Problem]>,
+    pub rule_problems: Arc<[Problem]>,
     /// What was lost or odd in its files, in the order of reading.
     pub problems: Vec<Problem>,
     /// What was found; `None` where nothing could be judged.

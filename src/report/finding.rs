@@ -8,7 +8,6 @@ use super::look::Look;
 use super::problem::Told;
 use super::settle;
 use crate::checks::{Point, Verdict};
-use crate::facts::Subject;
 use crate::review::{Examination, Reviewed};
 
 /// Most places that are marked besides the subject.
@@ -17,12 +16,12 @@ const MOST_MARKS: usize = 2;
 /// A finding with all that belongs to it.
 pub(super) fn whole(examination: &Examination, found: &Reviewed, look: Look) -> String {
     let finding = &found.finding;
-    let main = Mark { span: found.place, label: about(examination, finding.subject) };
+    let main = Mark { span: found.place.span, label: found.about.clone() };
     let also = parts_marked(examination, found);
     let marks: Vec<Mark> = std::iter::once(main).chain(also).collect();
     let told = Told::new(finding.level, &finding.message)
         .line(&place(found))
-        .excerpt(Excerpt::new(&examination.netlist.source, &marks));
+        .excerpt(Excerpt::new(&found.place.source, &marks));
     let mut text = told.render(look);
     text.push_str(&figures(&finding.quantities, "    ", look.width()));
     for hint in &finding.hints {
@@ -45,7 +44,7 @@ fn parts_marked<'a>(examination: &'a Examination, found: &'a Reviewed) -> impl I
         .zip(&found.also)
         .filter(|(point, _)| matches!(point, Point::Subject(_)))
         .take(MOST_MARKS)
-        .map(|(_, (span, label))| Mark { span: *span, label: label.clone() })
+        .map(|(_, (place, label))| Mark { span: place.span, label: label.clone() })
 }
 
 /// `headroom · /Power/ · U2 · +5V → +3V3`: the check, the sheet, the parts, the nets.
@@ -57,21 +56,6 @@ pub(super) fn place(found: &Reviewed) -> String {
     words.extend(Some(found.parts.join(", ")).filter(|parts| !parts.is_empty()));
     words.extend(Some(found.nets.join(" → ")).filter(|nets| !nets.is_empty()));
     words.join(" · ")
-}
-
-/// A few words about the subject: a part's value.
-fn about(examination: &Examination, subject: Subject) -> String {
-    let circuit = &examination.design.circuit;
-    match subject {
-        Subject::Regulator(id) => examination
-            .design
-            .regulators
-            .get(id.0)
-            .map(|regulator| circuit.device(regulator.device).value.clone())
-            .unwrap_or_default(),
-        Subject::Capacitor { device, .. } => circuit.device(device).value.clone(),
-        Subject::Net(net) => circuit.net(net).name.clone(),
-    }
 }
 
 /// The declaration that would settle a finding, as lines for a board file; others are named.

@@ -118,6 +118,7 @@ struct FindingEntry<'a> {
     fingerprint: &'a str,
     accepted: Option<AcceptedEntry<'a>>,
     position: Position<'a>,
+    schematic: Option<Position<'a>>,
 }
 
 #[derive(Debug, Serialize)]
@@ -198,8 +199,7 @@ fn one(board: &BoardResult) -> Board<'_> {
         .map(|(id, regulator)| regulator_entry(examination, knowledge, &facts, Subject::Regulator(id), regulator))
         .collect();
     entry.not_judged = not_judged(examination);
-    let labels = Labels { examination };
-    entry.findings = examination.findings.iter().map(|found| finding(&labels, found)).collect();
+    entry.findings = examination.findings.iter().map(finding).collect();
     entry.counts = counts(examination.counts, examination.design.regulators.len(), examination.accepted);
     entry.declare_first = examination
         .declare_first
@@ -295,31 +295,13 @@ fn net_name(circuit: &Circuit, net: Option<NetId>) -> Option<&str> {
     net.map(|net| circuit.net(net).name.as_str())
 }
 
-/// Names of subjects.
-struct Labels<'a> {
-    examination: &'a Examination,
-}
-
-impl<'a> Labels<'a> {
-    fn of(&self, subject: Subject) -> &'a str {
-        let design = &self.examination.design;
-        match subject {
-            Subject::Regulator(id) => {
-                design.regulators.get(id.0).map_or("", |regulator| &design.circuit.device(regulator.device).reference)
-            }
-            Subject::Capacitor { device, .. } => &design.circuit.device(device).reference,
-            Subject::Net(net) => &design.circuit.net(net).name,
-        }
-    }
-}
-
-fn finding<'a>(labels: &Labels<'a>, found: &'a Reviewed) -> FindingEntry<'a> {
+fn finding(found: &Reviewed) -> FindingEntry<'_> {
     let finding = &found.finding;
     FindingEntry {
         check: &finding.check,
         verdict: finding.verdict.name(),
         level: finding.level.name(),
-        subject: labels.of(finding.subject),
+        subject: &found.subject,
         sheet: &found.sheet,
         parts: &found.parts,
         nets: &found.nets,
@@ -341,7 +323,8 @@ fn finding<'a>(labels: &Labels<'a>, found: &'a Reviewed) -> FindingEntry<'a> {
             .accepted
             .as_ref()
             .map(|accepted| AcceptedEntry { reason: &accepted.reason, until: accepted.until.as_deref() }),
-        position: position(&labels.examination.netlist.source, found.place),
+        position: position(&found.place.source, found.place.span),
+        schematic: found.schematic.as_ref().map(|place| position(&place.source, place.span)),
     }
 }
 

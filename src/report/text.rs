@@ -2,7 +2,7 @@
 
 use std::cmp::Reverse;
 use std::collections::BTreeMap;
-use std::rc::Rc;
+use std::sync::Arc;
 
 use super::board::BoardResult;
 use super::inert::inert;
@@ -38,7 +38,7 @@ pub fn check(boards: &[BoardResult], options: TextOptions) -> String {
             text.push('\n');
         }
         // What is wrong with rules that all boards share is told once.
-        if last.is_none_or(|last| !Rc::ptr_eq(&last.rule_problems, &board.rule_problems)) {
+        if last.is_none_or(|last| !Arc::ptr_eq(&last.rule_problems, &board.rule_problems)) {
             text.push_str(&problems(board.rule_problems.iter(), options.look));
         }
         text.push_str(&one(board, options));

@@ -4,7 +4,7 @@ use crate::checks::{Figures, Finding, Point};
 use crate::circuit::DeviceId;
 use crate::facts::{Facts, Subject};
 use crate::netlist::Netlist;
-use crate::source::Span;
+use crate::source::{Location, Span};
 
 /// References of parts and names of nets, the subject's first, each once.
 pub(super) fn concerned(facts: &Facts<'_>, finding: &Finding) -> (Vec<String>, Vec<String>) {
@@ -24,6 +24,7 @@ pub(super) fn concerned(facts: &Facts<'_>, finding: &Finding) -> (Vec<String>, V
             }
             Subject::Net(net) => add(&mut nets, &facts.circuit().net(net).name),
             Subject::Capacitor { device, .. } => add(&mut parts, &facts.circuit().device(device).reference),
+            Subject::Board => {}
         }
     }
     (parts, nets)
@@ -35,24 +36,44 @@ fn add(list: &mut Vec<String>, name: &str) {
     }
 }
 
+/// What a subject is called, and a few words about it.
+pub(super) fn named(facts: &Facts<'_>, subject: Subject) -> (String, String) {
+    let device = match subject {
+        Subject::Regulator(_) => facts.regulator(subject).map(|regulator| facts.part_of(regulator)),
+        Subject::Capacitor { device, .. } => Some(facts.circuit().device(device)),
+        Subject::Net(net) => {
+            let name = &facts.circuit().net(net).name;
+            return (name.clone(), name.clone());
+        }
+        Subject::Board => None,
+    };
+    device.map_or_else(Default::default, |device| (device.reference.clone(), device.value.clone()))
+}
+
 /// The place of a subject in the netlist, and its sheet.
-pub(super) fn place(facts: &Facts<'_>, netlist: &Netlist, subject: Subject) -> (Span, String) {
+pub(super) fn place(facts: &Facts<'_>, netlist: &Netlist, subject: Subject) -> (Location, String) {
+    let (span, sheet) = span(facts, netlist, subject);
+    (Location::new(&netlist.source, span), sheet)
+}
+
+fn span(facts: &Facts<'_>, netlist: &Netlist, subject: Subject) -> (Span, String) {
     let device: Option<DeviceId> = match subject {
         Subject::Regulator(_) => facts.regulator(subject).map(|regulator| regulator.device),
         Subject::Capacitor { device, .. } => Some(device),
         Subject::Net(net) => return (facts.circuit().net(net).name_span, String::new()),
+        Subject::Board => None,
     };
     let component = device.and_then(|device| netlist.components.get(facts.circuit().device(device).component));
     component.map_or_else(Default::default, |component| (component.reference_span, component.sheet.clone()))
 }
 
 /// What to mark besides the subject, with a few words each.
-pub(super) fn also(facts: &Facts<'_>, netlist: &Netlist, finding: &Finding) -> Vec<(Span, String)> {
+pub(super) fn also(facts: &Facts<'_>, netlist: &Netlist, finding: &Finding) -> Vec<(Location, String)> {
     let mark = |point: &Point| match point {
         Point::Subject(subject) => Some((place(facts, netlist, *subject).0, facts.label(*subject))),
         Point::Named { role, name } => {
             let net = facts.circuit().net_named(name)?;
-            Some((facts.circuit().net(net).name_span, role.replace('_', " ")))
+            Some((Location::new(&netlist.source, facts.circuit().net(net).name_span), role.replace('_', " ")))
         }
     };
     finding.also.iter().filter_map(mark).collect()

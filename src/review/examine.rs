@@ -14,13 +14,17 @@ use crate::facts::{Facts, Subject, SubjectKind};
 use crate::knowledge::Knowledge;
 use crate::netlist::{self, Netlist};
 use crate::recognize::{Design, recognize};
-use crate::source::{Problem, Severity, Span};
+use crate::source::{Location, Problem, Severity};
 
 /// A finding as reviewed.
 #[derive(Debug, Clone)]
 pub struct Reviewed {
     /// What was found.
     pub finding: Finding,
+    /// What it is about, by name: the reference of a part, the name of a net; empty for the board as a whole.
+    pub subject: String,
+    /// A few words about that: the part's value, or the name of the net.
+    pub about: String,
     /// Its identity; survives renumbering of parts, lines and net codes.
     pub fingerprint: String,
     /// Its acceptance in the board file.
@@ -31,10 +35,20 @@ pub struct Reviewed {
     pub nets: Vec<String>,
     /// Human-readable sheet path of the subject, or empty.
     pub sheet: String,
-    /// What to underline first, in the netlist.
-    pub place: Span,
+    /// What to underline first: in the netlist, or in the file that a finding of the review is about.
+    pub place: Location,
+    /// The same in the schematic sheet, where that lies beside the netlist.
+    pub schematic: Option<Location>,
     /// What to mark besides, with a few words each.
-    pub also: Vec<(Span, String)>,
+    pub also: Vec<(Location, String)>,
+}
+
+impl Reviewed {
+    /// Where people work on it: in the schematic where that is there, else in the netlist.
+    #[must_use]
+    pub fn best_place(&self) -> &Location {
+        self.schematic.as_ref().unwrap_or(&self.place)
+    }
 }
 
 /// A board with everything that was found on it.
@@ -154,7 +168,20 @@ fn reviewed(facts: &Facts<'_>, netlist: &Netlist, finding: Finding, fingerprint:
     let (parts, nets) = concern::concerned(facts, &finding);
     let (place, sheet) = concern::place(facts, netlist, finding.subject);
     let also = concern::also(facts, netlist, &finding);
-    let mut reviewed = Reviewed { finding, fingerprint, accepted: None, parts, nets, sheet, place, also };
+    let (subject, about) = concern::named(facts, finding.subject);
+    let mut reviewed = Reviewed {
+        finding,
+        subject,
+        about,
+        fingerprint,
+        accepted: None,
+        parts,
+        nets,
+        sheet,
+        place,
+        schematic: None,
+        also,
+    };
     reviewed.accepted = accept::accepted(facts.board(), &reviewed, today);
     reviewed
 }

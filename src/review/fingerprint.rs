@@ -49,7 +49,7 @@ fn symbol_id<'n>(facts: &Facts<'_>, netlist: &'n Netlist, subject: Subject) -> &
     let device = match subject {
         Subject::Regulator(_) => facts.regulator(subject).map(|regulator| regulator.device),
         Subject::Capacitor { device, .. } => Some(device),
-        Subject::Net(_) => None,
+        Subject::Net(_) | Subject::Board => None,
     };
     let component = device.and_then(|device| netlist.components.get(facts.circuit().device(device).component));
     component.and_then(|component| component.ids.first()).map_or("", String::as_str)
@@ -67,6 +67,7 @@ fn subject_words(facts: &Facts<'_>, subject: Subject) -> Vec<String> {
             None => Vec::new(),
         },
         Subject::Net(net) => vec![net_word(facts, Some(net))],
+        Subject::Board => Vec::new(),
         Subject::Capacitor { device, net } => {
             let mut words = device_words(facts, device);
             words.push(net_word(facts, Some(net)));

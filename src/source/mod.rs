@@ -5,4 +5,4 @@ mod text;
 pub mod toml;
 
 pub use problem::{Problem, Severity};
-pub use text::{Position, Source, Span};
+pub use text::{Location, Position, Source, Span};

@@ -48,6 +48,29 @@ impl From<std::ops::Range<usize>> for Span {
     }
 }
 
+/// A place in a text.
+#[derive(Debug, Clone)]
+pub struct Location {
+    /// The text.
+    pub source: Source,
+    /// Where in it.
+    pub span: Span,
+}
+
+impl Location {
+    /// A place in a text.
+    #[must_use]
+    pub fn new(source: &Source, span: Span) -> Self {
+        Self { source: source.clone(), span }
+    }
+
+    /// Line and column of its first character.
+    #[must_use]
+    pub fn position(&self) -> Position {
+        self.source.position(self.span.start())
+    }
+}
+
 /// Line and column, both from 1; columns count characters, lines end with a line feed.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
 pub struct Position {

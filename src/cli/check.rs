@@ -12,10 +12,7 @@ pub(super) fn run(typed: &Check, terminal: Terminal, to: &mut Streams<'_>) -> St
     let boards: Vec<BoardResult> =
         typed.boards.iter().map(|path| input::board(path, &typed.input, &rules, &today)).collect();
     let look = if typed.output.is_some() { terminal.file() } else { terminal.out };
-    let text = match typed.format {
-        CheckFormat::Text => report::check_text(&boards, TextOptions { look, quiet: typed.quiet }),
-        CheckFormat::Json => report::check_json(&boards),
-    };
+    let text = writer(typed.format)(&boards, TextOptions { look, quiet: typed.quiet });
     let written = match &typed.output {
         None => to.result(&text),
         Some(path) => match streams::write_file(path, &text) {
@@ -24,6 +21,17 @@ pub(super) fn run(typed: &Check, terminal: Terminal, to: &mut Streams<'_>) -> St
         },
     };
     boards.iter().map(|board| status(board, typed)).fold(written, Status::max)
+}
+
+/// What writes a result.
+type Writer = fn(&[BoardResult], TextOptions) -> String;
+
+/// What writes each format: a line here and one in the list of formats is all that a further one needs.
+fn writer(format: CheckFormat) -> Writer {
+    match format {
+        CheckFormat::Text => report::check_text,
+        CheckFormat::Json => |boards, _| report::check_json(boards),
+    }
 }
 
 fn status(board: &BoardResult, typed: &Check) -> Status {

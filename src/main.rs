@@ -4,5 +4,6 @@ use std::io::{stderr, stdout};
 use std::process::ExitCode;
 
 fn main() -> ExitCode {
-    railworthy::cli::run(std::env::args_os(), &mut stdout().lock(), &mut stderr().lock())
+    // Standard error is not held: what shows the progress, and what tells of a panic, writes there from other threads.
+    railworthy::cli::run(std::env::args_os(), &mut stdout().lock(), &mut stderr())
 }

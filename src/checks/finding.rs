@@ -109,4 +109,17 @@ impl Counts {
         }
         counts
     }
+
+    /// These and others together.
+    #[must_use]
+    pub fn and(self, other: Self) -> Self {
+        Self {
+            requirements: self.requirements + other.requirements,
+            fails: self.fails + other.fails,
+            doubtful: self.doubtful + other.doubtful,
+            tight: self.tight + other.tight,
+            unknown: self.unknown + other.unknown,
+            holds: self.holds + other.holds,
+        }
+    }
 }

@@ -39,8 +39,8 @@ pub(super) enum Command {
 
 #[derive(Debug, Args)]
 pub(super) struct Check {
-    /// Netlist exports; `-` reads standard input
-    #[arg(required = true, value_name = "BOARD.net")]
+    /// Netlist exports, and folders, of which every netlist export below is judged; `-` reads standard input
+    #[arg(required = true, value_name = "BOARD.net | FOLDER")]
     pub(super) boards: Vec<PathBuf>,
 
     #[command(flatten)]
@@ -53,6 +53,10 @@ pub(super) struct Check {
     /// Write the result to a file, whole or not at all
     #[arg(long, value_name = "FILE")]
     pub(super) output: Option<PathBuf>,
+
+    /// How many boards are judged at once; as many as there are processors if not given
+    #[arg(long, value_name = "COUNT", value_parser = clap::value_parser!(u16).range(1..=256))]
+    pub(super) jobs: Option<u16>,
 
     /// The level from which a finding makes the exit status 1
     #[arg(long, value_enum, default_value_t, value_name = "LEVEL")]

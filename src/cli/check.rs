@@ -1,16 +1,16 @@
 //! `railworthy check`
 
 use super::args::{Check, CheckFormat};
-use super::input::{self, Rules};
+use super::boards::{self, How};
+use super::input::Rules;
 use super::settings::Terminal;
 use super::{Status, Streams, day, streams};
 use crate::report::{self, BoardResult, TextOptions};
 
 pub(super) fn run(typed: &Check, terminal: Terminal, to: &mut Streams<'_>) -> Status {
     let rules = Rules::load(&typed.input.rules);
-    let today = day::today();
-    let boards: Vec<BoardResult> =
-        typed.boards.iter().map(|path| input::board(path, &typed.input, &rules, &today)).collect();
+    let how = How { input: &typed.input, rules: &rules, today: &day::today(), jobs: typed.jobs, quiet: typed.quiet };
+    let boards = boards::judge(&typed.boards, &how, to);
     let look = if typed.output.is_some() { terminal.file() } else { terminal.out };
     let text = writer(typed.format)(&boards, TextOptions { look, quiet: typed.quiet });
     let written = match &typed.output {

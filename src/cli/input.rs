@@ -1,9 +1,10 @@
 //! Reading what the arguments name: netlists, board files, rules.
 
+use std::collections::BTreeMap;
 use std::fs;
 use std::io::{self, Read};
 use std::path::{Path, PathBuf};
-use std::sync::Arc;
+use std::sync::{Arc, Mutex, PoisonError};
 
 use super::settings::Terminal;
 use super::{Status, Streams, args};
@@ -24,6 +25,8 @@ pub(super) struct Rules {
     pub(super) knowledge: Arc<Knowledge>,
     pub(super) checks: Checks,
     pub(super) problems: Arc<[Problem]>,
+    /// Those of boards that name folders of their own, by all folders that count.
+    own: Mutex<BTreeMap<Vec<PathBuf>, Arc<Rules>>>,
 }
 
 impl Rules {
@@ -32,7 +35,20 @@ impl Rules {
         let (knowledge, mut problems) = Knowledge::load(folders);
         let (checks, found) = Checks::load(&knowledge.checks, &DefinedNames);
         problems.extend(found);
-        Self { knowledge: Arc::new(knowledge), checks, problems: problems.into() }
+        Self { knowledge: Arc::new(knowledge), checks, problems: problems.into(), own: Mutex::default() }
+    }
+
+    /// The rules of a board that names folders of its own; loaded once, however many boards name the same.
+    fn own(&self, board: &Board, typed: &[PathBuf]) -> Option<Arc<Self>> {
+        if board.rule_folders.is_empty() {
+            return None;
+        }
+        let named = board.rule_folders.iter().map(|folder| folder.value.clone());
+        let folders: Vec<PathBuf> = named.chain(typed.iter().cloned()).collect();
+        // Whoever panicked while it held the lock left nothing half done: what is loaded is inserted whole.
+        let mut own = self.own.lock().unwrap_or_else(PoisonError::into_inner);
+        let rules = own.entry(folders).or_insert_with_key(|folders| Arc::new(Self::load(folders)));
+        Some(Arc::clone(rules))
     }
 }
 
@@ -57,8 +73,8 @@ struct Declared {
 /// Reads and judges one board under the rules of the command line and of its board files.
 pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str) -> BoardResult {
     let declared = declared(path, input.board.as_deref());
-    let own_rules = own_rules(&declared.board, &input.rules);
-    let rules = own_rules.as_ref().unwrap_or(rules);
+    let own_rules = rules.own(&declared.board, &input.rules);
+    let rules = own_rules.as_deref().unwrap_or(rules);
     let mut result = BoardResult {
         netlist: name(path),
         board_file: declared.own_file,
@@ -99,21 +115,24 @@ fn told(all: Vec<Problem>) -> Vec<Problem> {
     kept
 }
 
-/// The rules of a board that names folders of its own.
-fn own_rules(board: &Board, typed: &[PathBuf]) -> Option<Rules> {
-    if board.rule_folders.is_empty() {
-        return None;
+/// What comes of something named that cannot be judged.
+pub(super) fn not_judged(path: &Path, problem: Problem, rules: &Rules) -> BoardResult {
+    BoardResult {
+        netlist: name(path),
+        board_file: None,
+        house_file: None,
+        knowledge: Arc::clone(&rules.knowledge),
+        rule_problems: Arc::clone(&rules.problems),
+        problems: vec![problem],
+        examination: None,
     }
-    let folders: Vec<PathBuf> =
-        board.rule_folders.iter().map(|folder| folder.value.clone()).chain(typed.iter().cloned()).collect();
-    Some(Rules::load(&folders))
 }
 
 fn name(path: &Path) -> String {
     if is_standard_input(path) { STANDARD_INPUT.to_owned() } else { path.display().to_string() }
 }
 
-fn is_standard_input(path: &Path) -> bool {
+pub(super) fn is_standard_input(path: &Path) -> bool {
     path.as_os_str() == "-"
 }
 

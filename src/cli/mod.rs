@@ -1,16 +1,19 @@
 //! Arguments, files, exit status.
 
 mod args;
+mod boards;
 mod catalog;
 mod check;
 mod day;
 mod draft;
 mod explain;
+mod guard;
 mod input;
 mod rails;
 mod settings;
 mod streams;
 mod vet;
+mod walk;
 
 use std::ffi::OsString;
 use std::io::Write;
@@ -73,7 +76,8 @@ impl Streams<'_> {
 /// Runs the program on its arguments, the program's own name first.
 pub fn run(arguments: impl IntoIterator<Item = OsString>, out: &mut dyn Write, err: &mut dyn Write) -> ExitCode {
     let mut streams = Streams { out, err };
-    ExitCode::from(status(arguments, &mut streams).code())
+    let status = guard::guarded(|| status(arguments, &mut streams));
+    ExitCode::from(status.unwrap_or_else(|fault| streams.broken(&fault)).code())
 }
 
 fn status(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<'_>) -> Status {

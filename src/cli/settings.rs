@@ -44,6 +44,13 @@ fn coloured(colour: Color, is_terminal: bool) -> bool {
     }
 }
 
+/// Whether progress is shown on standard error: on a terminal that can redraw a line, and where no machine runs this.
+pub(super) fn shows_progress() -> bool {
+    let set = |name: &str| std::env::var_os(name).is_some_and(|value| !value.is_empty());
+    let is_dumb = std::env::var_os("TERM").is_some_and(|term| term == "dumb");
+    stderr().is_terminal() && !set("CI") && !is_dumb
+}
+
 impl FailOn {
     /// Whether a finding of this level fails the run.
     pub(super) fn fails(self, level: Level) -> bool {

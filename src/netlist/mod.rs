@@ -25,3 +25,4 @@ mod xml_tree;
 pub use island::islands;
 pub use model::{Component, Field, Format, LibraryPart, NetEntry, NetNode, Netlist, PartPin};
 pub use read::read;
+pub use refuse::{FIRST_BYTES, begins_export};

@@ -8,6 +8,23 @@ const EXPORT: &str = "export a netlist: in the schematic editor File > Export > 
 /// How much of a file is looked at to tell what it is.
 const LOOK: usize = 64 * 1024;
 
+/// How much of a file [`begins_export`] has to see.
+pub const FIRST_BYTES: usize = 4096;
+
+/// Whether the first bytes of a file are those of a netlist export, damaged or not.
+#[must_use]
+pub fn begins_export(bytes: &[u8]) -> bool {
+    // What is cut at the end, or is no text further on, does not matter here.
+    let end = std::str::from_utf8(bytes).map_or_else(|error| error.valid_up_to(), str::len);
+    let text = bytes.get(..end).and_then(|start| std::str::from_utf8(start).ok()).unwrap_or_default();
+    let text = text.trim_start_matches('\u{feff}').trim_start();
+    if text.starts_with('(') {
+        lists(text).is_none()
+    } else {
+        text.starts_with('<') && root_name(text).eq_ignore_ascii_case("export")
+    }
+}
+
 /// What a file is, if it can be seen from its bytes to be no text at all.
 pub(super) fn not_text(name: &str, bytes: &[u8]) -> Option<Problem> {
     const MAGIC: [(&[u8], &str); 9] = [
@@ -164,4 +181,36 @@ fn is_spice(text: &str) -> bool {
             let word = line.split_ascii_whitespace().next().unwrap_or("");
             COMMANDS.iter().any(|command| word.eq_ignore_ascii_case(command))
         })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn an_export_is_told_by_its_first_bytes() {
+        let exports: [&[u8]; 5] = [
+            b"(export (version D)",
+            b"\xef\xbb\xbf\r\n( export\n",
+            b"(export (components (comp (value \"4\xc2",
+            b"<?xml version=\"1.0\" encoding=\"utf-8\"?>\n<!-- x -->\n<export version=\"E\">",
+            b"(export (nets (net (name \"\xff\"",
+        ];
+        for bytes in exports {
+            assert!(begins_export(bytes), "{}", String::from_utf8_lossy(bytes));
+        }
+        let others: [&[u8]; 8] = [
+            b"",
+            b"* a deck\n.end\n",
+            b"(exported)",
+            b"(kicad_pcb (version 1))",
+            b"<?xml version=\"1.0\"?><project/>",
+            b"<!DOCTYPE export [<!ENTITY a \"b\">]><export/>",
+            b"\xff\xfe(\0e\0",
+            b"\x89PNG(export",
+        ];
+        for bytes in others {
+            assert!(!begins_export(bytes), "{}", String::from_utf8_lossy(bytes));
+        }
+    }
 }

@@ -1,11 +1,20 @@
 //! What no report on a netlist may leave unsaid.
 
+use super::inert::inert;
 use crate::circuit::DeviceKind;
 use crate::review::Examination;
 
+/// What a netlist cannot show, whatever the board.
+const UNSEEN: &str = "Distance, copper and layout cannot be seen in a netlist.";
+/// Who has the last word where a board can hurt somebody.
+const LAST_WORD: &str = "the result is an aid to review; local codes and licensed practice decide.";
+
+/// Most boards that are named.
+const MOST_NAMES: usize = 5;
+
 /// What a netlist cannot show; and, where a board can hurt somebody, who has the last word.
 pub(super) fn caution(examination: &Examination) -> String {
-    let mut text = "Distance, copper and layout cannot be seen in a netlist.".to_owned();
+    let mut text = UNSEEN.to_owned();
     let what: Vec<&str> =
         [("mains or a transformer", has_mains(examination)), ("a battery", has_battery(examination))]
             .into_iter()
@@ -13,12 +22,26 @@ pub(super) fn caution(examination: &Examination) -> String {
             .map(|(what, _)| what)
             .collect();
     if !what.is_empty() {
-        text.push_str(&format!(
-            " This board has {}: the result is an aid to review; local codes and licensed practice decide.",
-            what.join(" and ")
-        ));
+        text.push_str(&format!(" This board has {}: {LAST_WORD}", what.join(" and ")));
     }
     text
+}
+
+/// The same of several boards, of which some can hurt somebody.
+pub(super) fn of_many(hazards: &[&str]) -> String {
+    let names: Vec<_> = hazards.iter().take(MOST_NAMES).map(|name| inert(name)).collect();
+    let more = hazards.len() - names.len();
+    let more = if more > 0 { format!(" and {more} more") } else { String::new() };
+    match hazards.len() {
+        0 => UNSEEN.to_owned(),
+        1 => format!("{UNSEEN} {} has a battery, mains or a transformer: {LAST_WORD}", names.concat()),
+        _ => format!("{UNSEEN} {}{more} have a battery, mains or a transformer: {LAST_WORD}", names.join(", ")),
+    }
+}
+
+/// Whether a board can hurt somebody.
+pub(super) fn has_hazard(examination: &Examination) -> bool {
+    has_mains(examination) || has_battery(examination)
 }
 
 fn has_mains(examination: &Examination) -> bool {

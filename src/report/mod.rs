@@ -16,6 +16,7 @@ mod json_text;
 mod json_value;
 mod layout;
 mod look;
+mod overall;
 mod part_rows;
 mod problem;
 mod rails;

@@ -5,12 +5,14 @@ use std::collections::BTreeMap;
 use std::sync::Arc;
 
 use super::board::BoardResult;
+use super::caution::caution;
 use super::inert::inert;
 use super::layout::wrapped;
 use super::look::Look;
+use super::overall::{is_clean, overall};
 use super::problem::problems;
 use super::{finding, settle};
-use crate::checks::{Level, Verdict};
+use crate::checks::{Counts, Level, Verdict};
 use crate::review::{Decisive, Examination, Reviewed};
 use crate::source::Problem;
 
@@ -32,22 +34,31 @@ pub struct TextOptions {
 #[must_use]
 pub fn check(boards: &[BoardResult], options: TextOptions) -> String {
     let mut text = String::new();
+    let many = boards.len() > 1;
     let mut last: Option<&BoardResult> = None;
     for board in boards {
-        if !text.is_empty() {
-            text.push('\n');
-        }
         // What is wrong with rules that all boards share is told once.
         if last.is_none_or(|last| !Arc::ptr_eq(&last.rule_problems, &board.rule_problems)) {
             text.push_str(&problems(board.rule_problems.iter(), options.look));
         }
-        text.push_str(&one(board, options));
         last = Some(board);
+        // Of many boards those are shown of which there is something to say; the others have a line at the end.
+        if many && is_clean(board) {
+            continue;
+        }
+        text.push_str(&one(board, options, many));
+        if many && !text.ends_with("\n\n") {
+            text.push('\n');
+        }
+    }
+    if many && !options.quiet {
+        text.push_str(&overall(boards, options.look));
     }
     super::guarded(&text)
 }
 
-fn one(board: &BoardResult, options: TextOptions) -> String {
+/// One board; of many the caution stands at the end of all.
+fn one(board: &BoardResult, options: TextOptions, of_many: bool) -> String {
     let look = options.look;
     let mut text = String::new();
     if !options.quiet {
@@ -74,6 +85,10 @@ fn one(board: &BoardResult, options: TextOptions) -> String {
     text.push_str(&accepted_of(&accepted, look));
     if !options.quiet {
         text.push_str(&summary(examination, look));
+        if !of_many {
+            text.push_str(&look.faint(wrapped(&caution(examination), "", "  ", look.width()).trim_end()));
+            text.push('\n');
+        }
     }
     text
 }
@@ -168,28 +183,13 @@ fn summary(examination: &Examination, look: Look) -> String {
         let line = format!("Declare first: {}", declarations(&examination.declare_first));
         text.push_str(&wrapped(&line, "", "  ", look.width()));
     }
-    text.push_str(&look.faint(wrapped(&super::caution::caution(examination), "", "  ", look.width()).trim_end()));
-    text.push('\n');
     text
 }
 
 fn counts(examination: &Examination) -> String {
     let counts = examination.counts;
     let regulators = examination.design.regulators.len();
-    let mut parts = Vec::new();
-    let verdicts = [
-        (counts.fails, "fails", "fail"),
-        (counts.doubtful, "doubtful", "doubtful"),
-        (counts.tight, "tight", "tight"),
-        (counts.unknown, "unknown", "unknown"),
-        (counts.holds, "holds", "hold"),
-        (examination.accepted, "accepted", "accepted"),
-    ];
-    for (count, one, many) in verdicts {
-        if count > 0 {
-            parts.push(format!("{count} {}", if count == 1 { one } else { many }));
-        }
-    }
+    let parts = counted(counts, examination.accepted);
     let mut line = format!(
         "{regulators} regulator{}, {} requirement{}",
         plural(regulators),
@@ -197,7 +197,7 @@ fn counts(examination: &Examination) -> String {
         plural(counts.requirements)
     );
     if !parts.is_empty() {
-        line.push_str(&format!(": {}", parts.join(", ")));
+        line.push_str(&format!(": {parts}"));
     }
     let not_judged = not_judged(examination);
     if !not_judged.is_empty() {
@@ -206,7 +206,22 @@ fn counts(examination: &Examination) -> String {
     line
 }
 
-fn plural(count: usize) -> &'static str {
+/// `1 fails, 2 doubtful, 30 hold`; what there is none of is left out.
+pub(super) fn counted(counts: Counts, accepted: usize) -> String {
+    let verdicts = [
+        (counts.fails, "fails", "fail"),
+        (counts.doubtful, "doubtful", "doubtful"),
+        (counts.tight, "tight", "tight"),
+        (counts.unknown, "unknown", "unknown"),
+        (counts.holds, "holds", "hold"),
+        (accepted, "accepted", "accepted"),
+    ];
+    let told = verdicts.into_iter().filter(|(count, ..)| *count > 0);
+    let told = told.map(|(count, one, many)| format!("{count} {}", if count == 1 { one } else { many }));
+    told.collect::<Vec<_>>().join(", ")
+}
+
+pub(super) fn plural(count: usize) -> &'static str {
     if count == 1 { "" } else { "s" }
 }
 

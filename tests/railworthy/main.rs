@@ -15,6 +15,7 @@ mod failures;
 mod house_rules;
 mod judge;
 mod makers;
+mod many_boards;
 mod netlist_corpus;
 mod netlist_hostile;
 mod order_codes;

@@ -127,6 +127,8 @@ impl PartEntry {
             tolerance: self.tolerance.or(below.tolerance),
             rating: self.rating.or(below.rating),
             effective_capacitance: self.effective_capacitance.or(below.effective_capacitance),
+            forward_drop: self.forward_drop.or(below.forward_drop),
+            resistance: self.resistance.or(below.resistance),
             heatsink: self.heatsink.or(below.heatsink),
             junction_to_ambient: self.junction_to_ambient.or(below.junction_to_ambient),
             power: self.power.or(below.power),

@@ -190,6 +190,10 @@ pub struct PartEntry {
     pub rating: Option<Declared<Range>>,
     /// Farads that are left of a capacitor at the voltage across it, by its maker's curve.
     pub effective_capacitance: Option<Declared<Range>>,
+    /// Volts that a diode or switch of a supply line drops at its load.
+    pub forward_drop: Option<Declared<Range>>,
+    /// Ohms of a ferrite, fuse or inductor of a supply line.
+    pub resistance: Option<Declared<Range>>,
     /// Kelvins per watt of the heat sink, to ambient. Never with `junction_to_ambient`.
     pub heatsink: Option<Declared<Range>>,
     /// Kelvins per watt from junction to ambient.
@@ -242,6 +246,8 @@ impl PartEntry {
             tolerance: None,
             rating: None,
             effective_capacitance: None,
+            forward_drop: None,
+            resistance: None,
             heatsink: None,
             junction_to_ambient: None,
             power: None,

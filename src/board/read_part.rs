@@ -58,6 +58,8 @@ impl<'a> Reader<'a> {
         part.rating = self.single(table, "rating", Dimension::VOLTAGE, Positive);
         part.power = self.single(table, "power", Dimension::POWER, Positive);
         part.effective_capacitance = self.figure(table, "effective_capacitance", Dimension::CAPACITANCE, NotNegative);
+        part.forward_drop = self.figure(table, "forward_drop", Dimension::VOLTAGE, NotNegative);
+        part.resistance = self.figure(table, "resistance", Dimension::RESISTANCE, NotNegative);
         part.heatsink = self.figure(table, "heatsink", Dimension::THERMAL_RESISTANCE, NotNegative);
         part.junction_to_ambient = self.figure(table, "junction_to_ambient", Dimension::THERMAL_RESISTANCE, Positive);
         self.only_one(&[

@@ -92,6 +92,18 @@ impl Facts<'_> {
         if let Some(declared) = declared {
             return declared.quantity(Dimension::CAPACITANCE, format!("effective capacitance of {}", part.reference));
         }
+        let unbiased = self.unbiased_capacitance(device);
+        match self.technology(device).map(|told| told.technology) {
+            Some(technology) if part.amount.is_some() && technology.figures.contains_key("bias_k") => {
+                unbiased.times(&self.left_by_bias(device, net, technology))
+            }
+            _ => unbiased,
+        }
+    }
+
+    /// What is left of a capacitor without bias: drawn × tolerance × what temperature and age leave.
+    pub(super) fn unbiased_capacitance(&self, device: DeviceId) -> Quantity {
+        let part = self.circuit().device(device);
         let drawn = self.drawn_capacitance(device);
         let Some(amount) = &part.amount else { return drawn };
         let told = self.technology(device);
@@ -102,12 +114,9 @@ impl Facts<'_> {
             (widest, widest.max(TOLERANCE.1))
         });
         let toleranced = drawn.times(&self.tolerance(device, amount, usual));
-        let Some(technology) = technology else { return toleranced };
-        let aged = toleranced.times(&self.left_by_age(device, technology));
-        if technology.figures.contains_key("bias_k") {
-            aged.times(&self.left_by_bias(device, net, technology))
-        } else {
-            aged
+        match technology {
+            Some(technology) => toleranced.times(&self.left_by_age(device, technology)),
+            None => toleranced,
         }
     }
 

@@ -5,7 +5,7 @@ use std::collections::{BTreeSet, HashMap};
 use std::ops::Deref;
 use std::rc::Rc;
 
-use super::rails::{self, Rails};
+use super::flow::{self, Flow, Rail, Rails};
 use super::{Subject, SubjectKind, Value, definition};
 use crate::board::Board;
 use crate::circuit::{Circuit, Device, DeviceId, NetId};
@@ -30,7 +30,10 @@ pub struct Facts<'a> {
     design: &'a Design,
     board: &'a Board,
     knowledge: &'a Knowledge,
+    flow: OnceCell<Flow>,
     rails: OnceCell<Rails>,
+    loads: OnceCell<HashMap<NetId, Vec<Quantity>>>,
+    draws: RefCell<HashMap<NetId, Quantity>>,
     // Never gone through in order: only looked up.
     values: RefCell<HashMap<(Subject, &'static str), Value>>,
     banks: RefCell<HashMap<BankKey, Rc<KnownBank>>>,
@@ -67,7 +70,6 @@ impl Deref for KnownBank {
 /// Regulators by where they lie; looked up, never gone through in order.
 #[derive(Debug, Default)]
 struct Index {
-    by_input: HashMap<NetId, Vec<usize>>,
     by_output: HashMap<NetId, Vec<usize>>,
     by_device: HashMap<DeviceId, Vec<usize>>,
 }
@@ -80,7 +82,10 @@ impl<'a> Facts<'a> {
             design,
             board,
             knowledge,
+            flow: OnceCell::new(),
             rails: OnceCell::new(),
+            loads: OnceCell::new(),
+            draws: RefCell::new(HashMap::new()),
             values: RefCell::new(HashMap::new()),
             banks: RefCell::new(HashMap::new()),
             totals: RefCell::new(HashMap::new()),
@@ -161,14 +166,35 @@ impl<'a> Facts<'a> {
         }
     }
 
+    /// Which supply net feeds which.
+    #[must_use]
+    pub fn flow(&self) -> &Flow {
+        self.flow.get_or_init(|| Flow::of(self))
+    }
+
+    /// What fields on parts say that these draw, by net.
+    pub(super) fn field_loads(&self) -> &HashMap<NetId, Vec<Quantity>> {
+        self.loads.get_or_init(|| self.loads_by_field())
+    }
+
+    /// What is drawn from a net, summed once.
+    pub(super) fn draw_once(&self, net: NetId, sum: impl FnOnce() -> Quantity) -> Quantity {
+        if let Some(known) = self.draws.borrow().get(&net) {
+            return known.clone();
+        }
+        let drawn = sum();
+        self.draws.borrow_mut().insert(net, drawn.clone());
+        drawn
+    }
+
     /// The voltages of the supply nets.
     pub(super) fn rails(&self) -> &Rails {
-        self.rails.get_or_init(|| rails::propagate(self))
+        self.rails.get_or_init(|| flow::propagate(self))
     }
 
     /// The voltage of a net against ground, with where it comes from.
     #[must_use]
-    pub fn rail(&self, net: NetId) -> rails::Rail {
+    pub fn rail(&self, net: NetId) -> Rail {
         self.rails().rail(self, net)
     }
 
@@ -210,21 +236,12 @@ impl<'a> Facts<'a> {
             let mut index = Index::default();
             for (id, regulator) in self.regulators() {
                 index.by_device.entry(regulator.device).or_default().push(id.0);
-                if let Some(input) = regulator.input_net {
-                    index.by_input.entry(input).or_default().push(id.0);
-                }
                 if let Some(output) = regulator.output_net {
                     index.by_output.entry(output).or_default().push(id.0);
                 }
             }
             index
         })
-    }
-
-    /// The regulators whose input lies on a net, in order.
-    pub(super) fn fed_by(&self, net: NetId) -> impl Iterator<Item = &'a Regulator> + use<'_, 'a> {
-        let found = self.index().by_input.get(&net).map_or(&[][..], Vec::as_slice);
-        found.iter().filter_map(|at| self.design.regulators.get(*at))
     }
 
     /// The regulators whose output lies on a net, in order.

@@ -13,7 +13,7 @@ mod dropout;
 mod enable;
 mod esr;
 mod family_figure;
-mod feeds;
+mod flow;
 mod headroom;
 mod identity;
 mod load;
@@ -22,7 +22,6 @@ mod open_pins;
 mod output;
 mod pins;
 mod programmed;
-mod rails;
 mod sheet;
 mod shunt;
 mod startup;
@@ -32,7 +31,7 @@ mod value;
 
 pub use context::Facts;
 pub use definition::{Definition, ValueKind};
-pub use rails::{Rail, RailOrigin};
+pub use flow::{Flow, Link, Rail, RailOrigin, Reservoir};
 pub use sheet::{SHEET, SheetFigure, lacking};
 pub use value::{Flag, Subject, SubjectKind, Value, Word};
 

@@ -198,6 +198,8 @@ impl<'a, S: Sink> Scanner<'a, S> {
             Section::Export => self.started = true,
             section if section.is_main() && around != Some(Section::Export) => self.misplaced(head),
             Section::Other if around.is_some_and(Section::holds_islands) => self.unknown(head),
+            // A section that is not known is passed over; what has no name may be any, with its entries.
+            Section::Other if around == Some(Section::Export) && head.is_empty() => self.unnamed(),
             _ => {}
         }
         self.met.note(section);
@@ -228,6 +230,13 @@ impl<'a, S: Sink> Scanner<'a, S> {
             self.damage(problem);
         }
         self.outer.truncate(1);
+    }
+
+    fn unnamed(&mut self) {
+        let problem = Problem::error("a list without a name stands among the sections of the netlist")
+            .at(self.source, self.at..self.at + 1, "brackets do not pair up before this; left out")
+            .help(EXPORT_AGAIN);
+        self.damage(problem);
     }
 
     fn unknown(&mut self, head: &str) {

@@ -408,6 +408,13 @@ fn a_flood_of_problems_is_counted() {
     assert_eq!(last[1].message(), "199 more warnings are not listed");
 }
 
+#[test]
+fn a_section_whose_name_was_lost_is_told() {
+    let (netlist, errors) = damaged(&BOARD_D.replace("    (net (code 2)", "    )((net (code 2)"));
+    assert_eq!(netlist.nets.len(), 1);
+    assert!(errors[0].message().starts_with("a list without a name"), "{errors:?}");
+}
+
 /// A text as it may stand bare.
 fn bare() -> impl Strategy<Value = String> {
     "[^ \t\r\n()\"][^ \t\r\n()]{0,12}"

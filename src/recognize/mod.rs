@@ -26,6 +26,7 @@ mod outputs;
 mod package;
 mod pin_name;
 mod programming;
+mod rectifier;
 mod roles;
 mod sketch;
 mod stated;
@@ -46,4 +47,5 @@ pub use model::{
 pub use named::{Named, Overlap, families_of_name, overlaps};
 pub use package::{family_package, package_of};
 pub use programming::programming_pins;
+pub use rectifier::{Rectified, anode, rectified};
 pub use sketch::{NoSketch, Sketch, sketch};

@@ -173,6 +173,7 @@ fn supply_nets<'a>(facts: &Facts<'a>) -> Vec<Rail<'a>> {
             RailOrigin::Ground => ("ground", None, None),
             RailOrigin::Declared => ("declared", None, None),
             RailOrigin::Named => ("named", None, None),
+            RailOrigin::Rectified(device) => ("rectified", None, device.map(|device| circuit.device(device))),
             RailOrigin::Unknown => ("unknown", None, None),
             RailOrigin::Through { device, from } => ("through", Some(name(from)), Some(circuit.device(device))),
             RailOrigin::Regulator(id) => {

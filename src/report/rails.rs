@@ -134,6 +134,7 @@ fn row(facts: &Facts<'_>, net: NetId, depth: usize) -> Vec<String> {
             facts.regulator(Subject::Regulator(id)).map_or_else(String::new, |one| format!("by {}", part(one.device)))
         }
         RailOrigin::Through { device, .. } => format!("through {}", part(device)),
+        RailOrigin::Rectified(Some(device)) => format!("rectified by {}", part(device)),
         _ => gist(&rail.voltage),
     };
     let load = facts.draw(net);

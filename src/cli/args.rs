@@ -165,6 +165,10 @@ pub(super) enum CheckFormat {
     /// For people
     #[default]
     Text,
+    /// One line for each finding, for editors and build tools
+    Line,
+    /// A comment for a pull request
+    Markdown,
     /// For programs
     Json,
 }

@@ -20,6 +20,9 @@ pub(super) fn run(typed: &Check, terminal: Terminal, to: &mut Streams<'_>) -> St
             Err(error) => to.broken(&format!("{} cannot be written: {error}", path.display())),
         },
     };
+    if typed.format == CheckFormat::Line && !typed.quiet {
+        to.tell(&report::line_summary(&boards));
+    }
     boards.iter().map(|board| status(board, typed)).fold(written, Status::max)
 }
 
@@ -30,6 +33,8 @@ type Writer = fn(&[BoardResult], TextOptions) -> String;
 fn writer(format: CheckFormat) -> Writer {
     match format {
         CheckFormat::Text => report::check_text,
+        CheckFormat::Line => |boards, _| report::lines(boards),
+        CheckFormat::Markdown => |boards, _| report::markdown(boards),
         CheckFormat::Json => |boards, _| report::check_json(boards),
     }
 }

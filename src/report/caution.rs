@@ -1,6 +1,5 @@
 //! What no report on a netlist may leave unsaid.
 
-use super::inert::inert;
 use crate::circuit::DeviceKind;
 use crate::review::Examination;
 
@@ -27,15 +26,15 @@ pub(super) fn caution(examination: &Examination) -> String {
     text
 }
 
-/// The same of several boards, of which some can hurt somebody.
-pub(super) fn of_many(hazards: &[&str]) -> String {
-    let names: Vec<_> = hazards.iter().take(MOST_NAMES).map(|name| inert(name)).collect();
+/// The same of several boards, of which those named can hurt somebody; the names as they are to be shown.
+pub(super) fn of_many(hazards: &[String]) -> String {
+    let names: Vec<&str> = hazards.iter().take(MOST_NAMES).map(String::as_str).collect();
     let more = hazards.len() - names.len();
     let more = if more > 0 { format!(" and {more} more") } else { String::new() };
-    match hazards.len() {
-        0 => UNSEEN.to_owned(),
-        1 => format!("{UNSEEN} {} has a battery, mains or a transformer: {LAST_WORD}", names.concat()),
-        _ => format!("{UNSEEN} {}{more} have a battery, mains or a transformer: {LAST_WORD}", names.join(", ")),
+    let has = if hazards.len() == 1 { "has" } else { "have" };
+    match names.join(", ") {
+        names if names.is_empty() => UNSEEN.to_owned(),
+        names => format!("{UNSEEN} {names}{more} {has} a battery, mains or a transformer: {LAST_WORD}"),
     }
 }
 

@@ -22,8 +22,13 @@ pub(super) fn whole(examination: &Examination, found: &Reviewed, look: Look) -> 
     let told = Told::new(finding.level, &finding.message)
         .line(&place(found))
         .excerpt(Excerpt::new(&found.place.source, &marks));
-    let mut text = told.render(look);
-    text.push_str(&figures(&finding.quantities, "    ", look.width()));
+    told.render(look) + &grounds(found, look)
+}
+
+/// The figures that decide, what to do, and what would settle it.
+pub(super) fn grounds(found: &Reviewed, look: Look) -> String {
+    let finding = &found.finding;
+    let mut text = figures(&finding.quantities, "    ", look.width());
     for hint in &finding.hints {
         text.push_str(&wrapped(&inert(hint), "  help: ", "        ", look.width()));
     }

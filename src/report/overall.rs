@@ -7,7 +7,6 @@ use super::layout::{padded, widest, wrapped};
 use super::look::Look;
 use super::text::{counted, plural};
 use crate::checks::{Counts, Level};
-use crate::review::Examination;
 
 /// Most boards without a finding that have a line of their own.
 const MOST_CLEAN: usize = 40;
@@ -47,8 +46,14 @@ pub(super) fn overall(boards: &[BoardResult], look: Look) -> String {
     if clean > MOST_CLEAN {
         text.push_str(&format!("  and {} more on which everything holds\n", clean - MOST_CLEAN));
     }
-    text.push_str(&totals(boards, look));
+    text.push('\n');
+    text.push_str(&wrapped_totals(boards, look));
     text
+}
+
+/// What a board came to, and its counts.
+pub(super) fn standing(board: &BoardResult) -> (&'static str, String) {
+    (State::of(board).name(), told(board))
 }
 
 /// What a board came to, in one or two words; the worst first.
@@ -129,25 +134,43 @@ fn told(board: &BoardResult) -> String {
     format!("{regulators} regulator{}{parts}", plural(regulators))
 }
 
-/// The counts of all, and the caution.
-fn totals(boards: &[BoardResult], look: Look) -> String {
+/// The counts of all.
+pub(super) fn all_counts(boards: &[BoardResult]) -> String {
     let all = || boards.iter().filter_map(|board| board.examination.as_ref());
     let regulators: usize = all().map(|examination| examination.design.regulators.len()).sum();
     let counts = all().fold(Counts::default(), |sum, examination| sum.and(examination.counts));
-    let accepted = all().map(|examination| examination.accepted).sum();
-    let parts = counted(counts, accepted);
-    let line = format!(
+    let parts = counted(counts, all().map(|examination| examination.accepted).sum());
+    let not_judged: usize = all().map(|examination| examination.design.not_judged.len()).sum();
+    let mut line = format!(
         "{regulators} regulator{}, {} requirement{}{}{parts}",
         plural(regulators),
         counts.requirements,
         plural(counts.requirements),
         if parts.is_empty() { "" } else { ": " }
     );
-    let hazards: Vec<&str> = boards
-        .iter()
-        .filter(|board| board.examination.as_ref().is_some_and(|found: &Examination| caution::has_hazard(found)))
-        .map(|board| board.netlist.as_str())
-        .collect();
-    let caution = wrapped(&caution::of_many(&hazards), "", "  ", look.width());
-    format!("\n{}{}\n", wrapped(&line, "", "  ", look.width()), look.faint(caution.trim_end()))
+    if not_judged > 0 {
+        line.push_str(&format!("; {not_judged} part{} not judged", plural(not_judged)));
+    }
+    line
+}
+
+/// What a netlist cannot show, with the boards that can hurt somebody, shown as `name` shows them.
+pub(super) fn caution_of(boards: &[BoardResult], name: fn(&str) -> String) -> String {
+    let is_hazard = |board: &&BoardResult| board.examination.as_ref().is_some_and(caution::has_hazard);
+    let hazards: Vec<String> = boards.iter().filter(is_hazard).map(|board| name(&board.netlist)).collect();
+    caution::of_many(&hazards)
+}
+
+fn plain(name: &str) -> String {
+    inert(name).into_owned()
+}
+
+fn wrapped_totals(boards: &[BoardResult], look: Look) -> String {
+    let caution = wrapped(&caution_of(boards, plain), "", "  ", look.width());
+    format!("{}{}\n", wrapped(&all_counts(boards), "", "  ", look.width()), look.faint(caution.trim_end()))
+}
+
+/// The counts of all and the caution, in a line each.
+pub(super) fn totals(boards: &[BoardResult]) -> String {
+    format!("{}\n{}\n", all_counts(boards), caution_of(boards, plain))
 }

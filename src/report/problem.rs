@@ -89,15 +89,19 @@ impl Diagnostic for Told {
     }
 }
 
-/// A problem as text.
-#[must_use]
-pub fn problem(problem: &Problem, look: Look) -> String {
-    let level = match problem.severity() {
+/// The level at which a problem is shown.
+pub(super) fn level_of(problem: &Problem) -> Level {
+    match problem.severity() {
         Severity::Error => Level::Error,
         Severity::Warning => Level::Warning,
         Severity::Note => Level::Note,
-    };
-    let mut told = Told::new(level, problem.message());
+    }
+}
+
+/// A problem as text.
+#[must_use]
+pub fn problem(problem: &Problem, look: Look) -> String {
+    let mut told = Told::new(level_of(problem), problem.message());
     if let Some((source, span)) = problem.place() {
         let label = problem.label().unwrap_or_default().to_owned();
         told = told.excerpt(Excerpt::new(source, &[Mark { span, label }]));

@@ -7,7 +7,7 @@ use std::process::Stdio;
 use super::program::{examples, program, run, run_with};
 
 /// A board of one regulator with a net of this name at its input.
-fn board(net: &str) -> String {
+pub(crate) fn board(net: &str) -> String {
     let quoted = net.replace('\\', "\\\\").replace('"', "\\\"");
     format!(
         "(export (version \"E\") (components \
@@ -22,7 +22,7 @@ fn board(net: &str) -> String {
     )
 }
 
-fn folder_with(name: &str, text: &str) -> tempfile::TempDir {
+pub(crate) fn folder_with(name: &str, text: &str) -> tempfile::TempDir {
     let folder = tempfile::tempdir().unwrap();
     fs::write(folder.path().join(name), text).unwrap();
     folder
@@ -168,7 +168,7 @@ fn the_same_inputs_give_the_same_bytes() {
 }
 
 /// Names that act on terminals and logs, as others hide them in a netlist.
-const HOSTILE: &[&str] = &[
+pub(crate) const HOSTILE: &[&str] = &[
     "\u{1b}[2J\u{1b}[1;1HAll checks passed\u{1b}]0;owned\u{7}",
     "\u{1b}]8;;https://e.example/\u{1b}\\GND\u{1b}]8;;\u{1b}\\",
     "\u{1b}]52;c;ZWNobyBoaQ==\u{7}",
@@ -186,7 +186,7 @@ const HOSTILE: &[&str] = &[
     "\u{7f}\u{fffe}\u{ffff}",
 ];
 
-fn assert_inert(text: &str, what: &str) {
+pub(crate) fn assert_inert(text: &str, what: &str) {
     let acting = text.chars().find(|sign| *sign != '\n' && railworthy::report::acts(*sign));
     assert_eq!(acting, None, "{what}");
     assert!(text.lines().all(|line| !line.trim_start().starts_with("::")), "{what}: {text}");

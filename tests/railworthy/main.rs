@@ -32,5 +32,6 @@ mod result_json;
 mod shared;
 mod small_board;
 mod spoiled;
+mod text_formats;
 mod user_checks;
 mod wiring;

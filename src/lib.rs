@@ -22,6 +22,8 @@ pub mod facts;
 
 pub mod checks;
 
+pub mod sheet;
+
 pub mod review;
 
 pub mod report;

@@ -77,12 +77,12 @@ pub fn find_house(folder: &Path) -> Option<PathBuf> {
 }
 
 /// Whether anything lies there, a dangling link too: what cannot be read must be told, not passed over.
-fn exists(path: &Path) -> bool {
+pub(crate) fn exists(path: &Path) -> bool {
     fs::symlink_metadata(path).is_ok()
 }
 
 /// The folder above, spelled as near to `folder` as can be; `None` for the root.
-fn parent(folder: &Path) -> Option<PathBuf> {
+pub(crate) fn parent(folder: &Path) -> Option<PathBuf> {
     match folder.components().next_back() {
         Some(Component::Normal(_)) => folder.parent().map(Path::to_owned),
         Some(Component::RootDir | Component::Prefix(_)) => None,

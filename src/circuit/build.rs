@@ -235,6 +235,7 @@ mod tests {
             format: Format::D,
             version: "D".to_owned(),
             schematic: String::new(),
+            schematic_span: Span::default(),
             tool: String::new(),
             components,
             parts: Vec::new(),

@@ -11,9 +11,11 @@ use super::{Status, Streams, args};
 use crate::board::{self, Board, FileError, Links, Options};
 use crate::checks::{Checks, DefinedNames};
 use crate::knowledge::Knowledge;
+use crate::netlist::Netlist;
 use crate::netlist::limits::{MAX_BYTES, MAX_PROBLEMS};
 use crate::report::{self, BoardResult};
-use crate::review::examine;
+use crate::review::examine_with_sheets;
+use crate::sheet::Sheets;
 use crate::source::{Problem, Severity};
 
 /// What standard input is called in messages.
@@ -86,9 +88,12 @@ pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str
     };
     match netlist(path) {
         Err(problem) => result.problems.push(*problem),
-        Ok(bytes) => match examine(&result.netlist, &bytes, declared.board, &rules.knowledge, &rules.checks, today) {
+        Ok(bytes) => match crate::netlist::read(&result.netlist, &bytes) {
             Err(problems) => result.problems.extend(problems),
-            Ok(mut examination) => {
+            Ok(netlist) => {
+                let sheets = sheets(path, &netlist);
+                let (knowledge, checks) = (&rules.knowledge, &rules.checks);
+                let mut examination = examine_with_sheets(netlist, &sheets, declared.board, knowledge, checks, today);
                 result.problems.append(&mut examination.problems);
                 result.examination = Some(examination);
             }
@@ -96,6 +101,11 @@ pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str
     }
     result.problems = told(result.problems);
     result
+}
+
+/// The schematic sheets beside a netlist; there is nothing beside standard input.
+fn sheets(path: &Path, netlist: &Netlist) -> Sheets {
+    if is_standard_input(path) { Sheets::default() } else { Sheets::beside(path, netlist) }
 }
 
 /// Problems, no more errors and no more others than a reader can use; the rest is counted.

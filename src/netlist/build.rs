@@ -1,5 +1,6 @@
 //! Turns islands into components, library parts and nets.
 
+use std::collections::BTreeMap;
 use std::ops::ControlFlow;
 
 use sexp::Sexp;
@@ -30,6 +31,9 @@ pub(super) struct Builder<'a> {
     begun: BegunNet,
     pub(super) version: Option<String>,
     pub(super) schematic: String,
+    pub(super) schematic_span: Span,
+    /// The file of each sheet by its path, where the design block lists them.
+    sheets: BTreeMap<String, String>,
     pub(super) tool: String,
     pub(super) components: Vec<Component>,
     pub(super) parts: Vec<LibraryPart>,
@@ -43,7 +47,7 @@ impl Sink for Builder<'_> {
         let mut placed = items.into_iter().skip(1);
         match kind {
             Kind::Version => self.version = placed.find_map(text),
-            Kind::Design => self.design(placed),
+            Kind::Design => self.design(places, placed),
             Kind::Component => self.component(span, places, placed),
             Kind::Part => self.part(span, places, placed),
             Kind::Net => {
@@ -80,6 +84,8 @@ impl<'a> Builder<'a> {
             begun: BegunNet::default(),
             version: None,
             schematic: String::new(),
+            schematic_span: Span::default(),
+            sheets: BTreeMap::new(),
             tool: String::new(),
             components: Vec::new(),
             parts: Vec::new(),
@@ -123,12 +129,27 @@ impl<'a> Builder<'a> {
         self.lost(format!("`{head}` does not hold what was expected"), span, "expected a name or one text");
     }
 
-    fn design(&mut self, items: impl Iterator<Item = Sexp>) {
-        for form in items.filter_map(Form::of) {
+    fn design(&mut self, places: &[Place], items: impl Iterator<Item = Sexp>) {
+        for (form, place) in forms(items, places) {
             match form.head.as_str() {
-                "source" => self.schematic = form.value().unwrap_or_default(),
+                "source" => {
+                    self.schematic = form.value().unwrap_or_default();
+                    self.schematic_span = place.value;
+                }
                 "tool" => self.tool = form.value().unwrap_or_default(),
+                "sheet" => self.sheets.extend(listed_sheet(form)),
                 _ => {}
+            }
+        }
+    }
+
+    /// Names the sheet files that older exports give with the sheets, or not at all, and not with each component.
+    pub(super) fn complete_sheet_files(&mut self) {
+        for component in self.components.iter_mut().filter(|component| component.sheet_file.is_empty()) {
+            match self.sheets.get(&component.sheet) {
+                Some(file) => component.sheet_file.clone_from(file),
+                None if component.sheet == "/" => component.sheet_file.clone_from(&self.schematic),
+                None => {}
             }
         }
     }
@@ -312,6 +333,21 @@ impl<'a> Builder<'a> {
         }
         Some(node)
     }
+}
+
+/// A sheet of the design block: its path and its file.
+fn listed_sheet(form: Form) -> Option<(String, String)> {
+    let (mut name, mut file) = (None, None);
+    for inner in form.lists() {
+        match inner.head.as_str() {
+            "name" => name = inner.value().ok(),
+            "title_block" => {
+                file = inner.lists().find(|entry| entry.head == "source").and_then(|entry| entry.value().ok())
+            }
+            _ => {}
+        }
+    }
+    name.zip(file)
 }
 
 /// The schematic file of a component's sheet; the property changed its spelling once.

@@ -56,7 +56,7 @@ pub struct Component {
     pub fields: Vec<Field>,
     /// Human-readable sheet path, such as `/Power/`, or empty.
     pub sheet: String,
-    /// Schematic file of its sheet, or empty.
+    /// Schematic file of its sheet as the export names it, or empty.
     pub sheet_file: String,
     /// Unique ids of its symbol (one a unit), as written.
     pub ids: Vec<String>,
@@ -139,6 +139,8 @@ pub struct Netlist {
     pub version: String,
     /// The schematic that it was exported from, as written, or empty.
     pub schematic: String,
+    /// That text with its quotes, or nothing at the start of the file.
+    pub schematic_span: Span,
     /// The program that wrote it, as written, or empty.
     pub tool: String,
     /// Components in order of the file.

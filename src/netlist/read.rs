@@ -52,15 +52,28 @@ pub(super) fn read_within(name: &str, bytes: &[u8], limits: &Limits) -> Result<N
     finish(&source, is_xml, built)
 }
 
-fn finish(source: &Source, is_xml: bool, built: Builder<'_>) -> Result<Netlist, Vec<Problem>> {
-    let Builder { version, schematic, tool, mut components, parts, mut nets, mut problems, .. } = built;
+fn finish(source: &Source, is_xml: bool, mut built: Builder<'_>) -> Result<Netlist, Vec<Problem>> {
+    built.complete_sheet_files();
+    let Builder { version, schematic, schematic_span, tool, mut components, parts, mut nets, mut problems, .. } =
+        built;
     verify(source, &mut components, &parts, &mut nets, &mut problems);
     let (format, version) = format(source, is_xml, version, &mut problems);
     if problems.has_error() && components.is_empty() && nets.is_empty() {
         return Err(problems.settle());
     }
     let problems = problems.settle();
-    Ok(Netlist { source: source.clone(), format, version, schematic, tool, components, parts, nets, problems })
+    Ok(Netlist {
+        source: source.clone(),
+        format,
+        version,
+        schematic,
+        schematic_span,
+        tool,
+        components,
+        parts,
+        nets,
+        problems,
+    })
 }
 
 /// The format by the version; where that is missing or not known, by whether references are quoted.

@@ -130,6 +130,25 @@ fn the_xml_form_is_read_with_entities_resolved() {
 }
 
 #[test]
+fn the_file_of_a_sheet_comes_from_the_component_else_from_the_list_of_sheets_else_from_the_source() {
+    let sheet_files = |design: &str, property: &str| {
+        let netlist = good(&format!(
+            r#"(export (version D) (design (source /home/u/gauge.sch) {design})
+               (components (comp (ref U1) (sheetpath (names /Power/) (tstamps /5B9D7D87/)) {property})
+                 (comp (ref U2) (sheetpath (names /) (tstamps /)))) (nets))"#
+        ));
+        assert_eq!(netlist.source.slice(netlist.schematic_span), "/home/u/gauge.sch");
+        netlist.components.into_iter().map(|component| component.sheet_file).collect::<Vec<_>>()
+    };
+    let listed = "(sheet (number 1) (name /) (tstamps /) (title_block (title) (source top.sch)))
+        (sheet (number 2) (name /Power/) (tstamps /5B9D7D87/) (title_block (rev A) (source \"power 2.sch\")))";
+    let own = "(property (name Sheetfile) (value own.kicad_sch))";
+    assert_eq!(sheet_files(listed, own), ["own.kicad_sch", "top.sch"]);
+    assert_eq!(sheet_files(listed, ""), ["power 2.sch", "top.sch"]);
+    assert_eq!(sheet_files("", ""), ["", "/home/u/gauge.sch"]);
+}
+
+#[test]
 fn fields_and_properties_merge_and_the_first_text_wins() {
     let netlist = good(
         r#"(export (version "E") (components (comp (ref "U1") (value "x\\y\"z\r\n\q")

@@ -16,12 +16,12 @@ const MOST_MARKS: usize = 2;
 /// A finding with all that belongs to it.
 pub(super) fn whole(examination: &Examination, found: &Reviewed, look: Look) -> String {
     let finding = &found.finding;
-    let main = Mark { span: found.place.span, label: found.about.clone() };
+    let at = found.best_place();
+    let main = Mark { span: at.span, label: found.about.clone() };
     let also = parts_marked(examination, found);
     let marks: Vec<Mark> = std::iter::once(main).chain(also).collect();
-    let told = Told::new(finding.level, &finding.message)
-        .line(&place(found))
-        .excerpt(Excerpt::new(&found.place.source, &marks));
+    let told =
+        Told::new(finding.level, &finding.message).line(&place(found)).excerpt(Excerpt::new(&at.source, &marks));
     told.render(look) + &grounds(found, look)
 }
 
@@ -36,8 +36,8 @@ pub(super) fn grounds(found: &Reviewed, look: Look) -> String {
     text
 }
 
-/// The parts that are marked besides the subject. Nets are named in the second line already; where they stand in the
-/// netlist helps nobody.
+/// The parts that are marked besides the subject, as far as they stand in the same file. Nets are named in the second
+/// line already; where they stand in the netlist helps nobody.
 fn parts_marked<'a>(examination: &'a Examination, found: &'a Reviewed) -> impl Iterator<Item = Mark> + 'a {
     let circuit = &examination.design.circuit;
     let is_marked = |point: &&Point| match point {
@@ -47,7 +47,9 @@ fn parts_marked<'a>(examination: &'a Examination, found: &'a Reviewed) -> impl I
     let points = found.finding.also.iter().filter(is_marked);
     points
         .zip(&found.also)
-        .filter(|(point, _)| matches!(point, Point::Subject(_)))
+        .filter(|(point, (place, _))| {
+            matches!(point, Point::Subject(_)) && place.source.is(&found.best_place().source)
+        })
         .take(MOST_MARKS)
         .map(|(_, (place, label))| Mark { span: place.span, label: label.clone() })
 }

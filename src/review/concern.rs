@@ -3,7 +3,8 @@
 use crate::checks::{Figures, Finding, Point};
 use crate::circuit::DeviceId;
 use crate::facts::{Facts, Subject};
-use crate::netlist::Netlist;
+use crate::netlist::{Component, Netlist};
+use crate::sheet::Sheets;
 use crate::source::{Location, Span};
 
 /// References of parts and names of nets, the subject's first, each once.
@@ -57,20 +58,39 @@ pub(super) fn place(facts: &Facts<'_>, netlist: &Netlist, subject: Subject) -> (
 }
 
 fn span(facts: &Facts<'_>, netlist: &Netlist, subject: Subject) -> (Span, String) {
-    let device: Option<DeviceId> = match subject {
-        Subject::Regulator(_) => facts.regulator(subject).map(|regulator| regulator.device),
-        Subject::Capacitor { device, .. } => Some(device),
-        Subject::Net(net) => return (facts.circuit().net(net).name_span, String::new()),
-        Subject::Board => None,
-    };
-    let component = device.and_then(|device| netlist.components.get(facts.circuit().device(device).component));
+    if let Subject::Net(net) = subject {
+        return (facts.circuit().net(net).name_span, String::new());
+    }
+    let component = component(facts, netlist, subject);
     component.map_or_else(Default::default, |component| (component.reference_span, component.sheet.clone()))
 }
 
-/// What to mark besides the subject, with a few words each.
-pub(super) fn also(facts: &Facts<'_>, netlist: &Netlist, finding: &Finding) -> Vec<(Location, String)> {
+fn component<'n>(facts: &Facts<'_>, netlist: &'n Netlist, subject: Subject) -> Option<&'n Component> {
+    let device: DeviceId = match subject {
+        Subject::Regulator(_) => facts.regulator(subject)?.device,
+        Subject::Capacitor { device, .. } => device,
+        Subject::Net(_) | Subject::Board => return None,
+    };
+    netlist.components.get(facts.circuit().device(device).component)
+}
+
+/// The place of a subject on its schematic sheet, where that is there; nets have none.
+pub(super) fn schematic(facts: &Facts<'_>, netlist: &Netlist, sheets: &Sheets, subject: Subject) -> Option<Location> {
+    sheets.locate(component(facts, netlist, subject)?)
+}
+
+/// What to mark besides the subject, with a few words each: on the schematic sheet where that is there.
+pub(super) fn also(
+    facts: &Facts<'_>,
+    netlist: &Netlist,
+    sheets: &Sheets,
+    finding: &Finding,
+) -> Vec<(Location, String)> {
     let mark = |point: &Point| match point {
-        Point::Subject(subject) => Some((place(facts, netlist, *subject).0, facts.label(*subject))),
+        Point::Subject(subject) => {
+            let drawn = schematic(facts, netlist, sheets, *subject);
+            Some((drawn.unwrap_or_else(|| place(facts, netlist, *subject).0), facts.label(*subject)))
+        }
         Point::Named { role, name } => {
             let net = facts.circuit().net_named(name)?;
             Some((Location::new(&netlist.source, facts.circuit().net(net).name_span), role.replace('_', " ")))

@@ -14,6 +14,7 @@ use crate::facts::{Facts, Subject, SubjectKind};
 use crate::knowledge::Knowledge;
 use crate::netlist::{self, Netlist};
 use crate::recognize::{Design, recognize};
+use crate::sheet::Sheets;
 use crate::source::{Location, Problem, Severity};
 
 /// A finding as reviewed.
@@ -39,7 +40,7 @@ pub struct Reviewed {
     pub place: Location,
     /// The same in the schematic sheet, where that lies beside the netlist.
     pub schematic: Option<Location>,
-    /// What to mark besides, with a few words each.
+    /// What to mark besides, with a few words each; parts in their schematic sheets, where those are there.
     pub also: Vec<(Location, String)>,
 }
 
@@ -100,7 +101,20 @@ pub fn examine(
 /// Judges a netlist that was read; see [`examine`].
 #[must_use]
 pub fn examine_netlist(
+    netlist: Netlist,
+    board: Board,
+    knowledge: &Knowledge,
+    checks: &Checks,
+    today: &str,
+) -> Examination {
+    examine_with_sheets(netlist, &Sheets::default(), board, knowledge, checks, today)
+}
+
+/// Judges a netlist beside whose schematic sheets findings are to be placed; they change no verdict.
+#[must_use]
+pub fn examine_with_sheets(
     mut netlist: Netlist,
+    sheets: &Sheets,
     board: Board,
     knowledge: &Knowledge,
     checks: &Checks,
@@ -118,7 +132,7 @@ pub fn examine_netlist(
         checks = checks.at_most(Verdict::Doubtful);
     }
     let design = recognize(circuit, &board, knowledge);
-    let (findings, counts, told) = judged(&design, &board, knowledge, &checks, &netlist, today);
+    let (findings, counts, told) = judged(&design, &board, knowledge, &checks, (&netlist, sheets), today);
     let accepted = findings.iter().filter(|finding| finding.accepted.is_some()).count();
     let declare_first = declare_first(&findings);
     Examination { netlist, board, design, findings, counts, accepted, told, problems, declare_first }
@@ -148,7 +162,7 @@ fn judged(
     board: &Board,
     knowledge: &Knowledge,
     checks: &Checks,
-    netlist: &Netlist,
+    (netlist, sheets): (&Netlist, &Sheets),
     today: &str,
 ) -> (Vec<Reviewed>, Counts, Vec<Told>) {
     let facts = Facts::new(design, board, knowledge);
@@ -159,29 +173,25 @@ fn judged(
     let prints = fingerprints(&facts, netlist, &judgement.findings);
     let each = judgement.findings.into_iter().zip(prints);
     let findings: Vec<Reviewed> =
-        each.map(|(finding, print)| reviewed(&facts, netlist, finding, print, today)).collect();
+        each.map(|(finding, print)| reviewed(&facts, (netlist, sheets), finding, print, today)).collect();
     let counts = without_accepted(judgement.counts, &findings);
     (findings, counts, told)
 }
 
-fn reviewed(facts: &Facts<'_>, netlist: &Netlist, finding: Finding, fingerprint: String, today: &str) -> Reviewed {
+fn reviewed(
+    facts: &Facts<'_>,
+    (netlist, sheets): (&Netlist, &Sheets),
+    finding: Finding,
+    fingerprint: String,
+    today: &str,
+) -> Reviewed {
     let (parts, nets) = concern::concerned(facts, &finding);
     let (place, sheet) = concern::place(facts, netlist, finding.subject);
-    let also = concern::also(facts, netlist, &finding);
+    let also = concern::also(facts, netlist, sheets, &finding);
+    let schematic = concern::schematic(facts, netlist, sheets, finding.subject);
     let (subject, about) = concern::named(facts, finding.subject);
-    let mut reviewed = Reviewed {
-        finding,
-        subject,
-        about,
-        fingerprint,
-        accepted: None,
-        parts,
-        nets,
-        sheet,
-        place,
-        schematic: None,
-        also,
-    };
+    let mut reviewed =
+        Reviewed { finding, subject, about, fingerprint, accepted: None, parts, nets, sheet, place, schematic, also };
     reviewed.accepted = accept::accepted(facts.board(), &reviewed, today);
     reviewed
 }

@@ -7,5 +7,5 @@ mod fingerprint;
 mod settle;
 
 pub use accept::Accepted;
-pub use examine::{Examination, Reviewed, examine, examine_netlist};
+pub use examine::{Examination, Reviewed, examine, examine_netlist, examine_with_sheets};
 pub use settle::{Decisive, declare_first};

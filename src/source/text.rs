@@ -102,6 +102,12 @@ impl Source {
         &self.name
     }
 
+    /// Whether both are the same text, read at the same time.
+    #[must_use]
+    pub fn is(&self, other: &Self) -> bool {
+        Arc::ptr_eq(&self.text, &other.text)
+    }
+
     /// The whole text.
     #[must_use]
     pub fn text(&self) -> &str {

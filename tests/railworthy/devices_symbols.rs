@@ -51,6 +51,7 @@ fn board(rows: &[BTreeMap<String, String>], library: Option<&str>, described: bo
         format: Format::E,
         version: "E".to_owned(),
         schematic: String::new(),
+        schematic_span: railworthy::source::Span::default(),
         tool: String::new(),
         components,
         parts,

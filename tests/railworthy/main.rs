@@ -30,6 +30,7 @@ mod regulator_sheets;
 mod report;
 mod result_json;
 mod shared;
+mod sheets;
 mod small_board;
 mod spoiled;
 mod text_formats;

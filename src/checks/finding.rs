@@ -86,6 +86,8 @@ pub struct Counts {
 pub struct Judgement {
     /// Findings: errors first, then by check, then by subject in natural order.
     pub findings: Vec<Finding>,
+    /// Findings that others make superfluous: neither told nor counted.
+    pub suppressed: Vec<Finding>,
     /// Every requirement asked, by check, then by subject in natural order.
     pub outcomes: Vec<Outcome>,
     /// The counts of the outcomes.

@@ -1,11 +1,12 @@
 //! Asks every check of every subject that it is about.
 
 use std::cmp::Ordering;
-use std::collections::{BTreeMap, HashMap};
+use std::collections::HashMap;
 
 use super::check::{Check, Rule};
 use super::finding::{Counts, Finding, Judgement, Outcome, Point};
 use super::language::{Answer, Condition, Context, Decision, Figures, Judged, Path, value};
+use super::merge::merge;
 use super::set::Checks;
 use super::template::Template;
 use super::verdict::{Level, Verdict};
@@ -13,9 +14,17 @@ use super::wording::{Filling, missing};
 use crate::facts::{Subject, Value};
 use crate::quantity::Quantity;
 
-/// Asks every check of every subject that it is about.
+/// Asks every check of every subject that it is about; one finding tells all that the same missing figures leave
+/// unknown.
 #[must_use]
 pub fn judge(checks: &Checks, subjects: &[Subject], figures: &dyn Figures) -> Judgement {
+    let judgement = judge_apart(checks, subjects, figures);
+    Judgement { findings: merge(judgement.findings, figures), ..judgement }
+}
+
+/// Asks every check of every subject that it is about; each requirement has a finding of its own.
+#[must_use]
+pub fn judge_apart(checks: &Checks, subjects: &[Subject], figures: &dyn Figures) -> Judgement {
     let mut subjects: Vec<(String, Subject)> =
         subjects.iter().map(|subject| (figures.label(*subject), *subject)).collect();
     subjects.sort_by(|one, other| natural(&one.0, &other.0).then_with(|| one.1.cmp(&other.1)));
@@ -26,16 +35,15 @@ pub fn judge(checks: &Checks, subjects: &[Subject], figures: &dyn Figures) -> Ju
         }
     }
     suppress(checks, &mut judged);
-    let mut outcomes = Vec::new();
-    let mut findings = Vec::new();
+    let (mut outcomes, mut findings, mut suppressed) = (Vec::new(), Vec::new(), Vec::new());
     for (outcome, finding) in judged {
-        findings.extend(finding.filter(|_| outcome.suppressed_by.is_none()));
+        let told = if outcome.suppressed_by.is_none() { &mut findings } else { &mut suppressed };
+        told.extend(finding);
         outcomes.push(outcome);
     }
     // Stable: within a level the order of checks, then of subjects, stays.
     findings.sort_by_key(|finding: &Finding| finding.level);
-    let findings = merge(findings, figures);
-    Judgement { findings, counts: Counts::of(&outcomes), outcomes }
+    Judgement { findings, suppressed, counts: Counts::of(&outcomes), outcomes }
 }
 
 /// Asks one check of one subject; `None` where it does not apply.
@@ -222,10 +230,9 @@ fn suppress(checks: &Checks, judged: &mut [(Outcome, Option<Finding>)]) {
             let (place, verdict) = beside.iter().copied().find(|(at, _)| named(*at))?;
             (verdict <= Verdict::Doubtful && verdict <= outcome.verdict).then(|| (place, other.clone()))
         });
-        if let (Some((place, by)), Some((outcome, finding))) = (by, judged.get_mut(at)) {
+        if let (Some((place, by)), Some((outcome, _))) = (by, judged.get_mut(at)) {
             told.push((place, outcome.check.clone()));
             outcome.suppressed_by = Some(by);
-            *finding = None;
         }
     }
     for (place, check) in told {
@@ -233,40 +240,6 @@ fn suppress(checks: &Checks, judged: &mut [(Outcome, Option<Finding>)]) {
             finding.suppresses.push(check);
         }
     }
-}
-
-/// One note for what the same missing figures leave unknown: the first finding tells the others.
-fn merge(findings: Vec<Finding>, figures: &dyn Figures) -> Vec<Finding> {
-    let mut kept: Vec<Finding> = Vec::new();
-    let mut by_missing: BTreeMap<Vec<crate::quantity::Key>, usize> = BTreeMap::new();
-    for finding in findings {
-        let mut key = finding.missing.clone();
-        key.sort();
-        key.dedup();
-        let mergeable = finding.verdict == Verdict::Unknown && !key.is_empty();
-        if let Some(first) = by_missing.get(&key).filter(|_| mergeable).and_then(|index| kept.get_mut(*index)) {
-            first.merged.push((finding.check, finding.subject));
-            continue;
-        }
-        if mergeable {
-            by_missing.insert(key, kept.len());
-        }
-        kept.push(finding);
-    }
-    for finding in kept.iter_mut().filter(|finding| !finding.merged.is_empty()) {
-        let mut by_check: Vec<(&str, Vec<String>)> = Vec::new();
-        for (check, subject) in &finding.merged {
-            let label = figures.label(*subject);
-            match by_check.iter_mut().find(|(known, _)| known == check) {
-                Some((_, labels)) => labels.push(label),
-                None => by_check.push((check, vec![label])),
-            }
-        }
-        let told: Vec<String> =
-            by_check.iter().map(|(check, labels)| format!("{check} of {}", labels.join(", "))).collect();
-        finding.message.push_str(&format!("; nor can {}", told.join("; ")));
-    }
-    kept
 }
 
 /// Compares labels as people sort them: runs of digits by their value (`U2` before `U10`).

@@ -3,9 +3,9 @@
 use super::args::{Catalog, Shelf};
 use super::input::Rules;
 use super::settings::Terminal;
-use super::{Status, Streams};
+use super::{Status, Streams, explain};
 use crate::facts::DEFINITIONS;
-use crate::report::{self, catalog};
+use crate::report::catalog;
 use crate::source::toml::nearest;
 
 pub(super) fn run(typed: &Catalog, terminal: Terminal, to: &mut Streams<'_>) -> Status {
@@ -23,7 +23,7 @@ pub(super) fn run(typed: &Catalog, terminal: Terminal, to: &mut Streams<'_>) -> 
         return to.result(&text).max(status);
     };
     let found = match typed.what {
-        Shelf::Checks => rules.checks.get(name).map(|check| report::explain_check(check, look)),
+        Shelf::Checks => explain::explained(name, &rules, terminal),
         Shelf::Parts => catalog::part(&rules.knowledge, &rules.checks, name, look),
         Shelf::Supplies => catalog::supply(&rules.knowledge, name, look),
         Shelf::Technologies => catalog::technology(&rules.knowledge, name, look),
@@ -44,7 +44,7 @@ pub(super) fn run(typed: &Catalog, terminal: Terminal, to: &mut Streams<'_>) -> 
 fn names(shelf: Shelf, rules: &Rules) -> Vec<String> {
     let knowledge = &rules.knowledge;
     match shelf {
-        Shelf::Checks => rules.checks.iter().map(|check| check.name.clone()).collect(),
+        Shelf::Checks => explain::check_names(rules).map(str::to_owned).collect(),
         Shelf::Parts => knowledge.families.iter().map(|family| family.name.clone()).collect(),
         Shelf::Supplies => knowledge.supplies.iter().map(|supply| supply.name.clone()).collect(),
         Shelf::Technologies => knowledge.technologies.iter().map(|technology| technology.name.clone()).collect(),

@@ -14,7 +14,7 @@ use crate::knowledge::Knowledge;
 use crate::netlist::Netlist;
 use crate::netlist::limits::{MAX_BYTES, MAX_PROBLEMS};
 use crate::report::{self, BoardResult};
-use crate::review::examine_with_sheets;
+use crate::review::{examine_with_sheets, review_check};
 use crate::sheet::Sheets;
 use crate::source::{Problem, Severity};
 
@@ -37,6 +37,7 @@ impl Rules {
         let (knowledge, mut problems) = Knowledge::load(folders);
         let (checks, found) = Checks::load(&knowledge.checks, &DefinedNames);
         problems.extend(found);
+        problems.extend(checks.iter().filter_map(|check| name_is_taken(&check.name)));
         Self { knowledge: Arc::new(knowledge), checks, problems: problems.into(), own: Mutex::default() }
     }
 
@@ -52,6 +53,14 @@ impl Rules {
         let rules = own.entry(folders).or_insert_with_key(|folders| Arc::new(Self::load(folders)));
         Some(Arc::clone(rules))
     }
+}
+
+fn name_is_taken(name: &str) -> Option<Problem> {
+    let problem = Problem::error(format!(
+        "the check folder `{}` has the name of a check of the review",
+        review_check(name)?.name
+    ));
+    Some(problem.help("give the folder and its check another name"))
 }
 
 impl Rules {

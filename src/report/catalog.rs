@@ -12,6 +12,7 @@ use crate::checks::Checks;
 use crate::facts::{DEFINITIONS, Definition, ValueKind};
 use crate::knowledge::{Cited, Knowledge, SourceNote, Supply, Technology};
 use crate::quantity::{Dimension, Range, print_range};
+use crate::review::REVIEW_CHECKS;
 
 /// Every check with its question, by group.
 #[must_use]
@@ -20,6 +21,9 @@ pub fn checks(checks: &Checks, look: Look) -> String {
     for check in checks.iter() {
         let row = vec![inert(&check.name).into_owned(), inert(&check.asks).into_owned()];
         groups.entry(check.group.as_deref().unwrap_or("other")).or_default().push(row);
+    }
+    for check in REVIEW_CHECKS {
+        groups.entry(check.group).or_default().push(vec![check.name.to_owned(), check.asks.to_owned()]);
     }
     let mut text = String::new();
     for (group, rows) in groups {

@@ -4,6 +4,7 @@ use super::inert::inert;
 use super::layout::{table, wrapped};
 use super::look::Look;
 use crate::checks::{Check, Citation, Rule};
+use crate::review::ReviewCheck;
 
 /// A check in full: its question, requirements, settings and sources.
 #[must_use]
@@ -44,6 +45,17 @@ pub fn explain_check(check: &Check, look: Look) -> String {
         text.push_str(&wrapped(&inert(&line), "  ", "    ", width));
     }
     text.push_str(&format!("\nfile: {}\n", inert(&check.file)));
+    super::guarded(&text)
+}
+
+/// A check of the review: its question and what it rests on.
+#[must_use]
+pub fn explain_review_check(check: &ReviewCheck, look: Look) -> String {
+    let mut text = look.bold(check.name);
+    text.push_str(&format!(": {}\n", check.asks));
+    text.push_str(&wrapped("asked of the review itself; what it finds is a warning", "", "  ", look.width()));
+    text.push_str(&format!("\n{}", look.bold("Rests on\n")));
+    text.push_str(&wrapped(check.grounds, "  ", "    ", look.width()));
     super::guarded(&text)
 }
 

@@ -5,11 +5,12 @@ use serde::Serialize;
 use super::board::BoardResult;
 use super::json_text::text;
 use super::json_value::{Bounds, EvidenceEntry, evidence, finite, unit};
+use crate::board::Place;
 use crate::checks::Counts;
 use crate::circuit::{Circuit, DeviceId, NetId};
 use crate::facts::{Facts, Subject};
 use crate::knowledge::{Knowledge, Pass, Sign};
-use crate::quantity::Settle;
+use crate::quantity::{Dimension, Settle};
 use crate::recognize::{Mode, Regulator};
 use crate::review::{Examination, Reviewed};
 use crate::source::{Problem, Source, Span};
@@ -117,6 +118,7 @@ struct FindingEntry<'a> {
     declarations: Vec<Declaration<'a>>,
     fingerprint: &'a str,
     accepted: Option<AcceptedEntry<'a>>,
+    reopened: Option<ReopenedEntry<'a>>,
     position: Position<'a>,
     schematic: Option<Position<'a>>,
 }
@@ -153,6 +155,13 @@ struct Declaration<'a> {
 struct AcceptedEntry<'a> {
     reason: &'a str,
     until: Option<&'a str>,
+    position: Option<Position<'a>>,
+}
+
+#[derive(Debug, Serialize)]
+struct ReopenedEntry<'a> {
+    slack: Slack,
+    position: Option<Position<'a>>,
 }
 
 #[derive(Debug, Default, Serialize)]
@@ -165,6 +174,7 @@ struct CountsEntry {
     unknown: usize,
     holds: usize,
     accepted: usize,
+    review: usize,
 }
 
 /// The result of some boards.
@@ -200,7 +210,7 @@ fn one(board: &BoardResult) -> Board<'_> {
         .collect();
     entry.not_judged = not_judged(examination);
     entry.findings = examination.findings.iter().map(finding).collect();
-    entry.counts = counts(examination.counts, examination.design.regulators.len(), examination.accepted);
+    entry.counts = counts(examination);
     entry.declare_first = examination
         .declare_first
         .iter()
@@ -306,7 +316,7 @@ fn finding(found: &Reviewed) -> FindingEntry<'_> {
         parts: &found.parts,
         nets: &found.nets,
         message: &finding.message,
-        slack: finding.slack.map(|(value, dimension)| Slack { value: finite(value), unit: unit(dimension) }),
+        slack: finding.slack.map(slack),
         quantities: finding
             .quantities
             .iter()
@@ -319,12 +329,28 @@ fn finding(found: &Reviewed) -> FindingEntry<'_> {
         settle: finding.settle.iter().map(Settle::phrase).collect(),
         declarations: finding.settle.iter().map(declaration).collect(),
         fingerprint: &found.fingerprint,
-        accepted: found
-            .accepted
+        accepted: found.accepted.as_ref().map(|accepted| AcceptedEntry {
+            reason: &accepted.reason,
+            until: accepted.until.as_deref(),
+            position: declared_at(&accepted.place),
+        }),
+        reopened: found
+            .reopened
             .as_ref()
-            .map(|accepted| AcceptedEntry { reason: &accepted.reason, until: accepted.until.as_deref() }),
+            .map(|reopened| ReopenedEntry { slack: slack(reopened.was), position: declared_at(&reopened.place) }),
         position: position(&found.place.source, found.place.span),
         schematic: found.schematic.as_ref().map(|place| position(&place.source, place.span)),
+    }
+}
+
+fn slack((value, dimension): (f64, Dimension)) -> Slack {
+    Slack { value: finite(value), unit: unit(dimension) }
+}
+
+fn declared_at(place: &Place) -> Option<Position<'_>> {
+    match place {
+        Place::File { source, span, .. } => Some(position(source, *span)),
+        Place::Field { .. } => None,
     }
 }
 
@@ -339,7 +365,9 @@ fn declaration(settle: &Settle) -> Declaration<'_> {
     }
 }
 
-fn counts(counts: Counts, regulators: usize, accepted: usize) -> CountsEntry {
-    let Counts { requirements, fails, doubtful, tight, unknown, holds } = counts;
-    CountsEntry { regulators, requirements, fails, doubtful, tight, unknown, holds, accepted }
+fn counts(examination: &Examination) -> CountsEntry {
+    let Counts { requirements, fails, doubtful, tight, unknown, holds } = examination.counts;
+    let (regulators, accepted) = (examination.design.regulators.len(), examination.accepted);
+    let review = examination.review;
+    CountsEntry { regulators, requirements, fails, doubtful, tight, unknown, holds, accepted, review }
 }

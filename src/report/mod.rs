@@ -29,7 +29,7 @@ mod vet;
 
 pub use board::BoardResult;
 pub use draft::{draft, known as known_draft};
-pub use explain::explain_check;
+pub use explain::{explain_check, explain_review_check};
 pub use inert::{acts, guarded, inert, inert_short};
 pub use json::check as check_json;
 pub use json_rails::rails as rails_json;

@@ -147,6 +147,10 @@ fn notes_of(notes: &[&Reviewed], look: Look) -> String {
             if !settle.is_empty() {
                 line.push_str(&format!("; to settle: declare {}", settle.join(", ")));
             }
+            if found.reopened.is_some() {
+                let hints = found.finding.hints.last();
+                line.push_str(&hints.map(|hint| format!("; {}", inert(hint))).unwrap_or_default());
+            }
             // The colours have no width of their own.
             text.push_str(&wrapped(&line, "  note: ", "        ", look.width()).replacen("note", &label, 1));
         }
@@ -198,6 +202,10 @@ fn counts(examination: &Examination) -> String {
     );
     if !parts.is_empty() {
         line.push_str(&format!(": {parts}"));
+    }
+    if examination.review > 0 {
+        let count = examination.review;
+        line.push_str(&format!("; {count} finding{} of the review", plural(count)));
     }
     let not_judged = not_judged(examination);
     if !not_judged.is_empty() {

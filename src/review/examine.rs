@@ -2,13 +2,14 @@
 
 use std::collections::BTreeSet;
 
-use super::accept::{self, Accepted};
+use super::accept::{Accepted, Entries, Reopened};
 use super::concern;
 use super::fingerprint::fingerprints;
+use super::notice::{REVIEW_CHECKS, Round, notices, review_check};
 use super::settle::{Decisive, declare_first};
-use crate::board::{Board, Place, SettingValue};
+use crate::board::{Accept, Board, Place, SettingValue};
 use crate::checks::cases::Told;
-use crate::checks::{self, Checks, Counts, Finding, Override, Verdict};
+use crate::checks::{self, Checks, Counts, Finding, Judgement, Override, Verdict};
 use crate::circuit::Circuit;
 use crate::facts::{Facts, Subject, SubjectKind};
 use crate::knowledge::Knowledge;
@@ -30,6 +31,10 @@ pub struct Reviewed {
     pub fingerprint: String,
     /// Its acceptance in the board file.
     pub accepted: Option<Accepted>,
+    /// That it was accepted when it was better, where nothing accepts it now.
+    pub reopened: Option<Reopened>,
+    /// What the same missing figures leave unknown too, told by this finding.
+    pub merged: Vec<Reviewed>,
     /// References of the parts concerned, the subject's first.
     pub parts: Vec<String>,
     /// Names of the nets concerned.
@@ -61,12 +66,14 @@ pub struct Examination {
     pub board: Board,
     /// The design.
     pub design: Design,
-    /// Findings: errors first, then by check, then by subject.
+    /// Findings: errors first, then by check, then by subject; within a level those of the review last.
     pub findings: Vec<Reviewed>,
-    /// The counts; accepted findings are left out of their verdicts.
+    /// The counts of what was asked of the design; accepted findings are left out of their verdicts.
     pub counts: Counts,
     /// How many findings are accepted.
     pub accepted: usize,
+    /// How many findings of the review are open; they count under no verdict.
+    pub review: usize,
     /// What every requirement came to, under the name of its subject.
     pub told: Vec<Told>,
     /// What was lost or odd while reading, in the order of reading.
@@ -132,10 +139,11 @@ pub fn examine_with_sheets(
         checks = checks.at_most(Verdict::Doubtful);
     }
     let design = recognize(circuit, &board, knowledge);
-    let (findings, counts, told) = judged(&design, &board, knowledge, &checks, (&netlist, sheets), today);
+    let Judged { findings, counts, review, told } =
+        judged(&design, &board, knowledge, &checks, Given { netlist: &netlist, sheets, whole, today });
     let accepted = findings.iter().filter(|finding| finding.accepted.is_some()).count();
     let declare_first = declare_first(&findings);
-    Examination { netlist, board, design, findings, counts, accepted, told, problems, declare_first }
+    Examination { netlist, board, design, findings, counts, accepted, review, told, problems, declare_first }
 }
 
 /// Adds what symbol fields declare and looks up the names that the board file uses.
@@ -149,50 +157,121 @@ fn declared(
 ) -> Board {
     problems.extend(board.with_symbol_fields(netlist, circuit));
     problems.extend(board.resolve(knowledge));
-    let names: Vec<&str> = checks.iter().map(|check| check.name.as_str()).collect();
+    let review = REVIEW_CHECKS.iter().map(|check| check.name);
+    let names: Vec<&str> = checks.iter().map(|check| check.name.as_str()).chain(review).collect();
     problems.extend(board.check_checks(names.iter().copied()));
+    problems.extend(board.accepts.iter().filter_map(not_to_be_accepted));
     problems.extend(board.check_against(circuit));
     let grounds: Vec<&str> = board.grounds.iter().map(|ground| ground.value.as_str()).collect();
     circuit.mark_ground(grounds);
     board
 }
 
-fn judged(
-    design: &Design,
-    board: &Board,
-    knowledge: &Knowledge,
-    checks: &Checks,
-    (netlist, sheets): (&Netlist, &Sheets),
-    today: &str,
-) -> (Vec<Reviewed>, Counts, Vec<Told>) {
+/// An entry that would accept what is found of acceptances.
+fn not_to_be_accepted(entry: &Accept) -> Option<Problem> {
+    let check = review_check(&entry.check.value).filter(|check| !check.may_be_accepted)?;
+    let problem = Problem::error(format!("what `{}` finds cannot be accepted", check.name))
+        .help("change the acceptance that it finds fault with, or take that out");
+    Some(entry.check.place.mark(problem, "about acceptances themselves"))
+}
+
+/// What was read besides the design, and the day.
+#[derive(Debug, Clone, Copy)]
+struct Given<'a> {
+    netlist: &'a Netlist,
+    sheets: &'a Sheets,
+    /// Whether nothing of the netlist was lost.
+    whole: bool,
+    today: &'a str,
+}
+
+/// What was found on a design.
+#[derive(Debug)]
+struct Judged {
+    findings: Vec<Reviewed>,
+    counts: Counts,
+    review: usize,
+    told: Vec<Told>,
+}
+
+fn judged(design: &Design, board: &Board, knowledge: &Knowledge, checks: &Checks, given: Given<'_>) -> Judged {
+    let Given { netlist, whole, today, .. } = given;
     let facts = Facts::new(design, board, knowledge);
     let kinds: BTreeSet<SubjectKind> = checks.iter().map(|check| check.about).collect();
     let subjects: Vec<Subject> = kinds.into_iter().flat_map(|kind| facts.subjects(kind)).collect();
-    let judgement = checks::judge(checks, &subjects, &facts);
-    let told = Told::of(&judgement.outcomes, &facts);
-    let prints = fingerprints(&facts, netlist, &judgement.findings);
-    let each = judgement.findings.into_iter().zip(prints);
-    let findings: Vec<Reviewed> =
-        each.map(|(finding, print)| reviewed(&facts, (netlist, sheets), finding, print, today)).collect();
-    let counts = without_accepted(judgement.counts, &findings);
-    (findings, counts, told)
+    let Judgement { findings, suppressed, outcomes, counts } = checks::judge_apart(checks, &subjects, &facts);
+    let told = Told::of(&outcomes, &facts);
+    let prints = fingerprints(&facts, netlist, &findings.iter().chain(&suppressed).collect::<Vec<_>>());
+    let open = findings.len();
+    let entries = Entries::new(&board.accepts, today);
+    let each = findings.into_iter().chain(suppressed).zip(prints);
+    let mut findings: Vec<Reviewed> =
+        each.map(|(finding, print)| reviewed(&facts, given, finding, print, &entries)).collect();
+    let suppressed = findings.split_off(open);
+    let counts = without_accepted(counts, &findings);
+    let round = Round {
+        entries: &entries,
+        whole,
+        outcomes: &outcomes,
+        findings: &findings,
+        suppressed: &suppressed,
+        notices: &[],
+    };
+    let notices = notices(&round);
+    let review = notices.iter().filter(|notice| notice.accepted.is_none()).count();
+    let mut findings = told_by_the_first(findings, &facts);
+    findings.extend(notices);
+    // Stable: within a level the order of checks and subjects stays.
+    findings.sort_by_key(|found| found.finding.level);
+    Judged { findings, counts, review, told }
+}
+
+/// One open finding for what the same missing figures leave unknown; accepted ones stand apart, for an entry accepts
+/// one requirement.
+fn told_by_the_first(findings: Vec<Reviewed>, facts: &Facts<'_>) -> Vec<Reviewed> {
+    let (mut kept, open): (Vec<_>, Vec<_>) =
+        findings.into_iter().enumerate().partition(|(_, found)| found.accepted.is_some());
+    let groups = checks::told_together(open.iter().map(|(_, found)| &found.finding));
+    let mut rest: Vec<_> = open.into_iter().map(Some).collect();
+    for group in groups {
+        let mut members = group.into_iter().filter_map(|index| rest.get_mut(index).and_then(Option::take));
+        let Some((place, mut first)) = members.next() else { continue };
+        first.merged = members.map(|(_, other)| other).collect();
+        checks::tell(&mut first.finding, first.merged.iter().map(|other| &other.finding), facts);
+        kept.push((place, first));
+    }
+    kept.sort_by_key(|(place, _)| *place);
+    kept.into_iter().map(|(_, found)| found).collect()
 }
 
 fn reviewed(
     facts: &Facts<'_>,
-    (netlist, sheets): (&Netlist, &Sheets),
+    Given { netlist, sheets, .. }: Given<'_>,
     finding: Finding,
     fingerprint: String,
-    today: &str,
+    entries: &Entries<'_>,
 ) -> Reviewed {
     let (parts, nets) = concern::concerned(facts, &finding);
     let (place, sheet) = concern::place(facts, netlist, finding.subject);
     let also = concern::also(facts, netlist, sheets, &finding);
     let schematic = concern::schematic(facts, netlist, sheets, finding.subject);
     let (subject, about) = concern::named(facts, finding.subject);
-    let mut reviewed =
-        Reviewed { finding, subject, about, fingerprint, accepted: None, parts, nets, sheet, place, schematic, also };
-    reviewed.accepted = accept::accepted(facts.board(), &reviewed, today);
+    let mut reviewed = Reviewed {
+        finding,
+        subject,
+        about,
+        fingerprint,
+        accepted: None,
+        reopened: None,
+        merged: Vec::new(),
+        parts,
+        nets,
+        sheet,
+        place,
+        schematic,
+        also,
+    };
+    entries.apply(&mut reviewed);
     reviewed
 }
 

@@ -15,7 +15,7 @@ const DIGITS: usize = 16;
 /// The fingerprint of each finding: a hash of its check and of what it is about by the names that people gave.
 /// Findings that are alike in all of this are told apart in the order of their symbols' unique ids, which an export
 /// keeps whatever the references are.
-pub(super) fn fingerprints(facts: &Facts<'_>, netlist: &Netlist, findings: &[Finding]) -> Vec<String> {
+pub(super) fn fingerprints(facts: &Facts<'_>, netlist: &Netlist, findings: &[&Finding]) -> Vec<String> {
     let identities: Vec<String> = findings.iter().map(|finding| identity(facts, finding)).collect();
     let mut alike: BTreeMap<&str, Vec<(&str, usize)>> = BTreeMap::new();
     for (index, (finding, identity)) in findings.iter().zip(&identities).enumerate() {
@@ -90,7 +90,7 @@ fn net_word(facts: &Facts<'_>, net: Option<NetId>) -> String {
 }
 
 /// Length-prefixed, so that no two lists of words read alike.
-fn digest(words: &[String]) -> String {
+pub(super) fn digest(words: &[String]) -> String {
     let mut hash = Sha256::new();
     for word in words {
         hash.update(word.len().to_le_bytes());

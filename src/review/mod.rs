@@ -2,10 +2,13 @@
 
 mod accept;
 mod concern;
+mod entries;
 mod examine;
 mod fingerprint;
+mod notice;
 mod settle;
 
-pub use accept::Accepted;
+pub use accept::{Accepted, Reopened};
 pub use examine::{Examination, Reviewed, examine, examine_netlist, examine_with_sheets};
+pub use notice::{REVIEW_CHECKS, ReviewCheck, review_check};
 pub use settle::{Decisive, declare_first};

@@ -10,6 +10,7 @@ use railworthy::checks::{Checks, DefinedNames};
 use railworthy::facts::{DEFINITIONS, SubjectKind, ValueKind};
 use railworthy::knowledge::{Family, FigureKey, Knowledge, Pass, RoleName, Supply, Technology};
 use railworthy::quantity::Dimension;
+use railworthy::review::REVIEW_CHECKS;
 use railworthy::source::{Problem, Source};
 
 use crate::program::run;
@@ -77,6 +78,9 @@ fn check_names() -> String {
         let group = check.group.as_deref().unwrap_or_else(|| panic!("{} is in no group", check.name));
         groups.entry(group).or_default().push(format!("`{}`", check.name));
     }
+    for check in REVIEW_CHECKS {
+        groups.entry(check.group).or_default().push(format!("`{}`", check.name));
+    }
     groups.iter().map(|(group, names)| format!("- {group}: {}\n", names.join(", "))).collect()
 }
 
@@ -87,6 +91,9 @@ fn checks_table() -> String {
         let settings: Vec<String> =
             check.settings_text.iter().map(|(name, value)| format!("`{name} = \"{value}\"`")).collect();
         let _ = writeln!(table, "| `{}` | {} | {} |", check.name, check.asks, settings.join(", "));
+    }
+    for check in REVIEW_CHECKS {
+        let _ = writeln!(table, "| `{}` | {} |  |", check.name, check.asks);
     }
     table
 }

@@ -5,7 +5,7 @@ use super::caution;
 use super::inert::inert;
 use super::layout::{padded, widest, wrapped};
 use super::look::Look;
-use super::text::{counted, plural};
+use super::text::{counted, of_the_review, plural};
 use crate::checks::{Counts, Level};
 
 /// Most boards without a finding that have a line of their own.
@@ -131,7 +131,8 @@ fn told(board: &BoardResult) -> String {
     let regulators = examination.design.regulators.len();
     let parts = counted(examination.counts, examination.accepted);
     let parts = if parts.is_empty() { String::new() } else { format!(": {parts}") };
-    format!("{regulators} regulator{}{parts}", plural(regulators))
+    let review = of_the_review(examination.review);
+    format!("{regulators} regulator{}{parts}{review}", plural(regulators))
 }
 
 /// The counts of all.
@@ -148,6 +149,7 @@ pub(super) fn all_counts(boards: &[BoardResult]) -> String {
         plural(counts.requirements),
         if parts.is_empty() { "" } else { ": " }
     );
+    line.push_str(&of_the_review(all().map(|examination| examination.review).sum()));
     if not_judged > 0 {
         line.push_str(&format!("; {not_judged} part{} not judged", plural(not_judged)));
     }

@@ -203,10 +203,7 @@ fn counts(examination: &Examination) -> String {
     if !parts.is_empty() {
         line.push_str(&format!(": {parts}"));
     }
-    if examination.review > 0 {
-        let count = examination.review;
-        line.push_str(&format!("; {count} finding{} of the review", plural(count)));
-    }
+    line.push_str(&of_the_review(examination.review));
     let not_judged = not_judged(examination);
     if !not_judged.is_empty() {
         line.push_str(&format!("; not judged: {not_judged}"));
@@ -227,6 +224,11 @@ pub(super) fn counted(counts: Counts, accepted: usize) -> String {
     let told = verdicts.into_iter().filter(|(count, ..)| *count > 0);
     let told = told.map(|(count, one, many)| format!("{count} {}", if count == 1 { one } else { many }));
     told.collect::<Vec<_>>().join(", ")
+}
+
+/// What is said behind the counts of requirements of open findings of the review, or nothing.
+pub(super) fn of_the_review(count: usize) -> String {
+    if count == 0 { String::new() } else { format!("; {count} finding{} of the review", plural(count)) }
 }
 
 pub(super) fn plural(count: usize) -> &'static str {

@@ -12,6 +12,7 @@ use railworthy::board::Board;
 use railworthy::checks::{Checks, DefinedNames};
 use railworthy::knowledge::Knowledge;
 use railworthy::{netlist, review};
+use rayon::prelude::*;
 
 const SIZES: [usize; 4] = [300, 1_000, 10_000, 100_000];
 
@@ -30,6 +31,25 @@ fn whole_check(bencher: Bencher<'_, '_>, parts: usize) {
         let examined =
             review::examine("bench.net", text.as_bytes(), Board::default(), &knowledge, &checks, "2026-06-01");
         assert_eq!(black_box(examined.unwrap()).design.regulators.len(), parts / 5);
+    });
+}
+
+/// A repository of boards, one after the other and side by side: the ratio should be near the number of processors.
+#[divan::bench(args = [false, true], sample_count = 5)]
+fn many_boards(bencher: Bencher<'_, '_>, side_by_side: bool) {
+    const BOARDS: usize = 24;
+    let text = board(1_000, Style::E);
+    let knowledge = Knowledge::built_in();
+    let (checks, _) = Checks::load(&knowledge.checks, &DefinedNames);
+    let one = |_| {
+        let examined =
+            review::examine("bench.net", text.as_bytes(), Board::default(), &knowledge, &checks, "2026-06-01");
+        examined.unwrap().findings.len()
+    };
+    bencher.counter(ItemsCount::new(BOARDS)).bench_local(|| {
+        let found: usize =
+            if side_by_side { (0..BOARDS).into_par_iter().map(one).sum() } else { (0..BOARDS).map(one).sum() };
+        assert!(black_box(found) > 0);
     });
 }
 

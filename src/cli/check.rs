@@ -4,7 +4,7 @@ use super::args::{Check, CheckFormat};
 use super::boards::{self, How};
 use super::input::Rules;
 use super::settings::Terminal;
-use super::{Status, Streams, day, streams};
+use super::{Status, Streams, day, output};
 use crate::report::{self, BoardResult, TextOptions};
 
 pub(super) fn run(typed: &Check, terminal: Terminal, to: &mut Streams<'_>) -> Status {
@@ -15,10 +15,10 @@ pub(super) fn run(typed: &Check, terminal: Terminal, to: &mut Streams<'_>) -> St
     let text = writer(typed.format)(&boards, TextOptions { look, quiet: typed.quiet });
     let written = match &typed.output {
         None => to.result(&text),
-        Some(path) => match streams::write_file(path, &text) {
-            Ok(()) => Status::Clean,
-            Err(error) => to.broken(&format!("{} cannot be written: {error}", path.display())),
-        },
+        Some(path) => {
+            let read = output::read_for(&boards, typed.input.board.as_deref());
+            output::write(path, &text, &read, &["toml"], to)
+        }
     };
     if typed.format == CheckFormat::Line && !typed.quiet {
         to.tell(&report::line_summary(&boards));

@@ -3,7 +3,7 @@
 use super::args::Draft;
 use super::input::{self, Rules};
 use super::settings::Terminal;
-use super::{Status, Streams, day, streams};
+use super::{Status, Streams, day, output};
 use crate::knowledge::{Family, built_in_part};
 use crate::recognize::{NoSketch, sketch};
 use crate::report::{self, BoardResult};
@@ -25,10 +25,10 @@ pub(super) fn run(typed: &Draft, terminal: Terminal, to: &mut Streams<'_>) -> St
     let written = match (text, &typed.output) {
         (Err(why), _) => to.broken(&why),
         (Ok(text), None) => to.result(&text),
-        (Ok(text), Some(path)) => match streams::write_file(path, &text) {
-            Ok(()) => Status::Clean,
-            Err(error) => to.broken(&format!("{} cannot be written: {error}", path.display())),
-        },
+        (Ok(text), Some(path)) => {
+            let read = output::read_for([&board], typed.input.board.as_deref());
+            output::write(path, &text, &read, &[], to)
+        }
     };
     written.max(status)
 }

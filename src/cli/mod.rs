@@ -9,6 +9,7 @@ mod draft;
 mod explain;
 mod guard;
 mod input;
+mod output;
 mod rails;
 mod settings;
 mod streams;
@@ -23,6 +24,7 @@ use clap::Parser;
 
 use self::args::{Command, Typed};
 use self::settings::Terminal;
+pub use self::walk::{DEEPEST_FOLDER, MOST_BOARDS, MOST_ENTRIES};
 use crate::report;
 
 /// How a run ended, the least first.

@@ -40,6 +40,12 @@ pub(super) fn write_file(path: &Path, text: &str) -> io::Result<()> {
     moved
 }
 
+/// The one of some files that were read which writing to `path` would replace, under whatever name.
+pub(super) fn replaced<'a>(path: &Path, mut read: impl Iterator<Item = &'a Path>) -> Option<&'a Path> {
+    let target = fs::canonicalize(path).ok()?;
+    read.find(|file| fs::canonicalize(file).is_ok_and(|file| file == target))
+}
+
 fn create_beside(path: &Path) -> io::Result<(PathBuf, fs::File)> {
     let name = path.file_name().ok_or_else(|| io::Error::new(ErrorKind::InvalidInput, "it names no file"))?;
     let mut number = 0;
@@ -77,6 +83,19 @@ mod tests {
         assert!(write_file(folder.path(), "x").is_err());
         assert!(write_file(Path::new(".."), "x").is_err());
         assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 0);
+    }
+
+    #[test]
+    fn a_file_that_was_read_is_known_under_any_name() {
+        let folder = tempfile::tempdir().unwrap();
+        let (board, other) = (folder.path().join("a.net"), folder.path().join("b.json"));
+        fs::write(&board, "").unwrap();
+        let read = || [Path::new("no-such"), board.as_path()].into_iter();
+        let roundabout = folder.path().join("..").join(folder.path().file_name().unwrap()).join("a.net");
+        assert_eq!(replaced(&roundabout, read()), Some(board.as_path()));
+        assert_eq!(replaced(&other, read()), None, "what is not there replaces nothing");
+        fs::write(&other, "").unwrap();
+        assert_eq!(replaced(&other, read()), None);
     }
 
     struct Gone(ErrorKind);

@@ -11,11 +11,11 @@ use crate::netlist::{FIRST_BYTES, begins_export};
 use crate::source::Problem;
 
 /// Deepest folder that is entered, counted from the one that is named.
-pub(super) const DEEPEST_FOLDER: usize = 64;
+pub const DEEPEST_FOLDER: usize = 64;
 /// Most files and folders that are looked at below one that is named.
-pub(super) const MOST_ENTRIES: usize = 1_000_000;
+pub const MOST_ENTRIES: usize = 1_000_000;
 /// Most boards of one run.
-pub(super) const MOST_BOARDS: usize = 20_000;
+pub const MOST_BOARDS: usize = 20_000;
 
 /// The endings of netlist exports; other tools use them too.
 const ENDINGS: [&str; 2] = ["net", "xml"];
@@ -231,8 +231,12 @@ fn has_ending(path: &Path) -> bool {
         .is_some_and(|is| ENDINGS.iter().any(|known| is.eq_ignore_ascii_case(known)))
 }
 
-fn first_bytes(path: &Path) -> io::Result<Vec<u8>> {
+/// The first bytes of a plain file; none of a device or pipe, which may wait.
+pub(super) fn first_bytes(path: &Path) -> io::Result<Vec<u8>> {
     let mut bytes = Vec::new();
+    if !fs::metadata(path)?.is_file() {
+        return Ok(bytes);
+    }
     fs::File::open(path)?.take(FIRST_BYTES as u64).read_to_end(&mut bytes)?;
     Ok(bytes)
 }

@@ -6,6 +6,7 @@ use std::path::Path;
 
 use include_dir::{Dir, include_dir};
 
+use super::disk::{Disk, entries, is_folder};
 use crate::source::toml::Document;
 use crate::source::{Problem, Source};
 
@@ -13,11 +14,6 @@ static PARTS: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/parts");
 static TECHNOLOGIES: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/technologies");
 static SUPPLIES: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/supplies");
 static CHECKS: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/checks");
-
-/// Largest file of a knowledge folder in bytes.
-const LARGEST_FILE: u64 = 4 << 20;
-/// Most files of one folder.
-const MOST_FILES: usize = 4096;
 
 /// The kind of a knowledge file.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
@@ -72,6 +68,7 @@ pub(super) struct Files {
     pub(super) extra: BTreeSet<(Shelf, String)>,
     /// What took the place of an earlier one: path below the folder, path of the new one.
     pub(super) replaced: Vec<(String, String)>,
+    disk: Disk,
 }
 
 impl Files {
@@ -110,14 +107,15 @@ impl Files {
         let mut laid_out = false;
         for (shelf, name, _) in Shelf::ALL {
             let inner = folder.join(name);
-            if inner.is_dir() {
+            if is_folder(&inner, problems) {
                 laid_out = true;
-                for (name, source) in read_files(&inner, problems).into_iter().filter(|(name, _)| is_toml(name)) {
+                for (name, source) in self.disk.files(&inner, problems).into_iter().filter(|(name, _)| is_toml(name))
+                {
                     self.put(shelf, name, source);
                 }
             }
         }
-        if folder.join("checks").is_dir() {
+        if is_folder(&folder.join("checks"), problems) {
             laid_out = true;
             self.add_checks(&folder.join("checks"), problems);
         }
@@ -133,7 +131,7 @@ impl Files {
             return;
         }
         let mut found = self.add_checks(folder, problems);
-        for (name, source) in read_files(folder, problems).into_iter().filter(|(name, _)| is_toml(name)) {
+        for (name, source) in self.disk.files(folder, problems).into_iter().filter(|(name, _)| is_toml(name)) {
             let document = match Document::parse(&source) {
                 Ok(document) => document,
                 Err(problem) => {
@@ -160,7 +158,9 @@ impl Files {
     fn add_checks(&mut self, folder: &Path, problems: &mut Vec<Problem>) -> bool {
         let mut found = false;
         for path in entries(folder, problems).into_iter().filter(|path| path.join("check.toml").is_file()) {
-            self.add_check(&path, problems);
+            if is_folder(&path, problems) {
+                self.add_check(&path, problems);
+            }
             found = true;
         }
         found
@@ -169,7 +169,8 @@ impl Files {
     fn add_check(&mut self, folder: &Path, problems: &mut Vec<Problem>) {
         let full = fs::canonicalize(folder).unwrap_or_else(|_| folder.to_owned());
         let Some(name) = full.file_name().and_then(|name| name.to_str()).map(str::to_owned) else { return };
-        let texts = read_files(folder, problems).into_iter().map(|(name, source)| (name, source.text().to_owned()));
+        let texts =
+            self.disk.files(folder, problems).into_iter().map(|(name, source)| (name, source.text().to_owned()));
         let check = CheckFolder { path: folder.display().to_string(), files: texts.collect() };
         if self.checks.contains_key(&name) {
             self.replaced.push((format!("checks/{name}"), check.path.clone()));
@@ -189,47 +190,4 @@ impl Files {
 
 fn is_toml(name: &str) -> bool {
     Path::new(name).extension().is_some_and(|extension| extension == "toml")
-}
-
-/// The entries of a folder in the order of their names.
-fn entries(folder: &Path, problems: &mut Vec<Problem>) -> Vec<std::path::PathBuf> {
-    let mut paths: Vec<_> = match fs::read_dir(folder) {
-        Ok(list) => list.filter_map(|entry| Some(entry.ok()?.path())).collect(),
-        Err(error) => {
-            let message = format!("the folder `{}` cannot be read: {error}", folder.display());
-            problems.push(Problem::error(message));
-            Vec::new()
-        }
-    };
-    paths.sort();
-    if paths.len() > MOST_FILES {
-        let message = format!("the folder `{}` has more than {MOST_FILES} entries", folder.display());
-        problems.push(Problem::error(message).help("split it"));
-        paths.truncate(MOST_FILES);
-    }
-    paths
-}
-
-/// The text files of a folder with their names; what cannot be read is reported.
-fn read_files(folder: &Path, problems: &mut Vec<Problem>) -> Vec<(String, Source)> {
-    let mut files = Vec::new();
-    for path in entries(folder, problems) {
-        let Some(name) = path.file_name().and_then(|name| name.to_str()) else { continue };
-        let wanted = ["toml", "net", "xml"].iter().any(|known| path.extension().is_some_and(|is| is == *known));
-        if !wanted || !path.is_file() {
-            continue;
-        }
-        if fs::metadata(&path).map_or(0, |data| data.len()) > LARGEST_FILE {
-            let message = format!("the file `{}` is larger than {} MiB", path.display(), LARGEST_FILE >> 20);
-            problems.push(Problem::error(message).help("split it"));
-            continue;
-        }
-        match fs::read_to_string(&path) {
-            Ok(text) => files.push((name.to_owned(), Source::new(path.display().to_string(), text))),
-            Err(error) => {
-                problems.push(Problem::error(format!("the file `{}` cannot be read: {error}", path.display())));
-            }
-        }
-    }
-    files
 }

@@ -3,6 +3,7 @@
 mod amount;
 mod cite;
 mod demand;
+mod disk;
 mod family;
 mod files;
 mod keys;
@@ -15,6 +16,7 @@ mod technology;
 #[cfg(test)]
 mod tests;
 
+pub use disk::{LARGEST_RULE_FILE, LARGEST_RULES, MOST_RULE_FILES};
 pub use files::built_in_part;
 pub use keys::{FigureKey, is_relative};
 pub use lookup::DropoutAt;

@@ -167,6 +167,29 @@ fn the_same_inputs_give_the_same_bytes() {
     }
 }
 
+#[test]
+fn a_result_never_replaces_what_was_read() {
+    let folder = folder_with("a.net", &board("+12V"));
+    fs::write(folder.path().join("a.railworthy.toml"), "[board]\ntitle = \"A\"\n").unwrap();
+    fs::write(folder.path().join("rule.toml"), "").unwrap();
+    fs::write(folder.path().join("other.net"), board("VIN")).unwrap();
+    fs::create_dir(folder.path().join("b")).unwrap();
+    let bytes = |name: &str| fs::read(folder.path().join(name)).unwrap();
+    for file in ["a.net", "b/../a.net", "a.railworthy.toml", "rule.toml", "other.net"] {
+        let before = bytes(file);
+        let refused = run(folder.path(), &["check", "a.net", "--output", file]);
+        assert_eq!((refused.status, bytes(file) == before), (Some(2), true), "{file}");
+        assert!(refused.err.contains("is not replaced, for it"), "{}", refused.err);
+    }
+    let before = bytes("a.net");
+    let refused = run(folder.path(), &["draft", "a.net", "U1", "--output", "a.net"]);
+    assert_eq!((refused.status, bytes("a.net") == before), (Some(2), true), "{}", refused.err);
+    for _ in 0..2 {
+        let written = run(folder.path(), &["check", "a.net", "--output", "a.txt", "--fail-on", "never"]);
+        assert_eq!((written.status, written.err.as_str()), (Some(0), ""), "a result replaces an earlier one");
+    }
+}
+
 /// Names that act on terminals and logs, as others hide them in a netlist.
 pub(crate) const HOSTILE: &[&str] = &[
     "\u{1b}[2J\u{1b}[1;1HAll checks passed\u{1b}]0;owned\u{7}",
@@ -199,13 +222,10 @@ pub(crate) fn assert_inert(text: &str, what: &str) {
 fn names_from_a_file_act_on_nothing() {
     for name in HOSTILE {
         let folder = folder_with("a.net", &board(name));
-        for arguments in [
-            &["check", "a.net"][..],
-            &["check", "a.net", "--format", "json"],
-            &["rails", "a.net"],
-            &["rails", "a.net", "--format", "json"],
-            &["explain", "a.net", "U1"],
-        ] {
+        // What every format of `check` makes of them: `hostile_formats`.
+        for arguments in
+            [&["rails", "a.net"][..], &["rails", "a.net", "--format", "json"], &["explain", "a.net", "U1"]]
+        {
             let run = run(folder.path(), arguments);
             assert_inert(&run.out, &format!("{name:?} {arguments:?}"));
             assert_inert(&run.err, &format!("{name:?} {arguments:?}"));

@@ -5,11 +5,14 @@ use std::fmt::Write;
 use std::fs;
 use std::path::Path;
 
-use railworthy::board::{Board, ModelKind, Options};
+use railworthy::board::{self, Board, ModelKind, Options};
 use railworthy::checks::{Checks, DefinedNames};
+use railworthy::cli;
 use railworthy::facts::{DEFINITIONS, SubjectKind, ValueKind};
-use railworthy::knowledge::{Family, FigureKey, Knowledge, Pass, RoleName, Supply, Technology};
+use railworthy::knowledge::{self, Family, FigureKey, Knowledge, Pass, RoleName, Supply, Technology};
+use railworthy::netlist::limits as netlist;
 use railworthy::quantity::Dimension;
+use railworthy::report;
 use railworthy::review::REVIEW_CHECKS;
 use railworthy::source::{Problem, Source};
 
@@ -120,6 +123,7 @@ fn the_tables_for_developers_are_those_of_the_code() {
             ("other-figures", others),
             ("figures", figures()),
             ("models", models()),
+            ("limits", limits()),
         ],
     );
 }
@@ -159,6 +163,45 @@ fn figures() -> String {
         }
     }
     tables
+}
+
+/// A number with its thousands apart.
+fn grouped(count: usize) -> String {
+    let digits = count.to_string();
+    let groups: Vec<&str> =
+        digits.as_bytes().rchunks(3).rev().map(|group| std::str::from_utf8(group).unwrap()).collect();
+    groups.join(" ")
+}
+
+fn limits() -> String {
+    let size = |bytes: usize| format!("{} MiB", bytes >> 20);
+    let large = |bytes: u64| size(usize::try_from(bytes).unwrap());
+    let rows = [
+        ("netlist", "`netlist::limits::MAX_BYTES`", size(netlist::MAX_BYTES)),
+        ("nesting in a netlist", "`netlist::limits::MAX_DEPTH`", grouped(netlist::MAX_DEPTH)),
+        ("components", "`netlist::limits::MAX_COMPONENTS`", grouped(netlist::MAX_COMPONENTS)),
+        ("library parts", "`netlist::limits::MAX_PARTS`", grouped(netlist::MAX_PARTS)),
+        ("nets", "`netlist::limits::MAX_NETS`", grouped(netlist::MAX_NETS)),
+        ("pins on nets", "`netlist::limits::MAX_NODES`", grouped(netlist::MAX_NODES)),
+        ("texts and lists in one entry", "`netlist::limits::MAX_ITEMS`", grouped(netlist::MAX_ITEMS)),
+        ("fields of a component", "`netlist::limits::MAX_FIELDS`", grouped(netlist::MAX_FIELDS)),
+        ("attributes of an XML element", "`netlist::limits::MAX_ATTRIBUTES`", grouped(netlist::MAX_ATTRIBUTES)),
+        (
+            "errors, and warnings, of a board told one by one",
+            "`netlist::limits::MAX_PROBLEMS`",
+            grouped(netlist::MAX_PROBLEMS),
+        ),
+        ("board file", "`board::LARGEST_FILE`", large(board::LARGEST_FILE)),
+        ("file of a rule folder", "`knowledge::LARGEST_RULE_FILE`", large(knowledge::LARGEST_RULE_FILE)),
+        ("all rule folders of a board", "`knowledge::LARGEST_RULES`", large(knowledge::LARGEST_RULES)),
+        ("entries of one rule folder", "`knowledge::MOST_RULE_FILES`", grouped(knowledge::MOST_RULE_FILES)),
+        ("depth of folders below one that is named", "`cli::DEEPEST_FOLDER`", grouped(cli::DEEPEST_FOLDER)),
+        ("files and folders below one that is named", "`cli::MOST_ENTRIES`", grouped(cli::MOST_ENTRIES)),
+        ("boards below one that is named", "`cli::MOST_BOARDS`", grouped(cli::MOST_BOARDS)),
+        ("characters of a comment in Markdown", "`report::LONGEST_PAGE`", grouped(report::LONGEST_PAGE)),
+    ];
+    let rows = rows.iter().map(|(what, name, most)| format!("| {what} | {most} | {name} |\n"));
+    format!("| of | at most | constant |\n| --- | --- | --- |\n{}", rows.collect::<String>())
 }
 
 fn models() -> String {

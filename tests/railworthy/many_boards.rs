@@ -121,8 +121,27 @@ fn many_boards_are_summed_up_at_the_end() {
     fs::copy(examples().join(board), folder.path().join("hw/a").join(board)).unwrap();
     fs::write(folder.path().join("hw/b/bad.net"), "(export (").unwrap();
     let found = run(folder.path(), &["check", "hw", "--jobs", "2"]);
-    let (_, end) = found.out.split_once("\n6 boards").unwrap();
-    insta::assert_snapshot!(format!("6 boards{end}"));
+    let (_, end) = found.out.split_once("\n6 boards: ").unwrap();
+    let mut lines = end.lines();
+    assert_eq!(lines.next(), Some("1 not judged, 1 with errors, 3 hold, 1 with nothing to ask of"));
+    let value: Value = serde_json::from_str(&json(folder.path(), &["hw"]).out).unwrap();
+    let boards = value["boards"].as_array().unwrap();
+    let states = ["error", "holds", "holds", "not judged", "holds", "nothing asked"];
+    for (board, state) in boards.iter().zip(states) {
+        let line = lines.next().unwrap();
+        let told = match &board["counts"]["regulators"] {
+            _ if board["complete"] == false => "nothing could be read".to_owned(),
+            count => format!("{count} regulators"),
+        };
+        let name = board["netlist"].as_str().unwrap();
+        let start = format!("  {state:13}  {name:20}  {told}");
+        assert!(line.starts_with(&start), "{line} is not {start}");
+    }
+    let sum = |key: &str| boards.iter().map(|board| board["counts"][key].as_u64().unwrap()).sum::<u64>();
+    let total =
+        format!("{} regulators, {} requirements: {} fail", sum("regulators"), sum("requirements"), sum("fails"));
+    assert!(end.contains(&format!("\n\n{total}, ")), "{total}: {end}");
+    assert!(end.trim_end().ends_with("local codes and licensed practice decide."), "{end}");
     assert!(!found.out.contains("hw/a/z.net · "), "a clean board has no section: {}", found.out);
     assert_eq!(found.out.matches("Distance, copper").count(), 1);
     let quiet = run(folder.path(), &["check", "hw", "--quiet"]);

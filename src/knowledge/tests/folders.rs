@@ -3,7 +3,7 @@
 use std::fs;
 use std::path::Path;
 
-use super::super::Knowledge;
+use super::super::{Knowledge, LARGEST_RULE_FILE, MOST_RULE_FILES};
 use super::told;
 
 fn write(folder: &Path, name: &str, text: &str) {
@@ -79,4 +79,52 @@ fn a_folder_that_is_missing_or_empty_is_told() {
     the rules folder `DIR/nowhere` cannot be read (); name a folder that exists
     the rules folder `DIR` holds no rules (); put part files into `parts/`, checks into folders of `checks/`, supplies into `supplies/`, technologies into `technologies/`
     "#);
+}
+
+#[test]
+fn past_a_limit_rules_are_refused_and_told_once() {
+    let folder = tempfile::tempdir().unwrap();
+    let long = "#".repeat(usize::try_from(LARGEST_RULE_FILE).unwrap());
+    write(folder.path(), "parts/0.toml", &format!("{long}#"));
+    for number in 1..=18 {
+        write(folder.path(), &format!("parts/{number:02}.toml"), &long);
+    }
+    let (_, problems) = Knowledge::load(&[folder.path().to_owned()]);
+    let told = messages(folder.path(), &problems);
+    let with = |words: &str| told.iter().filter(|message| message.contains(words)).count();
+    assert_eq!(with("`DIR/parts/0.toml` is larger than 4 MiB"), 1, "{told:?}");
+    assert_eq!(with("more than 64 MiB; `DIR/parts/17.toml` and what is behind it is not read"), 1, "{told:?}");
+}
+
+#[test]
+fn a_folder_of_too_many_files_is_refused_whole() {
+    let folder = tempfile::tempdir().unwrap();
+    let parts = folder.path().join("parts");
+    fs::create_dir(&parts).unwrap();
+    for number in 0..=MOST_RULE_FILES {
+        fs::File::create(parts.join(format!("{number}.txt"))).unwrap();
+    }
+    let (_, problems) = Knowledge::load(&[folder.path().to_owned()]);
+    assert!(messages(folder.path(), &problems)[0].contains("`DIR/parts` has more than 4096 entries"));
+}
+
+#[cfg(unix)]
+#[test]
+fn links_and_pipes_in_a_rules_folder_are_refused_and_told() {
+    use std::os::unix::fs::symlink;
+    let (folder, outside) = (tempfile::tempdir().unwrap(), tempfile::tempdir().unwrap());
+    write(outside.path(), "a.toml", &part("House A", "\"HOUSE-A\""));
+    write(outside.path(), "check/check.toml", "");
+    write(folder.path(), "parts/b.toml", &part("House B", "\"HOUSE-B\""));
+    symlink(outside.path().join("a.toml"), folder.path().join("parts/a.toml")).unwrap();
+    symlink(outside.path(), folder.path().join("checks")).unwrap();
+    let made = std::process::Command::new("mkfifo").arg(folder.path().join("parts/p.toml")).status();
+    let (knowledge, problems) = Knowledge::load(&[folder.path().to_owned()]);
+    let told = messages(folder.path(), &problems);
+    assert!(told.iter().any(|message| message.contains("`DIR/parts/a.toml` is a symbolic link, not a plain file")));
+    assert!(told.iter().any(|message| message.contains("`DIR/checks` is a symbolic link, not a plain folder")));
+    if made.is_ok_and(|status| status.success()) {
+        assert!(told.iter().any(|message| message.contains("`DIR/parts/p.toml` is a device, pipe or socket")));
+    }
+    assert!(knowledge.family("House B").is_some() && knowledge.family("House A").is_none());
 }

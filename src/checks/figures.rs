@@ -43,4 +43,14 @@ impl Figures for Facts<'_> {
             Subject::Board => String::new(),
         }
     }
+    fn likeness(&self, subject: Subject) -> String {
+        let circuit = self.circuit();
+        match subject {
+            Subject::Capacitor { device, net } => {
+                let part = circuit.device(device);
+                [part.value.as_str(), &part.part, &circuit.net(net).name].join("\n")
+            }
+            Subject::Regulator(_) | Subject::Net(_) | Subject::Board => String::new(),
+        }
+    }
 }

@@ -39,10 +39,16 @@ fn nets_where(circuit: &Circuit, test: impl Fn(&str) -> bool) -> BTreeSet<NetId>
     circuit.nets().filter(|net| test(&circuit.net(*net).name)).collect()
 }
 
+/// Whether the editor made a net's name, of a part's reference and pin or of the net's code: it changes with them.
+#[must_use]
+pub fn is_made_up(name: &str) -> bool {
+    ["Net-(", "unconnected-(", "net "].iter().any(|start| name.trim_start_matches('/').starts_with(start))
+}
+
 /// The last part of a sheet path. Names that were made from a pin (`Net-(U1-GND)`) say how that pin is called, not what
 /// the net is.
 fn own_name(name: &str) -> Option<&str> {
-    let made = ["Net-(", "unconnected-(", "net "].iter().any(|start| name.trim_start_matches('/').starts_with(start));
+    let made = is_made_up(name);
     if made { None } else { name.rsplit('/').find(|part| !part.is_empty()) }
 }
 

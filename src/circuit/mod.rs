@@ -11,6 +11,7 @@ mod pins;
 mod supply_name;
 mod value;
 
+pub use ground::is_made_up;
 pub use model::{
     Circuit, ComponentValue, Device, DeviceId, DeviceKind, Fitted, Net, NetId, Pin, PinType, Polarity, Reading,
 };

@@ -12,6 +12,8 @@
 //! - A single 1 or 2 behind a `V` numbers supplies of one voltage from 5 V up: `12V1` and `12V2` are 12 V.
 //! - Alternating voltages and mains are no supplies of this kind, nor is 0 V.
 
+use super::ground::is_made_up;
+
 /// What a net's name states about its voltage.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct SupplyName {
@@ -57,7 +59,7 @@ const NEVER_BEHIND: &[&str] = &[
 /// The voltage that a net's name states, by the rules of this file.
 #[must_use]
 pub fn supply_name(name: &str) -> Option<SupplyName> {
-    let made = ["Net-(", "unconnected-(", "net "].iter().any(|start| name.trim_start_matches('/').starts_with(start));
+    let made = is_made_up(name);
     let own = name.rsplit('/').find(|part| !part.is_empty())?.trim().to_uppercase();
     if made || own.contains('{') || !own.is_ascii() {
         return None;

@@ -171,8 +171,12 @@ impl<'a> Builder<'a> {
                 "description" => component.description = self.value(form, place),
                 "libsource" => self.library_source(&mut component, form, place),
                 "sheetpath" => {
-                    if let Some(names) = form.lists().find(|inner| inner.head == "names") {
-                        component.sheet = self.value(names, place);
+                    for inner in form.lists() {
+                        match inner.head.as_str() {
+                            "names" => component.sheet = self.value(inner, place),
+                            "tstamps" => component.sheet_ids = self.value(inner, place),
+                            _ => {}
+                        }
                     }
                 }
                 "tstamp" | "tstamps" => form.words_into(&mut component.ids),

@@ -58,6 +58,8 @@ pub struct Component {
     pub sheet: String,
     /// Schematic file of its sheet as the export names it, or empty.
     pub sheet_file: String,
+    /// Unique ids of the sheets down to its own, as written, or empty.
+    pub sheet_ids: String,
     /// Unique ids of its symbol (one a unit), as written.
     pub ids: Vec<String>,
     /// The whole `(comp …)` or `<comp>`.

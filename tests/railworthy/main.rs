@@ -13,6 +13,7 @@ mod devices_symbols;
 mod documents;
 mod draft;
 mod failures;
+mod fingerprints;
 mod hostile_formats;
 mod house_rules;
 mod judge;

@@ -78,9 +78,10 @@ impl Requirement {
     #[must_use]
     pub fn evaluate(&self, context: Context<'_>) -> Answer {
         let Some(each) = &self.each else { return self.condition.evaluate(context) };
-        let Value::Group(members) = context.figures.value(context.subject, &each.group) else {
+        let Value::Group(mut members) = context.figures.value(context.subject, &each.group) else {
             return Answer::NotAsked;
         };
+        members.sort_by_cached_key(|member| context.figures.likeness(*member));
         let answers = members.into_iter().map(|member| {
             let mut answer = self.condition.evaluate(Context { member: Some(member), ..context });
             if let Answer::Judged(judged) = &mut answer {

@@ -18,6 +18,10 @@ pub trait Figures {
 
     /// How a message names a subject: its reference or net.
     fn label(&self, subject: Subject) -> String;
+
+    /// What a member of a group is like, whatever the numbers of parts are: of members that do equally badly the first
+    /// by this is told.
+    fn likeness(&self, subject: Subject) -> String;
 }
 
 impl Names for &[(SubjectKind, &str, ValueKind)] {

@@ -102,6 +102,10 @@ impl Figures for Board {
             other => format!("{other:?}"),
         }
     }
+
+    fn likeness(&self, _: Subject) -> String {
+        String::new()
+    }
 }
 
 /// A fact `low .. high`; its key is `what`.

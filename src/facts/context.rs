@@ -5,7 +5,7 @@ use std::collections::{BTreeSet, HashMap};
 use std::ops::Deref;
 use std::rc::Rc;
 
-use super::flow::{self, Flow, Rail, Rails};
+use super::flow::{self, Drawn, Flow, Rail, Rails};
 use super::{Subject, SubjectKind, Value, definition};
 use crate::board::Board;
 use crate::circuit::{Circuit, Device, DeviceId, NetId};
@@ -33,7 +33,8 @@ pub struct Facts<'a> {
     flow: OnceCell<Flow>,
     rails: OnceCell<Rails>,
     loads: OnceCell<HashMap<NetId, Vec<Quantity>>>,
-    draws: RefCell<HashMap<NetId, Quantity>>,
+    draws: RefCell<HashMap<(NetId, Drawn), Quantity>>,
+    cycles: OnceCell<Vec<Vec<RegulatorId>>>,
     // Never gone through in order: only looked up.
     values: RefCell<HashMap<(Subject, &'static str), Value>>,
     banks: RefCell<HashMap<BankKey, Rc<KnownBank>>>,
@@ -86,6 +87,7 @@ impl<'a> Facts<'a> {
             rails: OnceCell::new(),
             loads: OnceCell::new(),
             draws: RefCell::new(HashMap::new()),
+            cycles: OnceCell::new(),
             values: RefCell::new(HashMap::new()),
             banks: RefCell::new(HashMap::new()),
             totals: RefCell::new(HashMap::new()),
@@ -178,13 +180,18 @@ impl<'a> Facts<'a> {
     }
 
     /// What is drawn from a net, summed once.
-    pub(super) fn draw_once(&self, net: NetId, sum: impl FnOnce() -> Quantity) -> Quantity {
-        if let Some(known) = self.draws.borrow().get(&net) {
+    pub(super) fn draw_once(&self, key: (NetId, Drawn), sum: impl FnOnce() -> Quantity) -> Quantity {
+        if let Some(known) = self.draws.borrow().get(&key) {
             return known.clone();
         }
         let drawn = sum();
-        self.draws.borrow_mut().insert(net, drawn.clone());
+        self.draws.borrow_mut().insert(key, drawn.clone());
         drawn
+    }
+
+    /// Circles of regulators that wait for each other.
+    pub(super) fn start_cycles(&self) -> &[Vec<RegulatorId>] {
+        self.cycles.get_or_init(|| self.find_start_cycles())
     }
 
     /// The voltages of the supply nets.
@@ -254,6 +261,11 @@ impl<'a> Facts<'a> {
     pub(super) fn in_part(&self, device: DeviceId) -> impl Iterator<Item = &'a Regulator> + use<'_, 'a> {
         let found = self.index().by_device.get(&device).map_or(&[][..], Vec::as_slice);
         found.iter().filter_map(|at| self.design.regulators.get(*at))
+    }
+
+    /// The same as ids.
+    pub(super) fn ids_in_part(&self, device: DeviceId) -> impl Iterator<Item = RegulatorId> + use<'_, 'a> {
+        self.index().by_device.get(&device).map_or(&[][..], Vec::as_slice).iter().map(|at| RegulatorId(*at))
     }
 
     /// The capacitors at a regulator's input or output, to ground or to the net of its ground pin.

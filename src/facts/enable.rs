@@ -7,10 +7,15 @@ use super::{Definition, Facts, RailOrigin, Subject, SubjectKind, Value, ValueKin
 use crate::circuit::{DeviceId, DeviceKind, NetId, PinType};
 use crate::knowledge::{Active, Cited, EnableSpec, OpenEnable, Sign};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Slope};
-use crate::recognize::{EnablePin, Regulator};
+use crate::recognize::{EnablePin, Regulator, RegulatorId};
 
 /// Enable threshold of a part whose sheet is not known, volts: low, nominal, high (common practice: logic levels).
 const THRESHOLD: (f64, f64, f64) = (0.4, 1.2, 2.0);
+
+/// To what an open-collector or power-good output pulls, volts: low, nominal, high (common practice: at most 0.4 V).
+const LOW_LEVEL: (f64, f64, f64) = (0.0, 0.4, 0.4);
+/// No such output is at more volts when it is low.
+const LOW_LIMIT: f64 = 0.8;
 
 const HERE: &str = file!();
 
@@ -35,11 +40,29 @@ pub(super) const DEFINITIONS: &[Definition] = &[
                 Drive::Level(level) if regulator.polarity == Sign::Negative => Value::Figure(level.magnitude()),
                 Drive::Level(level) => Value::Figure(level.clone()),
                 Drive::Open => Value::inapplicable("the enable input is open"),
+                Drive::PulledDownOnly => Value::inapplicable("nothing pulls the enable input up"),
                 Drive::OwnOutput => Value::inapplicable("the enable input hangs on the part's own output"),
                 Drive::Elsewhere(by) => Value::inapplicable(format!("the enable input is driven by {by}")),
             })
         },
     },
+    flag(
+        "enable_lacks_pull_up",
+        "nothing but outputs that only pull down drive the enable input",
+        |facts, subject| {
+            with_enable(facts, subject, |_, _, drive| Value::flag(matches!(drive, Drive::PulledDownOnly)))
+        },
+    ),
+    threshold(
+        "enable_low_voltage",
+        "the level to which an open-collector or power-good output pulls the enable input",
+        |facts, subject| {
+            with_enable(facts, subject, |regulator, pin, _| match facts.pulled_down_by(regulator, pin).first() {
+                Some((device, _)) => Value::Figure(facts.low_level(*device)),
+                None => Value::inapplicable("no open-collector output drives it"),
+            })
+        },
+    ),
     threshold("enable_on", "the level at which the part is certainly on", |facts, subject| {
         with_enable(facts, subject, |regulator, _, _| {
             Value::Figure(facts.threshold(regulator, |spec| spec.on.as_ref()))
@@ -106,6 +129,8 @@ enum Drive {
     OwnOutput,
     /// Rails and resistors: the level in volts.
     Level(Quantity),
+    /// Outputs that only pull down, with nothing that pulls up.
+    PulledDownOnly,
     /// Something that a netlist does not tell the level of.
     Elsewhere(String),
 }
@@ -139,6 +164,7 @@ impl Facts<'_> {
             return Drive::Level(self.own_input(regulator, rail.voltage));
         }
         match self.pulls(regulator, net) {
+            Ok(pulls) if pulls.is_empty() && !self.pulled_down_by(regulator, pin).is_empty() => Drive::PulledDownOnly,
             Ok(pulls) => self.pulled(regulator, &pulls),
             Err(by) => Drive::Elsewhere(by),
         }
@@ -171,13 +197,62 @@ impl Facts<'_> {
                 }
                 _ => {
                     let listens = part.pins.get(pin).is_some_and(|pin| pin.kind == PinType::Input);
-                    if !listens {
+                    if !listens && !self.pulls_down(device, pin) {
                         return Err(part.reference.clone());
                     }
                 }
             }
         }
         Ok(pulls)
+    }
+
+    /// Whether a pin can only pull down: the power-good output of a regulator, an open collector or drain.
+    fn pulls_down(&self, device: DeviceId, pin: usize) -> bool {
+        let open = self.circuit().device(device).pins.get(pin).map(|pin| pin.kind) == Some(PinType::OpenCollector);
+        open || self.in_part(device).any(|regulator| regulator.roles.power_good.contains(&pin))
+    }
+
+    /// The outputs that pull an enable input down, each with its pin.
+    fn pulled_down_by(&self, regulator: &Regulator, pin: &EnablePin) -> Vec<(DeviceId, usize)> {
+        let net = self.circuit().net_of(regulator.device, pin.pin);
+        let pins = net.into_iter().flat_map(|net| self.circuit().fitted_on(net));
+        pins.filter(|(device, pin)| *device != regulator.device && self.pulls_down(*device, *pin)).collect()
+    }
+
+    /// To what an open-collector output pulls: sheets give at most 0.4 V (common practice).
+    fn low_level(&self, device: DeviceId) -> Quantity {
+        let (low, nominal, high) = LOW_LEVEL;
+        let reference = &self.circuit().device(device).reference;
+        let evidence =
+            Evidence::new(Grade::Assumed, format!("low level of {reference}"), "usual for open collectors");
+        let limits = Pair::new(0.0, LOW_LIMIT);
+        Quantity::given(Dimension::VOLTAGE, Range::clamped(low, nominal, high), limits, evidence)
+    }
+
+    /// The regulators whose output or power-good pin switches this one on, and nothing else does.
+    pub(super) fn enabled_by(&self, regulator: &Regulator) -> BTreeSet<RegulatorId> {
+        let pins = &regulator.roles.enable;
+        let pin = pins.get(regulator.output_index).or_else(|| pins.first()).filter(|pin| !pin.active_low);
+        let Some((pin, net)) = pin.and_then(|pin| Some((pin, self.circuit().net_of(regulator.device, pin.pin)?)))
+        else {
+            return BTreeSet::new();
+        };
+        let down = self.pulled_down_by(regulator, pin);
+        let good = down.iter().flat_map(|(device, pin)| {
+            let good = self.in_part(*device).any(|regulator| regulator.roles.power_good.contains(pin));
+            self.ids_in_part(*device).filter(move |_| good)
+        });
+        let mut found: BTreeSet<RegulatorId> = good.collect();
+        if self.rail(net).origin != RailOrigin::Unknown {
+            found.extend(self.made_by(net));
+        } else if let Ok(pulls) = self.pulls(regulator, net) {
+            let rails: BTreeSet<NetId> =
+                pulls.iter().map(|(_, far)| *far).filter(|far| !self.circuit().net(*far).ground).collect();
+            if let (Some(only), 1) = (rails.first(), rails.len()) {
+                found.extend(self.made_by(*only));
+            }
+        }
+        found
     }
 
     fn is_enable_of_another(&self, device: DeviceId, pin: usize) -> bool {

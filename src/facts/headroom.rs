@@ -7,6 +7,9 @@ use crate::knowledge::Sign;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Settle, Slope, Table};
 use crate::recognize::{Regulator, RegulatorKind};
 
+/// By how much of its nominal value the input is moved.
+const LINE_STEP: f64 = 0.1;
+
 pub(super) const DEFINITIONS: &[Definition] = &[
     volts("input_voltage", "the input against ground, signed", |facts, subject| {
         of(facts, subject, |regulator| Value::Figure(facts.input_voltage(regulator)))
@@ -22,6 +25,24 @@ pub(super) const DEFINITIONS: &[Definition] = &[
     volts("highest_headroom", "what is left at the highest input above the lowest set point", |facts, subject| {
         series(facts, subject, |regulator| Value::Figure(facts.highest_headroom(regulator)))
     }),
+    volts(
+        "line_headroom",
+        "what is left above the regulated output when the input lies a tenth below its nominal, within its range",
+        |facts, subject| series(facts, subject, |regulator| Value::Figure(facts.line_headroom(regulator))),
+    ),
+    Definition {
+        name: "rail_may_sag",
+        of: SubjectKind::Regulator,
+        kind: ValueKind::Flag,
+        meaning: "the output net is declared as one that may fall with its input",
+        defined_in: file!(),
+        compute: |facts, subject| {
+            series(facts, subject, |regulator| {
+                let rail = facts.output_name(regulator).and_then(|name| facts.board().rail(&name));
+                Value::flag(rail.is_some_and(|rail| rail.may_sag.as_ref().is_some_and(|may| may.value)))
+            })
+        },
+    },
     volts("lowest_input", "the lowest input magnitude at which the part works at all", |facts, subject| {
         series(facts, subject, |regulator| match facts.lowest_input(regulator) {
             Some(lowest) => Value::Figure(lowest),
@@ -75,6 +96,18 @@ impl Facts<'_> {
     fn highest_headroom(&self, regulator: &Regulator) -> Quantity {
         let input = self.input_magnitude(regulator).at_high();
         input.minus(&self.output_voltage(regulator).magnitude().at_low())
+    }
+
+    /// The input moves by a tenth of its nominal value, but not out of what is declared for it.
+    fn line_headroom(&self, regulator: &Regulator) -> Quantity {
+        let input = self.input_magnitude(regulator);
+        let held = self.steady_output(regulator);
+        let Some(nominal) = input.nominal() else { return input };
+        let inputs = [(&input, Slope::Rising), (&held, Slope::Falling)];
+        Quantity::monotone(Dimension::VOLTAGE, &inputs, |v| match v {
+            [input, held] => input.max(nominal * (1.0 - LINE_STEP)) - held,
+            _ => f64::NAN,
+        })
     }
 
     fn lowest_input(&self, regulator: &Regulator) -> Option<Quantity> {

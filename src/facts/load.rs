@@ -1,6 +1,7 @@
 //! What is drawn from an output.
 
 use super::family_figure::Ask;
+use super::flow::Drawn;
 use super::identity::of;
 use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Table};
@@ -39,7 +40,7 @@ impl Facts<'_> {
     /// The load: what is declared for the output net and for the nets behind series elements, with what regulators
     /// there draw; else a guess from nothing to the part's rating.
     pub(super) fn load(&self, regulator: &Regulator) -> Quantity {
-        let declared = regulator.output_net.and_then(|net| self.declared_draw(net, regulator.input_net));
+        let declared = regulator.output_net.and_then(|net| self.declared_draw(net, regulator.input_net, Drawn::Peak));
         declared.unwrap_or_else(|| self.guessed_load(regulator))
     }
 

@@ -15,6 +15,7 @@ mod esr;
 mod family_figure;
 mod flow;
 mod headroom;
+mod heat;
 mod identity;
 mod load;
 mod net;
@@ -22,6 +23,9 @@ mod open_pins;
 mod output;
 mod pins;
 mod programmed;
+mod protection;
+mod ratings;
+mod sequence;
 mod sheet;
 mod shunt;
 mod startup;
@@ -32,6 +36,7 @@ mod value;
 pub use context::Facts;
 pub use definition::{Definition, ValueKind};
 pub use flow::{Flow, Link, Rail, RailOrigin, Reservoir};
+pub use ratings::overshoot;
 pub use sheet::{SHEET, SheetFigure, lacking};
 pub use value::{Flag, Subject, SubjectKind, Value, Word};
 
@@ -53,6 +58,10 @@ pub const DEFINITIONS: &[&[Definition]] = &[
     startup::DEFINITIONS,
     pins::DEFINITIONS,
     open_pins::DEFINITIONS,
+    heat::DEFINITIONS,
+    ratings::DEFINITIONS,
+    protection::DEFINITIONS,
+    sequence::DEFINITIONS,
 ];
 
 /// The definition of a name for a kind of subject.

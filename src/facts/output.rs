@@ -256,8 +256,7 @@ impl Facts<'_> {
     /// The magnitude that the output must hold: a rail that may sag must hold its low end, a fact; else nobody says
     /// how far below its set point it may fall, and the tolerance's high end as a fact would make false errors.
     fn held_output(&self, regulator: &Regulator) -> Quantity {
-        let output = self.output_voltage(regulator).magnitude();
-        let Some(name) = self.output_name(regulator) else { return output };
+        let Some(name) = self.output_name(regulator) else { return self.output_voltage(regulator).magnitude() };
         if let Some(rail) = self.board().rail(&name) {
             let sags = rail.may_sag.as_ref().is_some_and(|may| may.value);
             if let Some(voltage) = rail.voltage.as_ref().filter(|_| sags) {
@@ -266,6 +265,13 @@ impl Facts<'_> {
                 return Quantity::fact(Dimension::VOLTAGE, Range::exactly(low), evidence);
             }
         }
+        self.steady_output(regulator)
+    }
+
+    /// The magnitude of the output that regulates: its nominal value, where within its tolerance is a guess.
+    pub(super) fn steady_output(&self, regulator: &Regulator) -> Quantity {
+        let output = self.output_voltage(regulator).magnitude();
+        let Some(name) = self.output_name(regulator) else { return output };
         let Some(shown) = output.shown() else { return output };
         let range = Range::clamped(shown.nominal(), shown.nominal(), shown.high());
         let settle = Settle::new(Table::Rail, &name, "may_sag", "true");

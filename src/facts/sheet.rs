@@ -37,15 +37,19 @@ const INPUT_MINIMUM: &[&str] = &["minimum_input_capacitance", "input_capacitor_k
 /// Every key of a part file that figures rest on, or that a data sheet should be asked for.
 pub const SHEET: &[SheetFigure] = &[
     plain("rated_current", "A", About::NoShunt, &["rated_current", "load", "dropout"]),
-    plain("input_max", "V", About::NoShunt, &[]),
+    plain("input_max", "V", About::NoShunt, &["input_limit"]),
+    plain("difference_max", "V", About::NoShunt, &["difference_limit"]),
     plain("input_min", "V", About::NoShunt, &["lowest_input"]),
     plain("tolerance", "%", About::Fixed, OUTPUT),
     plain("reference", "V", About::Adjusted, &["reference", "set_point", "set_point_nominal", "output_voltage"]),
     plain("adjust_current", "A", About::Adjusted, &["set_point", "set_point_nominal", "output_voltage"]),
     plain("set_current", "A", About::SetByCurrent, &["set_point", "set_point_nominal", "output_voltage"]),
     plain("minimum_load", "A", About::Adjusted, &[]),
-    plain("ground_current", "A", About::NoShunt, &[]),
-    plain("junction_max", "°C", About::Any, &[]),
+    plain("ground_current", "A", About::NoShunt, &["dissipation"]),
+    plain("junction_max", "°C", About::NoShunt, &["junction_limit"]),
+    plain("short_circuit_current", "A", About::Series, &["start_current"]),
+    plain("diode_above_output", "V", About::Series, &["harmless_output"]),
+    plain("diode_above_capacitance", "F", About::Series, &["harmless_capacitance"]),
     plain("bias_min", "A", About::Shunt, &["bias_minimum"]),
     plain("bias_max", "A", About::Shunt, &["bias_maximum"]),
     SheetFigure {
@@ -101,7 +105,7 @@ pub const SHEET: &[SheetFigure] = &[
         key: "junction_to_ambient",
         unit: "C/W",
         meaning: "junction to ambient on the sheet's board",
-        used_by: &[],
+        used_by: &["thermal_resistance", "junction_temperature"],
         about: About::Any,
     },
 ];

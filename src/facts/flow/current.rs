@@ -15,6 +15,19 @@ const NAMED_LOADS: usize = 12;
 /// What a switching converter gives of what it takes (common practice: low, nominal, high).
 const EFFICIENCY: (f64, f64, f64) = (0.65, 0.85, 0.95);
 
+/// Which current of a load is meant.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+pub(in crate::facts) enum Drawn {
+    /// Idle to peak; the nominal is the peak.
+    Peak,
+    /// What flows for so long that it heats.
+    Continuous,
+}
+
+/// The part of its rating that an undeclared load is taken to draw for long, and at most: more would make every part of
+/// a board without declarations too hot.
+const USUAL_CONTINUOUS: (f64, f64) = (0.1, 0.3);
+
 /// A net on the way from a net whose current is asked to its loads.
 struct Step {
     net: NetId,
@@ -41,12 +54,16 @@ impl Facts<'_> {
     /// that it feeds; with the regulators' own currents.
     #[must_use]
     pub fn draw(&self, net: NetId) -> Quantity {
-        self.draw_once(net, || {
-            let hanging = self.hanging(net, None);
+        self.drawn(net, Drawn::Peak)
+    }
+
+    pub(super) fn drawn(&self, net: NetId, drawn: Drawn) -> Quantity {
+        self.draw_once((net, drawn), || {
+            let hanging = self.hanging(net, None, drawn);
             let loads: Vec<Quantity> = if hanging.declared {
                 hanging.loads
             } else {
-                hanging.near.iter().map(|regulator| self.load(regulator)).collect()
+                hanging.near.iter().map(|regulator| self.load_of(regulator, drawn)).collect()
             };
             let sum = self.sum(&loads, net);
             let own = if hanging.declared {
@@ -65,12 +82,17 @@ impl Facts<'_> {
     /// The declared loads on a net, on the nets behind its series elements, and behind the regulators that these feed.
     /// `None` where neither the net nor one behind a series element has a declared load. What hangs on `upstream` is
     /// not drawn from the net.
-    pub(in crate::facts) fn declared_draw(&self, net: NetId, upstream: Option<NetId>) -> Option<Quantity> {
+    pub(in crate::facts) fn declared_draw(
+        &self,
+        net: NetId,
+        upstream: Option<NetId>,
+        drawn: Drawn,
+    ) -> Option<Quantity> {
         // Boards without declared loads need no walk at all.
         if self.declares_no_load() {
             return None;
         }
-        let hanging = self.hanging(net, upstream);
+        let hanging = self.hanging(net, upstream, drawn);
         hanging.declared.then(|| {
             let sum = self.sum(&hanging.loads, net);
             match self.own_currents(&hanging.all, net) {
@@ -85,13 +107,13 @@ impl Facts<'_> {
     }
 
     /// Walks from a net to everything that it feeds.
-    fn hanging(&self, net: NetId, upstream: Option<NetId>) -> Hanging<'_> {
+    fn hanging(&self, net: NetId, upstream: Option<NetId>, drawn: Drawn) -> Hanging<'_> {
         let nothing_declared = self.declares_no_load();
         let mut seen: HashSet<NetId> = upstream.into_iter().chain([net]).collect();
         let mut stack = vec![Step { net, near: true, share: None }];
         let mut hanging = Hanging::default();
         while let Some(step) = stack.pop() {
-            for load in self.loads_on(step.net) {
+            for load in self.loads_on(step.net, drawn) {
                 hanging.declared |= step.near;
                 hanging.loads.push(shared(load, step.share.as_ref()));
             }
@@ -116,6 +138,47 @@ impl Facts<'_> {
             }
         }
         hanging
+    }
+
+    fn load_of(&self, regulator: &Regulator, drawn: Drawn) -> Quantity {
+        match drawn {
+            Drawn::Peak => self.load(regulator),
+            Drawn::Continuous => self.continuous_load(regulator),
+        }
+    }
+
+    /// The load that heats a regulator: what is declared as continuous; between idle and peak where that is not
+    /// declared; a guess from nothing to the rating where no load is.
+    pub(in crate::facts) fn continuous_load(&self, regulator: &Regulator) -> Quantity {
+        let net = regulator.output_net;
+        let declared = net.and_then(|net| self.declared_draw(net, regulator.input_net, Drawn::Continuous));
+        declared.unwrap_or_else(|| {
+            let guessed = self.load(regulator);
+            let Some(range) = guessed.shown() else { return guessed };
+            let name = net.map_or("", |net| self.circuit().net(net).name.as_str());
+            let evidence = Evidence::new(Grade::Assumed, format!("continuous load on {name}"), "no load declared")
+                .settled_by(Settle::new(Table::Load, name, "continuous", "60 mA"));
+            let range = Range::clamped(0.0, range.high() * USUAL_CONTINUOUS.0, range.high() * USUAL_CONTINUOUS.1);
+            Quantity::given(Dimension::CURRENT, range, Pair::NOT_NEGATIVE, evidence)
+        })
+    }
+
+    /// What a declared load draws for long: declared, else somewhere between its idle and its peak current.
+    fn declared_continuous(&self, net: &str) -> Option<Quantity> {
+        let load = self.board().load(net)?;
+        let what = format!("continuous load on {net}");
+        if let Some(continuous) = &load.continuous {
+            return Some(continuous.quantity(Dimension::CURRENT, what));
+        }
+        let current = load.current.as_ref()?.value;
+        if current.is_exact() {
+            return self.declared_load(net);
+        }
+        let evidence = Evidence::new(Grade::Assumed, what, "between idle and peak, not declared")
+            .settled_by(Settle::new(Table::Load, net, "continuous", "60 mA"));
+        let middle = f64::midpoint(current.low(), current.high());
+        let range = Range::clamped(current.low(), middle, current.high());
+        Some(Quantity::given(Dimension::CURRENT, range, Pair::new(current.low(), current.high()), evidence))
     }
 
     fn linked(&self, link: Link) -> Option<&Regulator> {
@@ -149,9 +212,13 @@ impl Facts<'_> {
     }
 
     /// What is declared to be drawn from a net itself: in the board file, else by fields on its parts.
-    fn loads_on(&self, net: NetId) -> Vec<Quantity> {
+    fn loads_on(&self, net: NetId, drawn: Drawn) -> Vec<Quantity> {
         let name = &self.circuit().net(net).name;
-        if let Some(load) = self.declared_load(name) {
+        let declared = match drawn {
+            Drawn::Peak => self.declared_load(name),
+            Drawn::Continuous => self.declared_continuous(name),
+        };
+        if let Some(load) = declared {
             return vec![load];
         }
         self.field_loads().get(&net).cloned().unwrap_or_default()
@@ -196,7 +263,7 @@ impl Facts<'_> {
     }
 
     /// What a regulator takes for itself, from light to full load.
-    fn own_current(&self, regulator: &Regulator) -> Option<Quantity> {
+    pub(in crate::facts) fn own_current(&self, regulator: &Regulator) -> Option<Quantity> {
         let ask = |key| {
             let noun = "ground current";
             let (dimension, limits) = (Dimension::CURRENT, Pair::NOT_NEGATIVE);

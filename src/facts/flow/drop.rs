@@ -1,5 +1,6 @@
 //! What series elements of a supply line take.
 
+use super::current::Drawn;
 use super::element::Element;
 use crate::circuit::{DeviceId, NetId};
 use crate::facts::Facts;
@@ -43,13 +44,19 @@ impl Forward {
 
 impl Facts<'_> {
     /// What an element takes on the way to a net; `None` for a link.
-    pub(super) fn series_drop(&self, device: DeviceId, element: Element, to: NetId) -> Option<Quantity> {
+    pub(super) fn series_drop(
+        &self,
+        device: DeviceId,
+        element: Element,
+        to: NetId,
+        drawn: Drawn,
+    ) -> Option<Quantity> {
         Some(match element {
             Element::Link => return None,
-            Element::Resistor => self.resistance(device).times(&self.draw(to)),
-            Element::Bead => self.bead(device).times(&self.draw(to)),
+            Element::Resistor => self.resistance(device).times(&self.drawn(to, drawn)),
+            Element::Bead => self.bead(device).times(&self.drawn(to, drawn)),
             Element::Diode { schottky } => {
-                self.forward_drop(device, if schottky { SCHOTTKY } else { SILICON }, &self.draw(to))
+                self.forward_drop(device, if schottky { SCHOTTKY } else { SILICON }, &self.drawn(to, drawn))
             }
             Element::Transistor => self.usual_drop(device, TRANSISTOR),
             Element::Sharing => self.usual_drop(device, SHARING),

@@ -135,6 +135,11 @@ impl Flow {
         found.into_iter().map(|(_, net, device, element)| (net, device, element))
     }
 
+    /// How many series elements feed a net.
+    pub(in crate::facts) fn feeder_count(&self, net: NetId) -> usize {
+        self.feeders(net).count()
+    }
+
     /// The nets that a net feeds, with the links.
     pub fn fed(&self, net: NetId) -> impl Iterator<Item = (Link, NetId)> {
         let node = self.nodes.get(&net).copied();

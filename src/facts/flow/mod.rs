@@ -18,4 +18,5 @@ pub use graph::{Flow, Link};
 pub use rectify::Reservoir;
 pub use voltage::{Rail, RailOrigin};
 
+pub(super) use current::Drawn;
 pub(super) use voltage::{Rails, propagate};

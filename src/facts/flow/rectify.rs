@@ -2,6 +2,7 @@
 
 use std::f64::consts::{PI, SQRT_2};
 
+use super::current::Drawn;
 use super::drop::SILICON;
 use super::element::Element;
 use crate::board::SupplyEntry;
@@ -80,22 +81,36 @@ impl Reservoir {
 impl Facts<'_> {
     /// The voltage of a rectified supply, signed: from the valley at the peak load to the peak at the least.
     pub(super) fn rectified(&self, entry: &SupplyEntry, rectifier: &Rectified) -> Option<Quantity> {
+        let valley = self.reservoir_voltage(entry, rectifier, Drawn::Peak, Reservoir::valley)?;
+        let peak = self.reservoir_voltage(entry, rectifier, Drawn::Peak, Reservoir::charged)?;
+        Some(signed(rectifier, valley.hull(&peak)))
+    }
+
+    /// The mean voltage of a rectified supply at the continuous load, signed: what heats.
+    pub(super) fn rectified_mean(&self, entry: &SupplyEntry, rectifier: &Rectified) -> Option<Quantity> {
+        let mean = |reservoir: Reservoir| f64::midpoint(reservoir.valley(), reservoir.charged().max(0.0));
+        Some(signed(rectifier, self.reservoir_voltage(entry, rectifier, Drawn::Continuous, mean)?))
+    }
+
+    fn reservoir_voltage(
+        &self,
+        entry: &SupplyEntry,
+        rectifier: &Rectified,
+        drawn: Drawn,
+        of: impl Fn(Reservoir) -> f64,
+    ) -> Option<Quantity> {
         let name = &self.circuit().net(rectifier.net).name;
-        let ac = entry.ac.as_ref()?;
-        let winding = ac.quantity(Dimension::VOLTAGE, format!("rms voltage ahead of {name}"));
+        let winding = entry.ac.as_ref()?.quantity(Dimension::VOLTAGE, format!("rms voltage ahead of {name}"));
         let winding = if rectifier.centre_tap { winding.scaled(0.5) } else { winding };
-        let load = self.draw(rectifier.net);
-        let diode = self.rectifier_drop(rectifier, &load);
+        let load = self.drawn(rectifier.net, drawn);
+        let diode = self.rectifier_drop(rectifier, &load, drawn);
         let resistance = match &entry.resistance {
-            Some(resistance) => {
-                resistance.quantity(Dimension::RESISTANCE, format!("source resistance ahead of {name}"))
-            }
+            Some(declared) => declared.quantity(Dimension::RESISTANCE, format!("source resistance ahead of {name}")),
             None => Quantity::constant(Dimension::RESISTANCE, 0.0),
         };
         let capacitance = self.reservoir(rectifier.net);
         let frequency = self.mains_frequency(entry, rectifier.net);
         let drops = f64::from(rectifier.drops);
-        let full_wave = rectifier.full_wave;
         let inputs = [
             (&winding, Slope::Rising),
             (&diode, Slope::Falling),
@@ -104,27 +119,23 @@ impl Facts<'_> {
             (&capacitance, Slope::Rising),
             (&frequency, Slope::Rising),
         ];
-        let at = move |v: &[f64]| match v {
-            [winding, diode, load, resistance, capacitance, frequency] => Some(Reservoir {
+        Some(Quantity::monotone(Dimension::VOLTAGE, &inputs, |v| match v {
+            [winding, diode, load, resistance, capacitance, frequency] => of(Reservoir {
                 peak: (SQRT_2 * winding - drops * diode).max(0.0),
                 load: *load,
                 resistance: *resistance,
                 capacitance: *capacitance,
                 frequency: *frequency,
-                full_wave,
+                full_wave: rectifier.full_wave,
             }),
-            _ => None,
-        };
-        let valley = Quantity::monotone(Dimension::VOLTAGE, &inputs, |v| at(v).map_or(f64::NAN, Reservoir::valley));
-        let peak = Quantity::monotone(Dimension::VOLTAGE, &inputs, |v| at(v).map_or(f64::NAN, Reservoir::charged));
-        let voltage = valley.hull(&peak);
-        Some(if rectifier.sign == Sign::Negative { voltage.negated() } else { voltage })
+            _ => f64::NAN,
+        }))
     }
 
-    fn rectifier_drop(&self, rectifier: &Rectified, load: &Quantity) -> Quantity {
+    fn rectifier_drop(&self, rectifier: &Rectified, load: &Quantity, drawn: Drawn) -> Quantity {
         match rectifier.devices.first() {
             Some(first) if self.circuit().device(*first).kind == DeviceKind::Schottky => self
-                .series_drop(*first, Element::Diode { schottky: true }, rectifier.net)
+                .series_drop(*first, Element::Diode { schottky: true }, rectifier.net, drawn)
                 .unwrap_or_else(|| Quantity::constant(Dimension::VOLTAGE, 0.0)),
             Some(first) => self.forward_drop(*first, SILICON, load),
             None => Quantity::constant(Dimension::VOLTAGE, 0.0),
@@ -157,4 +168,8 @@ impl Facts<'_> {
         ));
         Quantity::given(Dimension::FREQUENCY, Range::clamped(low, nominal, high), Pair::NOT_NEGATIVE, evidence)
     }
+}
+
+fn signed(rectifier: &Rectified, voltage: Quantity) -> Quantity {
+    if rectifier.sign == Sign::Negative { voltage.negated() } else { voltage }
 }

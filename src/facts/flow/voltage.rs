@@ -2,6 +2,7 @@
 
 use std::collections::HashMap;
 
+use super::current::Drawn;
 use super::element::Element;
 use super::seeds::{Seed, supply_example};
 use crate::board::SupplyEntry;
@@ -9,6 +10,9 @@ use crate::circuit::{DeviceId, NetId, supply_name};
 use crate::facts::Facts;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
 use crate::recognize::RegulatorId;
+
+/// How many series elements are followed upwards.
+const LONGEST_PATH: usize = 64;
 
 /// Where the voltage of a net comes from.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -95,7 +99,7 @@ fn carried(facts: &Facts<'_>, rails: &Rails, net: NetId) -> Option<Rail> {
     let mut found: Option<Rail> = None;
     for (from, device, element) in facts.flow().feeders(net) {
         let Some(source) = rails.known.get(&from).filter(|rail| !rail.voltage.is_missing()) else { continue };
-        let voltage = facts.behind(&source.voltage, device, element, net);
+        let voltage = facts.behind(&source.voltage, device, element, net, Drawn::Peak);
         found = Some(match found {
             None => Rail { voltage, origin: RailOrigin::Through { device, from } },
             Some(first) => Rail { voltage: either(&first.voltage, &voltage), origin: first.origin },
@@ -152,9 +156,46 @@ impl Facts<'_> {
         lowered(&voltage, &resistance.times(&self.draw(net)))
     }
 
+    /// The nets from one up to where power enters, each with the element that feeds it.
+    pub(in crate::facts) fn path_up(&self, net: NetId) -> Vec<(NetId, Option<DeviceId>)> {
+        let mut path: Vec<(NetId, Option<DeviceId>)> = Vec::new();
+        let mut at = net;
+        while let RailOrigin::Through { device, from } = self.rail(at).origin {
+            if path.len() >= LONGEST_PATH {
+                break;
+            }
+            path.push((at, Some(device)));
+            at = from;
+        }
+        path.push((at, None));
+        path
+    }
+
+    /// The voltage of a net while the loads draw what heats: a rectified supply's mean, less what the elements on the
+    /// way take at that load.
+    pub(in crate::facts) fn heat_voltage(&self, net: NetId) -> Quantity {
+        let mut path = self.path_up(net);
+        let Some((source, _)) = path.pop() else { return self.rail(net).voltage };
+        let mut voltage = match self.flow().seed(source) {
+            Some(Seed::Rectified { entry, rectifier }) => {
+                let entry = self.board().supplies.get(*entry);
+                entry.and_then(|entry| self.rectified_mean(entry, rectifier))
+            }
+            _ => None,
+        }
+        .unwrap_or_else(|| self.rail(source).voltage);
+        while let Some((to, device)) = path.pop() {
+            let element = self.flow().feeders(to).find(|(_, known, _)| Some(*known) == device);
+            if let Some((_, device, element)) = element {
+                voltage = self.behind(&voltage, device, element, to, Drawn::Continuous);
+            }
+        }
+        voltage
+    }
+
     /// The voltage behind a series element that leads from a net of voltage `from` to `to`.
-    fn behind(&self, from: &Quantity, device: DeviceId, element: Element, to: NetId) -> Quantity {
-        match self.series_drop(device, element, to) {
+    fn behind(&self, from: &Quantity, device: DeviceId, element: Element, to: NetId, drawn: Drawn) -> Quantity {
+        match self.series_drop(device, element, to, drawn) {
             None => from.clone(),
             Some(drop) => lowered(from, &drop),
         }

@@ -148,6 +148,15 @@ impl Circuit {
     }
 }
 
+impl Net {
+    /// Whether its name was made from a pin or a code, so that it changes with references and codes.
+    #[must_use]
+    pub fn has_made_name(&self) -> bool {
+        let name = self.name.trim_start_matches('/');
+        name.is_empty() || ["Net-(", "unconnected-(", "net "].iter().any(|start| name.starts_with(start))
+    }
+}
+
 impl Device {
     /// Whether the part is on the board.
     #[must_use]

@@ -1,6 +1,7 @@
 //! One board from its bytes to reviewed findings: what was accepted, what to declare first.
 
 mod accept;
+pub mod compare;
 mod concern;
 mod entries;
 mod examine;

@@ -29,6 +29,8 @@ pub(super) enum Command {
     Rails(Rails),
     /// Explain a check, or every figure about a part of a board
     Explain(Explain),
+    /// Compare a board with what it was: what a change brings and takes away
+    Compare(Compare),
     /// List what is known: checks, part families, supplies, technologies, quantities
     Catalog(Catalog),
     /// Begin a part file for a part that is not known, from what its symbol tells
@@ -63,6 +65,44 @@ pub(super) struct Check {
     pub(super) fail_on: FailOn,
 
     /// Show findings alone, without headings and summaries
+    #[arg(long)]
+    pub(super) quiet: bool,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Compare {
+    /// The netlist export of the board as it was, or a folder of such; `-` reads standard input
+    #[arg(value_name = "OLD")]
+    pub(super) old: PathBuf,
+
+    /// The netlist export of the board as it is, or a folder of such
+    #[arg(value_name = "NEW")]
+    pub(super) new: PathBuf,
+
+    #[command(flatten)]
+    pub(super) input: Input,
+
+    /// The board file of the old board, where `--board` is that of the new one only
+    #[arg(long, value_name = "FILE")]
+    pub(super) old_board: Option<PathBuf>,
+
+    /// How the result is written
+    #[arg(long, value_enum, default_value_t)]
+    pub(super) format: CompareFormat,
+
+    /// Write the result to a file, whole or not at all
+    #[arg(long, value_name = "FILE")]
+    pub(super) output: Option<PathBuf>,
+
+    /// How many boards are judged at once; as many as there are processors if not given
+    #[arg(long, value_name = "COUNT", value_parser = clap::value_parser!(u16).range(1..=256))]
+    pub(super) jobs: Option<u16>,
+
+    /// The level from which a finding that is new or worse makes the exit status 1
+    #[arg(long, value_enum, default_value_t, value_name = "LEVEL")]
+    pub(super) fail_on: FailOn,
+
+    /// Show findings alone, without headings, figures and summaries
     #[arg(long)]
     pub(super) quiet: bool,
 }
@@ -169,6 +209,15 @@ pub(super) enum CheckFormat {
     Line,
     /// A comment for a pull request
     Markdown,
+    /// For programs
+    Json,
+}
+
+#[derive(Debug, Clone, Copy, Default, PartialEq, Eq, ValueEnum)]
+pub(super) enum CompareFormat {
+    /// For people
+    #[default]
+    Text,
     /// For programs
     Json,
 }

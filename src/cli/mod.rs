@@ -4,6 +4,7 @@ mod args;
 mod boards;
 mod catalog;
 mod check;
+mod compare;
 mod day;
 mod draft;
 mod explain;
@@ -92,6 +93,7 @@ fn status(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<'
         Command::Check(check) => check::run(check, terminal, streams),
         Command::Rails(rails) => rails::run(rails, terminal, streams),
         Command::Explain(explain) => explain::run(explain, terminal, streams),
+        Command::Compare(compare) => compare::run(compare, terminal, streams),
         Command::Catalog(catalog) => catalog::run(catalog, terminal, streams),
         Command::Draft(draft) => draft::run(draft, terminal, streams),
         Command::Vet(vet) => vet::run(vet, terminal, streams),

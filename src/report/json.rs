@@ -102,7 +102,7 @@ struct NotJudged<'a> {
 }
 
 #[derive(Debug, Serialize)]
-struct FindingEntry<'a> {
+pub(super) struct FindingEntry<'a> {
     check: &'a str,
     verdict: &'static str,
     level: &'static str,
@@ -124,7 +124,7 @@ struct FindingEntry<'a> {
 }
 
 #[derive(Debug, Serialize)]
-struct Slack {
+pub(super) struct Slack {
     value: Option<f64>,
     unit: String,
 }
@@ -305,7 +305,8 @@ fn net_name(circuit: &Circuit, net: Option<NetId>) -> Option<&str> {
     net.map(|net| circuit.net(net).name.as_str())
 }
 
-fn finding(found: &Reviewed) -> FindingEntry<'_> {
+/// A finding with all that belongs to it.
+pub(super) fn finding(found: &Reviewed) -> FindingEntry<'_> {
     let finding = &found.finding;
     FindingEntry {
         check: &finding.check,

@@ -4,6 +4,7 @@ mod board;
 pub mod catalog;
 mod catalog_part;
 mod caution;
+pub mod compare;
 mod draft;
 mod excerpt;
 mod explain;

@@ -75,14 +75,7 @@ fn one(board: &BoardResult, options: TextOptions, of_many: bool) -> String {
     if !board.is_complete() {
         text.push_str(&incomplete(look));
     }
-    let (accepted, open): (Vec<_>, Vec<_>) = examination.findings.iter().partition(|found| found.accepted.is_some());
-    for found in open.iter().filter(|found| found.finding.level < Level::Note) {
-        text.push_str(&finding::whole(examination, found, look));
-        text.push('\n');
-    }
-    let notes: Vec<&Reviewed> = open.iter().copied().filter(|found| found.finding.level == Level::Note).collect();
-    text.push_str(&notes_of(&notes, look));
-    text.push_str(&accepted_of(&accepted, look));
+    text.push_str(&findings(examination, look));
     if !options.quiet {
         text.push_str(&summary(examination, look));
         if !of_many {
@@ -93,8 +86,22 @@ fn one(board: &BoardResult, options: TextOptions, of_many: bool) -> String {
     text
 }
 
+/// All findings of a board: errors and warnings in full, then notes, then what is accepted.
+pub(super) fn findings(examination: &Examination, look: Look) -> String {
+    let mut text = String::new();
+    let (accepted, open): (Vec<_>, Vec<_>) = examination.findings.iter().partition(|found| found.accepted.is_some());
+    for found in open.iter().filter(|found| found.finding.level < Level::Note) {
+        text.push_str(&finding::whole(examination, found, look));
+        text.push('\n');
+    }
+    let notes: Vec<&Reviewed> = open.iter().copied().filter(|found| found.finding.level == Level::Note).collect();
+    text.push_str(&notes_of(&notes, look));
+    text.push_str(&accepted_of(&accepted, look));
+    text
+}
+
 /// Problems, as many as a reader can use: the errors ahead of the others where there are too many.
-fn first_problems(all: &[Problem], look: Look) -> String {
+pub(super) fn first_problems(all: &[Problem], look: Look) -> String {
     if all.len() <= MOST_PROBLEMS {
         return problems(all, look);
     }
@@ -129,13 +136,13 @@ pub(super) fn unread(look: Look) -> String {
 }
 
 /// What is said of a board of which something is lost, ahead of what is found on the rest.
-fn incomplete(look: Look) -> String {
+pub(super) fn incomplete(look: Look) -> String {
     let line = ": the errors above left something out; where it is missing, what follows may be wrong";
     format!("{}{line}\n\n", look.level(Level::Error, "incomplete"))
 }
 
 /// Notes in one or two lines each: what is tight, then what is unknown.
-fn notes_of(notes: &[&Reviewed], look: Look) -> String {
+pub(super) fn notes_of(notes: &[&Reviewed], look: Look) -> String {
     let mut text = String::new();
     for verdict in [Verdict::Tight, Verdict::Unknown] {
         let these: Vec<_> = notes.iter().filter(|found| found.finding.verdict == verdict).collect();
@@ -161,7 +168,7 @@ fn notes_of(notes: &[&Reviewed], look: Look) -> String {
     text
 }
 
-fn accepted_of(accepted: &[&Reviewed], look: Look) -> String {
+pub(super) fn accepted_of(accepted: &[&Reviewed], look: Look) -> String {
     let mut text = String::new();
     for found in accepted {
         let Some(accepted) = &found.accepted else { continue };

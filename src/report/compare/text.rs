@@ -211,7 +211,8 @@ fn rows(change: &RegulatorChange<'_>) -> Vec<Vec<String>> {
     let identity = change.identity.iter().map(|each| row(each.name.to_owned(), word(&each.is), word(&each.was)));
     let net = |net: &Option<String>| net.as_ref().map_or_else(|| "open".to_owned(), |it| inert(it).into_owned());
     let moved = change.moved.iter().map(|each| row(pin(each), net(&each.is), net(&each.was)));
-    let figure = |each: &Change<Shown>| row(each.name.replace('_', " "), shown(each.is.as_ref()), shown(each.was.as_ref()));
+    let figure =
+        |each: &Change<Shown>| row(each.name.replace('_', " "), shown(each.is.as_ref()), shown(each.was.as_ref()));
     identity.chain(moved).chain(change.figures.iter().map(figure)).collect()
 }
 

@@ -181,7 +181,9 @@ fn holding(board: &Examination) -> BTreeSet<(&str, &str)> {
 fn why(key: Option<&Key<'_>>, holding: &BTreeSet<(&str, &str)>, facts: &Facts<'_>) -> Why {
     match key {
         Some((_, About::OnlyOld(_))) => Why::Removed,
-        Some((check, About::New(subject))) if holding.contains(&(*check, facts.label(*subject).as_str())) => Why::Holds,
+        Some((check, About::New(subject))) if holding.contains(&(*check, facts.label(*subject).as_str())) => {
+            Why::Holds
+        }
         _ => Why::NotAsked,
     }
 }

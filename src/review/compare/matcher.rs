@@ -61,7 +61,9 @@ impl<'a> Matcher<'a> {
     /// Symbols keep their ids whatever else changes. On a sheet that is used several times all copies have the same:
     /// there the sheet's name tells them apart.
     fn by_ids(&mut self) {
-        self.by_one_to_one(|graph, at| ids(graph, at).map(|ids| (ids, graph.device(at).map(|one| one.sheet.clone()))));
+        self.by_one_to_one(|graph, at| {
+            ids(graph, at).map(|ids| (ids, graph.device(at).map(|one| one.sheet.clone())))
+        });
         self.by_one_to_one(ids);
         self.by_one_to_one(|graph, at| ids(graph, at)?.into_iter().next());
     }

@@ -2,9 +2,9 @@
 
 use std::collections::{BTreeMap, BTreeSet};
 
+use super::Change;
 use super::matcher::Matcher;
 use super::pairs::Pairs;
-use super::Change;
 use crate::circuit::{Device, NetId, Pin};
 use crate::facts::Facts;
 use crate::knowledge::{Pass, Sign};

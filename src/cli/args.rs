@@ -218,6 +218,10 @@ pub(super) enum CompareFormat {
     /// For people
     #[default]
     Text,
+    /// For editors and build tools: one line for each finding that is new or worse
+    Line,
+    /// For a comment on a pull request
+    Markdown,
     /// For programs
     Json,
 }

@@ -35,6 +35,8 @@ pub(super) fn run(typed: &Compare, terminal: Terminal, to: &mut Streams<'_>) -> 
     let options = TextOptions { look, quiet: typed.quiet };
     let text = match typed.format {
         CompareFormat::Text => compare::text(&compared, options),
+        CompareFormat::Line => compare::line(&compared),
+        CompareFormat::Markdown => compare::markdown(&compared),
         CompareFormat::Json => compare::json(&compared),
     };
     let written = match &typed.output {

@@ -15,7 +15,7 @@ use crate::quantity::Quantity;
 const SCHEMA: &str = "railworthy-rails/1";
 
 /// The figures that other programs may rely on, known or not.
-const FACTS: &[&str] = &[
+pub(super) const FACTS: &[&str] = &[
     "input_voltage",
     "output_voltage",
     "set_point",

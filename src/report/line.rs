@@ -8,6 +8,7 @@ use super::inert::{inert, inert_short};
 use super::level_of;
 use super::overall::totals;
 use crate::checks::Level;
+use crate::review::Reviewed;
 use crate::source::{Location, Problem};
 
 /// Most characters of a message.
@@ -26,9 +27,7 @@ pub fn lines(boards: &[BoardResult]) -> String {
         last = Some(board);
         board.problems.iter().for_each(|problem| text.push_str(&told(problem, &board.netlist)));
         for found in board.findings().filter(|found| found.accepted.is_none()) {
-            let finding = &found.finding;
-            let line = line(&place(found.best_place()), finding.level, &finding.message);
-            text.push_str(&format!("{line} [{}]\n", inert(&finding.check)));
+            text.push_str(&of_finding(found));
         }
     }
     super::guarded(&text)
@@ -40,7 +39,15 @@ pub fn line_summary(boards: &[BoardResult]) -> String {
     super::guarded(&totals(boards))
 }
 
-fn told(problem: &Problem, netlist: &str) -> String {
+/// A finding in its line.
+pub(super) fn of_finding(found: &Reviewed) -> String {
+    let finding = &found.finding;
+    let line = line(&place(found.best_place()), finding.level, &finding.message);
+    format!("{line} [{}]\n", inert(&finding.check))
+}
+
+/// A problem in its line; one without a place is the netlist's.
+pub(super) fn told(problem: &Problem, netlist: &str) -> String {
     let place = match problem.place() {
         Some((source, span)) => place(&Location::new(source, span)),
         None => file(netlist),

@@ -18,15 +18,15 @@ use crate::source::{Problem, Severity};
 pub const LONGEST_PAGE: usize = 60_000;
 
 /// What is kept free for what stands behind the tables of findings: figures, acceptances, the end.
-const FOR_FIGURES: usize = 20_000;
+pub(super) const FOR_FIGURES: usize = 20_000;
 /// What is kept free for acceptances and the end.
-const FOR_ACCEPTED: usize = 6_000;
+pub(super) const FOR_ACCEPTED: usize = 6_000;
 /// What is kept free for the end.
-const FOR_END: usize = 3_000;
+pub(super) const FOR_END: usize = 3_000;
 /// Most characters of a line that names stand in.
-const LONGEST_LINE: usize = 400;
+pub(super) const LONGEST_LINE: usize = 400;
 /// Most problems that are listed.
-const MOST_PROBLEMS: usize = 25;
+pub(super) const MOST_PROBLEMS: usize = 25;
 /// Most boards that have a row of their own.
 const MOST_BOARDS: usize = 100;
 /// Most declarations that are named as the first to make.
@@ -105,6 +105,11 @@ fn problems(page: &mut Page, boards: &[BoardResult]) {
         rules = Some(board);
         all.extend(&board.problems);
     }
+    problem_table(page, all);
+}
+
+/// Problems as a table, errors first, as many as a reader can use.
+pub(super) fn problem_table(page: &mut Page, mut all: Vec<&Problem>) {
     if all.is_empty() {
         return;
     }
@@ -144,22 +149,26 @@ fn findings(page: &mut Page, open: &[Entry<'_>], many: bool) {
 
 /// The figures and remedies of errors and warnings, folded.
 fn figures(page: &mut Page, open: &[Entry<'_>]) {
-    let told: Vec<&Entry<'_>> = open.iter().filter(|entry| entry.found.finding.level < Level::Note).collect();
-    let pieces = told.iter().map(|entry| {
-        let place = place(entry.found);
-        let at = entry.found.best_place();
+    figures_of(page, open.iter().map(|entry| entry.found), FOR_ACCEPTED);
+}
+
+/// The figures and remedies of those of some findings that are errors or warnings, folded.
+pub(super) fn figures_of<'a>(page: &mut Page, findings: impl Iterator<Item = &'a Reviewed>, reserve: usize) {
+    let told: Vec<&Reviewed> = findings.filter(|found| found.finding.level < Level::Note).collect();
+    let pieces = told.iter().map(|found| {
+        let at = found.best_place();
         let at = format!("{}:{}", at.source.name(), at.position().line);
         let lines = format!(
             "{}: {}\n{}\n{}\n{}",
-            entry.found.finding.level,
-            inert_short(&entry.found.finding.message, LONGEST_LINE),
-            inert_short(&place, LONGEST_LINE),
+            found.finding.level,
+            inert_short(&found.finding.message, LONGEST_LINE),
+            inert_short(&place(found), LONGEST_LINE),
             inert_short(&at, LONGEST_LINE),
-            grounds(entry.found, Look::new(Look::PIPED, false))
+            grounds(found, Look::new(Look::PIPED, false))
         );
         format!("\n{}", block(&lines))
     });
-    folded(page, "Figures and remedies", "", pieces, told.len(), FOR_ACCEPTED);
+    folded(page, "Figures and remedies", "", pieces, told.len(), reserve);
 }
 
 /// The findings that someone has looked at, with the reasons, folded.
@@ -191,7 +200,7 @@ fn standings(page: &mut Page, boards: &[BoardResult]) {
 }
 
 /// A part that is folded, of as many pieces as leave `reserve`.
-fn folded(
+pub(super) fn folded(
     page: &mut Page,
     title: &str,
     start: &str,
@@ -211,7 +220,7 @@ fn folded(
 }
 
 /// That something is not shown, and where it is.
-fn left_out(page: &mut Page, count: usize, what: &str) {
+pub(super) fn left_out(page: &mut Page, count: usize, what: &str) {
     if count > 0 {
         let what = match (what, count) {
             ("entry", 1) => "entry".to_owned(),

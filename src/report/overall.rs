@@ -157,9 +157,9 @@ pub(super) fn all_counts(boards: &[BoardResult]) -> String {
 }
 
 /// What a netlist cannot show, with the boards that can hurt somebody, shown as `name` shows them.
-pub(super) fn caution_of(boards: &[BoardResult], name: fn(&str) -> String) -> String {
+pub(super) fn caution_of<'a>(boards: impl IntoIterator<Item = &'a BoardResult>, name: fn(&str) -> String) -> String {
     let is_hazard = |board: &&BoardResult| board.examination.as_ref().is_some_and(caution::has_hazard);
-    let hazards: Vec<String> = boards.iter().filter(is_hazard).map(|board| name(&board.netlist)).collect();
+    let hazards: Vec<String> = boards.into_iter().filter(is_hazard).map(|board| name(&board.netlist)).collect();
     caution::of_many(&hazards)
 }
 

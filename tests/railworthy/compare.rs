@@ -2,6 +2,7 @@
 
 use std::fs;
 use std::path::Path;
+use std::sync::LazyLock;
 
 use proptest::prelude::*;
 use railworthy::board::Board;
@@ -18,6 +19,9 @@ use crate::shared::shared_folder;
 
 const BOARD_FILE: &str =
     "[[load]]\nnet = \"+5V\"\ncurrent = \"10 .. 200 mA\"\n\n[[load]]\nnet = \"+3V3\"\ncurrent = \"5 .. 120 mA\"\n";
+
+/// Loaded once for all tests.
+static RULES: LazyLock<Rules> = LazyLock::new(Rules::built_in);
 
 /// Two boards in folders of their own, with a board file each.
 struct Pair(tempfile::TempDir);
@@ -67,13 +71,13 @@ fn names<'v>(list: &'v Value, key: &str) -> Vec<&'v str> {
     list.as_array().unwrap().iter().map(|entry| entry[key].as_str().unwrap()).collect()
 }
 
-fn judged(rules: &Rules, text: &str) -> Examination {
-    examine("board.net", text.as_bytes(), Board::default(), &rules.knowledge, &rules.checks, TODAY).unwrap()
+fn judged(text: &str) -> Examination {
+    examine("board.net", text.as_bytes(), Board::default(), &RULES.knowledge, &RULES.checks, TODAY).unwrap()
 }
 
 /// What differs between two boards, in words.
-fn differences(rules: &Rules, old: &Examination, new: &Examination) -> Vec<String> {
-    let side = |examination| Side { examination, knowledge: &rules.knowledge };
+fn differences(old: &Examination, new: &Examination) -> Vec<String> {
+    let side = |examination| Side { examination, knowledge: &RULES.knowledge };
     let comparison = Comparison::new(side(old), side(new));
     let findings = comparison.findings.iter().filter(|each| each.state != State::Same);
     let findings = findings.map(|each| format!("{}: {}", each.state.name(), each.now.finding.message));
@@ -86,14 +90,13 @@ fn differences(rules: &Rules, old: &Examination, new: &Examination) -> Vec<Strin
 
 #[test]
 fn the_made_board_is_like_real_ones() {
-    let rules = Rules::built_in();
-    let examination = judged(&rules, &board().written(Format::E));
+    let examination = judged(&board().written(Format::E));
     assert!(examination.is_complete(), "{:?}", examination.problems);
     assert_eq!(examination.netlist.components.len(), 58);
     assert_eq!(examination.design.regulators.len(), 8);
     assert!(examination.findings.len() > 8, "{}", examination.findings.len());
     for format in [Format::D, Format::Xml] {
-        let again = judged(&rules, &board().written(format));
+        let again = judged(&board().written(format));
         assert!(again.is_complete(), "{:?}", again.problems);
         assert_eq!(again.netlist.format, format);
         assert_eq!(again.findings.len(), examination.findings.len(), "{format:?}");
@@ -122,23 +125,21 @@ fn a_board_renumbered_reordered_and_exported_anew_does_not_differ() {
 
 #[test]
 fn symbols_without_ids_are_known_by_what_lies_around_them() {
-    let rules = Rules::built_in();
-    let old = judged(&rules, &board().without_ids().written(Format::E));
+    let old = judged(&board().without_ids().written(Format::E));
     for seed in 10..20 {
         let mut dice = Dice(seed);
         let new = board().renumbered(&mut dice).shuffled(&mut dice).without_ids();
-        assert_eq!(differences(&rules, &old, &judged(&rules, &new.written(Format::D))), [""; 0], "seed {seed}");
+        assert_eq!(differences(&old, &judged(&new.written(Format::D))), [""; 0], "seed {seed}");
     }
 }
 
 #[test]
 fn names_of_nets_are_names_only() {
-    let rules = Rules::built_in();
-    let old = judged(&rules, &board().written(Format::E));
+    let old = judged(&board().written(Format::E));
     let mut new = board();
     new.net("BATT+").name = "/Input/CELL".to_owned();
     new.net("/TX").name = "/UART/TX".to_owned();
-    let found = differences(&rules, &old, &judged(&rules, &new.written(Format::E)));
+    let found = differences(&old, &judged(&new.written(Format::E)));
     assert_eq!(found, [""; 0]);
 }
 
@@ -183,6 +184,27 @@ fn a_changed_capacitor_yields_just_its_consequences() {
 }
 
 #[test]
+fn lines_and_comments_tell_what_is_new() {
+    let mut new = board();
+    let capacitor = new.components.iter().find(|one| one.value == "22uF/10V tantalum").unwrap().reference.clone();
+    new.component(&capacitor).value = "1uF/10V tantalum".to_owned();
+    let pair = Pair::boards(&board(), &new);
+    let lines = pair.compare(&["--format", "line"]);
+    assert_eq!((lines.status, lines.out.lines().count()), (Some(1), 1), "{}", lines.out);
+    assert!(lines.out.starts_with("new/buoy.net:") && lines.out.ends_with("[output-capacitor]\n"), "{}", lines.out);
+    let comment = pair.compare(&["--format", "markdown"]);
+    assert_eq!(comment.status, Some(1));
+    assert!(comment.out.starts_with("### railworthy: 1 new or worse error, 1 gone\n"), "{}", comment.out);
+    assert!(comment.out.contains("| new | error | ` U2 ` |"), "{}", comment.out);
+    assert!(comment.out.contains("<summary>1 regulator changed</summary>"), "{}", comment.out);
+    let same = Pair::boards(&board(), &board().renumbered(&mut Dice(2)));
+    assert_eq!(same.compare(&["--format", "line"]).out, "");
+    let comment = same.compare(&["--format", "markdown"]).out;
+    assert!(comment.starts_with("### railworthy: nothing new\n"), "{comment}");
+    assert!(!comment.contains("<details>"), "{comment}");
+}
+
+#[test]
 fn a_capacitor_that_is_taken_out_is_missed_at_its_regulator_alone() {
     let capacitor = board().components.iter().find(|one| one.value == "22uF/10V tantalum").unwrap().reference.clone();
     let regulator = board().components.iter().find(|one| one.value == "LM1117MP-3.3").unwrap().reference.clone();
@@ -202,6 +224,19 @@ fn the_other_way_round_the_finding_is_gone_and_nothing_fails() {
     let capacitor = old.components.iter().find(|one| one.value == "22uF/10V tantalum").unwrap().reference.clone();
     old.component(&capacitor).value = "1uF/10V tantalum".to_owned();
     let pair = Pair::boards(&old, &board());
+    // A finding that the worse one stood before comes out, and nobody was told of it.
+    let news: Vec<Value> = pair.json()["findings"].as_array().unwrap().clone();
+    let uncovered = news.iter().find(|found| found["check"] == "esr-window" && found["subject"] == "U2").unwrap();
+    assert_eq!((&uncovered["state"], &uncovered["behind"]), (&"new".into(), &"output-capacitor".into()));
+    let covered = Pair::boards(&board(), &old).json();
+    let covered =
+        covered["gone"].as_array().unwrap().iter().find(|gone| gone["check"] == "esr-window").unwrap().clone();
+    assert_eq!((&covered["subject"], &covered["why"]), (&"U2".into(), &"covered".into()));
+
+    for side in ["old", "new"] {
+        let esr = format!("{BOARD_FILE}\n[[part]]\nref = \"{capacitor}\"\nesr = \"0.8 .. 1.2 ohm\"\n");
+        fs::write(pair.path().join(side).join("buoy.railworthy.toml"), esr).unwrap();
+    }
     let json = pair.json();
     assert_eq!(in_state(&json, &["new", "worse"]), []);
     let gone = json["gone"].as_array().unwrap();
@@ -385,7 +420,7 @@ fn a_hostile_name_acts_on_nothing() {
     new.component(&reference).value = "LM2940CT-5.0\u{1b}[2J\n::error::x ##[error]".to_owned();
     new.net("+9V").name = "+9V\u{202e}##vso[x]".to_owned();
     let pair = Pair::boards(&board(), &new);
-    for format in ["text", "json"] {
+    for format in ["text", "line", "markdown", "json"] {
         let out = pair.compare(&["--format", format]).out;
         assert!(!out.contains(['\u{1b}', '\u{202e}']), "{format}");
         assert!(out.lines().all(|line| !line.trim_start().starts_with("::")), "{format}");
@@ -398,9 +433,8 @@ proptest! {
 
     #[test]
     fn order_never_changes_a_finding(seed in any::<u64>()) {
-        let rules = Rules::built_in();
         let told = |text: &str| -> Vec<String> {
-            let all = judged(&rules, text).findings;
+            let all = judged(text).findings;
             let told = all.iter().map(|one| {
                 let finding = &one.finding;
                 format!("{} {} {} {:?}", one.fingerprint, finding.verdict, finding.message, (&one.parts, &one.nets))
@@ -414,19 +448,17 @@ proptest! {
 
     #[test]
     fn numbers_and_order_never_make_a_difference(seed in any::<u64>(), with_ids in any::<bool>()) {
-        let rules = Rules::built_in();
         let given = |board: Exported| if with_ids { board } else { board.without_ids() };
         let mut dice = Dice(seed);
-        let old = judged(&rules, &given(board()).written(Format::E));
-        let new = judged(&rules, &given(board()).renumbered(&mut dice).shuffled(&mut dice).written(Format::E));
-        prop_assert_eq!(differences(&rules, &old, &new), Vec::<String>::new());
+        let old = judged(&given(board()).written(Format::E));
+        let new = judged(&given(board()).renumbered(&mut dice).shuffled(&mut dice).written(Format::E));
+        prop_assert_eq!(differences(&old, &new), Vec::<String>::new());
     }
 }
 
 #[test]
 fn real_boards_do_not_differ_from_themselves_renumbered() {
     let Some(shared) = shared_folder() else { return };
-    let rules = Rules::built_in();
     let mut files: Vec<_> =
         fs::read_dir(shared.join("corpus/files")).unwrap().map(|file| file.unwrap().path()).collect();
     files.sort();
@@ -437,10 +469,10 @@ fn real_boards_do_not_differ_from_themselves_renumbered() {
         let exported = Exported::of(&netlist);
         let mut dice = Dice(compared);
         let new = exported.clone().renumbered(&mut dice).shuffled(&mut dice);
-        let old = judged(&rules, &exported.written(Format::E));
-        let new = judged(&rules, &new.written(Format::E));
+        let old = judged(&exported.written(Format::E));
+        let new = judged(&new.written(Format::E));
         assert_eq!(old.netlist.components.len(), netlist.components.len(), "{number}");
-        assert_eq!(differences(&rules, &old, &new), [""; 0], "{number}");
+        assert_eq!(differences(&old, &new), [""; 0], "{number}");
         compared += 1;
         regulators += old.design.regulators.len();
     }

@@ -52,6 +52,7 @@ struct Side<'a> {
 struct Entry<'a> {
     state: Option<&'static str>,
     was: Option<FindingEntry<'a>>,
+    behind: Option<&'a str>,
     #[serde(flatten)]
     finding: FindingEntry<'a>,
 }
@@ -91,7 +92,7 @@ struct Pair<T> {
 
 #[derive(Debug, Serialize)]
 struct Pin<'a> {
-    pin: &'a str,
+    pin: Option<&'a str>,
     name: &'a str,
     old_net: Option<&'a str>,
     new_net: Option<&'a str>,
@@ -140,7 +141,8 @@ fn one<'a>(pair: &'a ComparedBoards<'_>) -> Board<'a> {
         Some(comparison) => fill(&mut board, comparison, circuit(pair.old), circuit(pair.new)),
         None => {
             let all = pair.new.into_iter().flat_map(BoardResult::findings);
-            board.findings = all.map(|found| Entry { state: None, was: None, finding: finding(found) }).collect();
+            board.findings =
+                all.map(|found| Entry { state: None, was: None, behind: None, finding: finding(found) }).collect();
         }
     }
     board
@@ -183,6 +185,7 @@ fn entry<'a>(compared: &'a Compared<'_>) -> Entry<'a> {
     Entry {
         state: Some(compared.state.name()),
         was: compared.was.filter(|_| compared.state != State::Same).map(finding),
+        behind: compared.behind.map(|behind| behind.finding.check.as_str()),
         finding: finding(compared.now),
     }
 }
@@ -231,7 +234,7 @@ fn name<'a>(circuit: &'a Circuit, regulator: &Regulator) -> Name<'a> {
 }
 
 fn pin(moved: &Moved) -> Pin<'_> {
-    Pin { pin: &moved.pin, name: &moved.name, old_net: moved.was.as_deref(), new_net: moved.is.as_deref() }
+    Pin { pin: moved.pin.as_deref(), name: &moved.name, old_net: moved.was.as_deref(), new_net: moved.is.as_deref() }
 }
 
 /// A value; null where it is not known or does not apply.

@@ -53,6 +53,8 @@ pub struct Compared<'a> {
     pub now: &'a Reviewed,
     /// What it was.
     pub was: Option<&'a Reviewed>,
+    /// Of a new one: the finding of the old board that made it superfluous, so that it may have been there untold.
+    pub behind: Option<&'a Reviewed>,
     /// What became of it.
     pub state: State,
 }
@@ -62,6 +64,8 @@ pub struct Compared<'a> {
 pub enum Why {
     /// What it was about is not on the new board.
     Removed,
+    /// Another finding of the new board makes it superfluous.
+    Covered,
     /// The requirement holds now.
     Holds,
     /// The requirement is asked no more: what it was about changed, or the rules did.
@@ -74,6 +78,7 @@ impl Why {
     pub fn name(self) -> &'static str {
         match self {
             Self::Removed => "removed",
+            Self::Covered => "covered",
             Self::Holds => "holds",
             Self::NotAsked => "not-asked",
         }
@@ -110,45 +115,67 @@ pub(super) fn compare<'a>(
     let to_new = |subject| matching.subject(subject).map_or(About::OnlyOld(subject), About::New);
     let of_old = keys(&old.findings, to_new, |names| matching.names(names));
     let of_new = keys(&new.findings, About::New, <[String]>::to_vec);
-    let mut before: BTreeMap<&Key<'_>, usize> = BTreeMap::new();
-    for (index, keys) in of_old.iter().enumerate() {
-        before.extend(keys.iter().map(|key| (key, index)));
-    }
-    let is_there: BTreeSet<&Key<'_>> = of_new.iter().flatten().collect();
+    let before: BTreeMap<&Key<'_>, &'a Reviewed> =
+        of_old.iter().flatten().map(|(key, found)| (key, *found)).collect();
+    let covered_before = covered(&old.findings, to_new);
+    let covered_now = covered(&new.findings, About::New);
+    let is_there: BTreeSet<&Key<'_>> = of_new.iter().flatten().map(|(key, _)| key).collect();
     let compared = new.findings.iter().zip(&of_new).map(|(now, keys)| {
-        let index = keys.iter().find_map(|key| before.get(key));
-        let was = index.and_then(|index| old.findings.get(*index));
-        Compared { now, was, state: was.map_or(State::New, |was| state(was, now)) }
+        let was = keys.iter().find_map(|(key, _)| before.get(key)).copied();
+        let behind = keys.first().and_then(|(key, _)| covered_before.get(key)).copied();
+        Compared {
+            now,
+            was,
+            behind: behind.filter(|_| was.is_none()),
+            state: was.map_or(State::New, |was| state(was, now)),
+        }
     });
     let compared = compared.collect();
     let holding = holding(new);
-    let gone = old.findings.iter().zip(&of_old).filter(|(_, keys)| !keys.iter().any(|key| is_there.contains(key)));
-    let gone = gone.map(|(was, keys)| Gone { was, why: why(keys.first(), &holding, facts) });
+    let why = |key: &Key<'_>| match key {
+        (_, About::OnlyOld(_)) => Why::Removed,
+        key if covered_now.contains_key(key) => Why::Covered,
+        (check, About::New(subject)) if holding.contains(&(*check, facts.label(*subject).as_str())) => Why::Holds,
+        _ => Why::NotAsked,
+    };
+    let gone =
+        old.findings.iter().zip(&of_old).filter(|(_, keys)| !keys.iter().any(|(key, _)| is_there.contains(key)));
+    let gone = gone.map(|(was, keys)| Gone { was, why: keys.first().map_or(Why::NotAsked, |(key, _)| why(key)) });
     (compared, gone.collect())
 }
 
-/// What each finding is about: its own check and subject, then those that it tells besides.
+/// What each finding is about: its own check and subject, then those of the findings that it tells besides.
 fn keys<'a>(
     findings: &'a [Reviewed],
     about: impl Fn(Subject) -> About,
     names: impl Fn(&[String]) -> Vec<String>,
-) -> Vec<Vec<Key<'a>>> {
+) -> Vec<Vec<(Key<'a>, &'a Reviewed)>> {
     let mut alike: BTreeMap<(&str, Vec<String>, Vec<String>), usize> = BTreeMap::new();
-    let mut of = |found: &'a Reviewed| {
-        let finding = &found.finding;
-        let own = match finding.subject {
+    let mut key = |found: &'a Reviewed| {
+        let check = found.finding.check.as_str();
+        let about = match found.finding.subject {
             Subject::Board => {
                 let (parts, nets) = (names(&found.parts), names(&found.nets));
-                let count = alike.entry((&finding.check, parts.clone(), nets.clone())).or_default();
+                let count = alike.entry((check, parts.clone(), nets.clone())).or_default();
                 *count += 1;
                 About::Board(parts, nets, *count)
             }
             subject => about(subject),
         };
-        let others = finding.merged.iter().map(|(check, subject)| (check.as_str(), about(*subject)));
-        std::iter::once((finding.check.as_str(), own)).chain(others).collect()
+        ((check, about), found)
     };
-    findings.iter().map(&mut of).collect()
+    findings.iter().map(|found| std::iter::once(found).chain(&found.merged).map(&mut key).collect()).collect()
+}
+
+/// What findings make superfluous, each with the finding that does.
+fn covered<'a>(findings: &'a [Reviewed], about: impl Fn(Subject) -> About) -> BTreeMap<Key<'a>, &'a Reviewed> {
+    let mut all = BTreeMap::new();
+    for found in findings {
+        for check in &found.finding.suppresses {
+            all.entry((check.as_str(), about(found.finding.subject))).or_insert(found);
+        }
+    }
+    all
 }
 
 fn state(was: &Reviewed, now: &Reviewed) -> State {
@@ -176,14 +203,4 @@ fn is_same(one: &Finding, other: &Finding) -> bool {
 fn holding(board: &Examination) -> BTreeSet<(&str, &str)> {
     let holding = board.told.iter().filter(|told| told.verdict == Verdict::Holds);
     holding.map(|told| (told.check.as_str(), told.subject.as_str())).collect()
-}
-
-fn why(key: Option<&Key<'_>>, holding: &BTreeSet<(&str, &str)>, facts: &Facts<'_>) -> Why {
-    match key {
-        Some((_, About::OnlyOld(_))) => Why::Removed,
-        Some((check, About::New(subject))) if holding.contains(&(*check, facts.label(*subject).as_str())) => {
-            Why::Holds
-        }
-        _ => Why::NotAsked,
-    }
 }

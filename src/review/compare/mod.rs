@@ -81,7 +81,8 @@ impl<'a> Comparison<'a> {
     /// A board that is new as a whole.
     #[must_use]
     pub fn added(new: &'a Examination) -> Self {
-        let findings = new.findings.iter().map(|now| Compared { now, was: None, state: State::New }).collect();
+        let findings =
+            new.findings.iter().map(|now| Compared { now, was: None, behind: None, state: State::New }).collect();
         let each = new.design.regulators.iter();
         Self { findings, gone: Vec::new(), regulators: each.map(|is| one_sided(None, Some(is))).collect() }
     }

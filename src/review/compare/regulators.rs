@@ -10,12 +10,12 @@ use crate::facts::Facts;
 use crate::knowledge::{Pass, Sign};
 use crate::recognize::{Design, Mode, Regulator};
 
-/// A pin of a regulator that lies on another net than it did.
+/// A pin of a regulator that lies on another net than it did; of another symbol than before, an end.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Moved {
-    /// Its number.
-    pub pin: String,
-    /// Its name; empty where it has none.
+    /// Its number; `None` for an end.
+    pub pin: Option<String>,
+    /// Its name; empty where it has none. Of an end: `input`, `output`, `ground`.
     pub name: String,
     /// The net that it was on; `None` for none.
     pub was: Option<String>,
@@ -76,33 +76,46 @@ pub(super) fn identity(old: &Facts<'_>, new: &Facts<'_>, was: &Regulator, is: &R
     both.filter(|((_, was), (_, is))| was != is).map(|((name, was), (_, is))| Change { name, was, is }).collect()
 }
 
-/// The pins of a regulator's part that lie on other nets than they did, in the new part's order; pins that only the old
-/// part has come last.
+/// What lies on other nets than it did: of the same symbol its pins, in the new part's order, those that only the old
+/// part has last; of another symbol, whose pins have other numbers, its ends.
 pub(super) fn moved(matcher: &Matcher<'_>, was: &Regulator, is: &Regulator) -> Vec<Moved> {
     let (old, new) = (matcher.old.circuit.device(was.device), matcher.new.circuit.device(is.device));
+    if old.symbol() != new.symbol() {
+        let ends = [
+            ("input", was.input_net, is.input_net),
+            ("output", was.output_net, is.output_net),
+            ("ground", was.ground_net, is.ground_net),
+        ];
+        return ends.into_iter().filter_map(|(name, lay, lies)| moved_to(matcher, None, name, lay, lies)).collect();
+    }
     let (before, now) = (by_number(old), by_number(new));
-    let there = |net: NetId| matcher.nets.new_of(matcher.old.net_place(net)?);
     let only_old = old.pins.iter().filter(|pin| !now.contains_key(pin.number.as_str()));
     let mut told = BTreeSet::new();
-    let mut all = Vec::new();
-    for pin in new.pins.iter().chain(only_old).filter(|pin| told.insert(pin.number.as_str())) {
-        let lay = before.get(pin.number.as_str()).and_then(|pin| pin.net);
-        let lies = now.get(pin.number.as_str()).and_then(|pin| pin.net);
-        let stays = match (lay, lies) {
-            (None, None) => true,
-            (Some(lay), Some(lies)) => there(lay).is_some() && there(lay) == matcher.new.net_place(lies),
-            _ => false,
-        };
-        if !stays {
-            all.push(Moved {
-                pin: pin.number.clone(),
-                name: pin.name.clone(),
-                was: lay.map(|net| matcher.old.circuit.net(net).name.clone()),
-                is: lies.map(|net| matcher.new.circuit.net(net).name.clone()),
-            });
-        }
-    }
-    all
+    let pins = new.pins.iter().chain(only_old).filter(|pin| told.insert(pin.number.as_str()));
+    let net = |pins: &BTreeMap<&str, &Pin>, pin: &Pin| pins.get(pin.number.as_str()).and_then(|pin| pin.net);
+    pins.filter_map(|pin| moved_to(matcher, Some(&pin.number), &pin.name, net(&before, pin), net(&now, pin)))
+        .collect()
+}
+
+fn moved_to(
+    matcher: &Matcher<'_>,
+    pin: Option<&String>,
+    name: &str,
+    lay: Option<NetId>,
+    lies: Option<NetId>,
+) -> Option<Moved> {
+    let there = |net: NetId| matcher.nets.new_of(matcher.old.net_place(net)?);
+    let stays = match (lay, lies) {
+        (None, None) => true,
+        (Some(lay), Some(lies)) => there(lay).is_some() && there(lay) == matcher.new.net_place(lies),
+        _ => false,
+    };
+    (!stays).then(|| Moved {
+        pin: pin.cloned(),
+        name: name.to_owned(),
+        was: lay.map(|net| matcher.old.circuit.net(net).name.clone()),
+        is: lies.map(|net| matcher.new.circuit.net(net).name.clone()),
+    })
 }
 
 /// The pins of a part by number; the first where several have one.

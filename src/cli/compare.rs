@@ -8,7 +8,7 @@ use super::args::{Compare, CompareFormat, Input};
 use super::boards::{self, How};
 use super::input::{Rules, is_standard_input};
 use super::settings::Terminal;
-use super::{Status, Streams, day, streams};
+use super::{Status, Streams, day, output};
 use crate::report::compare::{self, ComparedBoards};
 use crate::report::{BoardResult, TextOptions};
 use crate::review::compare::{Comparison, Side};
@@ -41,10 +41,11 @@ pub(super) fn run(typed: &Compare, terminal: Terminal, to: &mut Streams<'_>) -> 
     };
     let written = match &typed.output {
         None => to.result(&text),
-        Some(path) => match streams::write_file(path, &text) {
-            Ok(()) => Status::Clean,
-            Err(error) => to.broken(&format!("{} cannot be written: {error}", path.display())),
-        },
+        Some(path) => {
+            let read = output::read_for(&old, of_old.board.as_deref()).into_iter();
+            let read = read.chain(output::read_for(&new, typed.input.board.as_deref()));
+            output::write(path, &text, &read.collect::<Vec<_>>(), &["toml"], to)
+        }
     };
     compared.iter().map(|pair| status(pair, typed)).fold(written, Status::max)
 }

@@ -8,7 +8,7 @@ use std::collections::{BTreeMap, VecDeque};
 
 use super::colours::{Rounds, rounds};
 use super::graph::{Graph, PinLabels};
-use super::pairs::Pairs;
+use super::pairs::{Group, Pairs};
 use super::votes;
 use crate::checks::natural;
 use crate::circuit::{Circuit, DeviceKind};
@@ -78,8 +78,8 @@ impl<'a> Matcher<'a> {
     }
 
     /// What is left, in groups of one key, in the order in which the old board has them.
-    fn groups<K: Ord>(&self, key: impl Fn(&Graph<'a>, usize) -> Option<K>) -> Vec<(Vec<usize>, Vec<usize>)> {
-        let mut groups: BTreeMap<K, (Vec<usize>, Vec<usize>)> = BTreeMap::new();
+    fn groups<K: Ord>(&self, key: impl Fn(&Graph<'a>, usize) -> Option<K>) -> Vec<Group> {
+        let mut groups: BTreeMap<K, Group> = BTreeMap::new();
         for at in self.devices.left_old() {
             if let Some(key) = key(&self.old, at) {
                 groups.entry(key).or_default().0.push(at);
@@ -114,7 +114,7 @@ impl<'a> Matcher<'a> {
         let Some(of) = colours.get(round) else { return };
         let groups = {
             let [old, new] = of;
-            let mut groups: BTreeMap<u32, (Vec<usize>, Vec<usize>)> = BTreeMap::new();
+            let mut groups: BTreeMap<u32, Group> = BTreeMap::new();
             for at in self.devices.left_old() {
                 groups.entry(old.get(at).copied().unwrap_or(u32::MAX)).or_default().0.push(at);
             }
@@ -175,9 +175,9 @@ impl<'a> Matcher<'a> {
 
     /// Parts that are left on a pair of nets, in groups that may be joined as they stand: of one each, or of parts
     /// whose nets are all known, which are in parallel.
-    fn on_nets(&self, old: usize, new: usize, colours: &[Vec<u32>; 2]) -> Vec<(Vec<usize>, Vec<usize>)> {
+    fn on_nets(&self, old: usize, new: usize, colours: &[Vec<u32>; 2]) -> Vec<Group> {
         let [of_old, of_new] = colours;
-        let mut groups: BTreeMap<(u32, Lie), (Vec<usize>, Vec<usize>)> = BTreeMap::new();
+        let mut groups: BTreeMap<(u32, Lie), Group> = BTreeMap::new();
         for at in self.old.nodes(old).iter().map(|end| end.at).filter(|at| self.devices.new_of(*at).is_none()) {
             let key = (of_old.get(at).copied().unwrap_or(u32::MAX), self.lie_old(at));
             groups.entry(key).or_default().0.push(at);
@@ -224,7 +224,7 @@ impl<'a> Matcher<'a> {
 
     /// Joins the nets at pins of a pair that can only be each other.
     fn follow(&mut self, old: usize, new: usize) {
-        let mut open: BTreeMap<u32, (Vec<usize>, Vec<usize>)> = BTreeMap::new();
+        let mut open: BTreeMap<u32, Group> = BTreeMap::new();
         for end in self.old.pins(old).iter().filter(|end| self.nets.new_of(end.at).is_none()) {
             open.entry(end.label).or_default().0.push(end.at);
         }
@@ -260,7 +260,7 @@ impl<'a> Matcher<'a> {
     fn by_place(&mut self) {
         self.nets = votes::nets(&self.old, &self.new, &self.devices, true);
         let known = |lie: &Lie| !lie.is_empty() && lie.iter().all(|(_, pair)| pair.is_some());
-        let mut groups: BTreeMap<(DeviceKind, Lie), (Vec<usize>, Vec<usize>)> = BTreeMap::new();
+        let mut groups: BTreeMap<(DeviceKind, Lie), Group> = BTreeMap::new();
         for at in self.devices.left_old() {
             if let Some(device) = self.old.device(at) {
                 groups.entry((device.kind, self.lie_old(at))).or_default().0.push(at);

@@ -1,5 +1,8 @@
 //! What of one board is what of the other.
 
+/// Things of the old board and of the new one that are alike.
+pub(super) type Group = (Vec<usize>, Vec<usize>);
+
 /// Pairs of things that are known by their places, each in one pair at most.
 #[derive(Debug)]
 pub(super) struct Pairs {

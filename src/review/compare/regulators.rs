@@ -4,7 +4,7 @@ use std::collections::{BTreeMap, BTreeSet};
 
 use super::Change;
 use super::matcher::Matcher;
-use super::pairs::Pairs;
+use super::pairs::{Group, Pairs};
 use crate::circuit::{Device, NetId, Pin};
 use crate::facts::Facts;
 use crate::knowledge::{Pass, Sign};
@@ -36,7 +36,7 @@ pub(super) fn pairs(matcher: &Matcher<'_>, old: &Design, new: &Design) -> Pairs 
             pairs.join(at, *other);
         }
     }
-    let mut between: BTreeMap<(Option<usize>, usize), (Vec<usize>, Vec<usize>)> = BTreeMap::new();
+    let mut between: BTreeMap<(Option<usize>, usize), Group> = BTreeMap::new();
     let net_old = |net: Option<NetId>| net.and_then(|net| matcher.nets.new_of(matcher.old.net_place(net)?));
     let net_new = |net: Option<NetId>| net.and_then(|net| matcher.new.net_place(net));
     for at in pairs.left_old() {

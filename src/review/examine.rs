@@ -117,7 +117,8 @@ pub fn examine_netlist(
     examine_with_sheets(netlist, &Sheets::default(), board, knowledge, checks, today)
 }
 
-/// Judges a netlist beside whose schematic sheets findings are to be placed; they change no verdict.
+/// Judges a netlist beside whose schematic sheets findings are to be placed; they change no verdict, but
+/// may show that the netlist is an old export.
 #[must_use]
 pub fn examine_with_sheets(
     mut netlist: Netlist,
@@ -195,7 +196,7 @@ struct Judged {
 }
 
 fn judged(design: &Design, board: &Board, knowledge: &Knowledge, checks: &Checks, given: Given<'_>) -> Judged {
-    let Given { netlist, whole, today, .. } = given;
+    let Given { netlist, sheets, whole, today } = given;
     let facts = Facts::new(design, board, knowledge);
     let kinds: BTreeSet<SubjectKind> = checks.iter().map(|check| check.about).collect();
     let subjects: Vec<Subject> = kinds.into_iter().flat_map(|kind| facts.subjects(kind)).collect();
@@ -210,6 +211,8 @@ fn judged(design: &Design, board: &Board, knowledge: &Knowledge, checks: &Checks
     let suppressed = findings.split_off(open);
     let counts = without_accepted(counts, &findings);
     let round = Round {
+        netlist,
+        sheets,
         entries: &entries,
         whole,
         outcomes: &outcomes,

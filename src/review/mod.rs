@@ -8,6 +8,7 @@ mod examine;
 mod fingerprint;
 mod notice;
 mod settle;
+mod stale;
 
 pub use accept::{Accepted, Reopened};
 pub use examine::{Examination, Reviewed, examine, examine_netlist, examine_with_sheets};

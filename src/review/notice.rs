@@ -6,8 +6,11 @@ use super::Reviewed;
 use super::accept::Entries;
 use super::entries;
 use super::fingerprint::digest;
+use super::stale;
 use crate::checks::{Finding, Level, Outcome, Verdict};
 use crate::facts::Subject;
+use crate::netlist::Netlist;
+use crate::sheet::Sheets;
 use crate::source::Location;
 
 /// A check of the review.
@@ -28,7 +31,7 @@ pub struct ReviewCheck {
 
 /// Every check of the review, in the order in which they are asked: what finds fault with acceptances comes last, for
 /// the findings of the others can be accepted.
-pub const REVIEW_CHECKS: &[ReviewCheck] = &[entries::EXPIRED, entries::UNUSED];
+pub const REVIEW_CHECKS: &[ReviewCheck] = &[stale::STALE, entries::EXPIRED, entries::UNUSED];
 
 /// The check of the review that has a name.
 #[must_use]
@@ -39,6 +42,10 @@ pub fn review_check(name: &str) -> Option<&'static ReviewCheck> {
 /// What the checks of the review look at.
 #[derive(Debug, Clone, Copy)]
 pub(super) struct Round<'a> {
+    /// The netlist.
+    pub(super) netlist: &'a Netlist,
+    /// The schematic sheets beside it.
+    pub(super) sheets: &'a Sheets,
     /// The acceptances of the board file.
     pub(super) entries: &'a Entries<'a>,
     /// Whether the whole netlist was read.

@@ -97,6 +97,14 @@ fn schematics(folder: &Path, result: &Value) -> Vec<(String, Option<(String, Str
     findings.iter().map(|finding| (finding["subject"].as_str().unwrap().to_owned(), of(finding))).collect()
 }
 
+/// What the text report tells of one check's finding.
+fn told(folder: &Path, check: &str) -> String {
+    let text = run(folder, &["check", "gauge.net"]).out;
+    let found: Vec<&str> = text.split("\n\n").filter(|part| part.contains(&format!("│ {check} ·"))).collect();
+    assert_eq!(found.len(), 1, "{text}");
+    found[0].to_owned()
+}
+
 /// A result without its places in schematics.
 fn without_schematics(mut result: Value) -> Value {
     for finding in result["boards"][0]["findings"].as_array_mut().unwrap() {
@@ -128,7 +136,7 @@ fn the_text_report_shows_the_lines_of_the_sheets() {
     let folder = tempfile::tempdir().unwrap();
     let netlist = board(folder.path());
     draw(&netlist, folder.path(), Layout::Lists, as_drawn);
-    insta::assert_snapshot!(run(folder.path(), &["check", "gauge.net"]).out);
+    insta::assert_snapshot!(told(folder.path(), "enable-level"));
 }
 
 #[test]
@@ -171,4 +179,66 @@ fn standard_input_has_nothing_beside_it() {
     let found = crate::program::run_with(folder.path(), &["check", "-", "--format", "json"], netlist.as_bytes());
     let result: Value = serde_json::from_str(&found.out).unwrap();
     assert!(schematics(folder.path(), &result).iter().all(|(_, place)| place.is_none()));
+}
+
+/// What is found of the export, with its level.
+fn stale(result: &Value) -> Vec<(&str, &str)> {
+    let findings = result["boards"][0]["findings"].as_array().unwrap().iter();
+    let text = |finding: &'_ Value, key: &str| finding[key].as_str().unwrap().to_owned();
+    let stale = findings.filter(|finding| text(finding, "check") == "stale-export");
+    stale.map(|finding| (finding["level"].as_str().unwrap(), finding["message"].as_str().unwrap())).collect()
+}
+
+#[test]
+fn a_part_that_is_no_longer_drawn_shows_that_the_export_is_old() {
+    let folder = tempfile::tempdir().unwrap();
+    let netlist = board(folder.path());
+    let gone = |names: &'static [&str]| {
+        draw(&netlist, folder.path(), Layout::Lists, |reference| {
+            (!names.contains(&reference)).then(|| reference.to_owned())
+        });
+        result(folder.path(), "gauge.net")
+    };
+    let whole = gone(&[]);
+    assert_eq!(stale(&whole), []);
+    let one = gone(&["U3"]);
+    let message = "the netlist is older than its schematic: U3 is no longer drawn";
+    assert_eq!(stale(&one), [("warning", message)]);
+    let message = "the netlist is older than its schematic: C10, C11, U3 and 1 more are no longer drawn";
+    assert_eq!(stale(&gone(&["C10", "C11", "U3", "U4"])), [("warning", message)]);
+    assert_eq!(whole["boards"][0]["counts"]["review"], 0);
+    assert_eq!(one["boards"][0]["counts"]["review"], 1);
+    assert_eq!(whole["boards"][0]["counts"]["fails"], one["boards"][0]["counts"]["fails"]);
+    gone(&["U3"]);
+    insta::assert_snapshot!(told(folder.path(), "stale-export"));
+}
+
+#[test]
+fn a_sheet_that_was_written_well_after_the_netlist_is_told_and_can_be_accepted() {
+    let folder = tempfile::tempdir().unwrap();
+    let netlist = board(folder.path());
+    draw(&netlist, folder.path(), Layout::Lists, as_drawn);
+    let set_back = |file: &str, seconds: u64| {
+        let time = std::time::SystemTime::now() - std::time::Duration::from_secs(seconds);
+        fs::File::options().write(true).open(folder.path().join(file)).unwrap().set_modified(time).unwrap();
+    };
+    set_back("gauge.net", 30);
+    assert_eq!(stale(&result(folder.path(), "gauge.net")), []);
+    set_back("gauge.net", 3600);
+    set_back("logic.kicad_sch", 7200);
+    let found = result(folder.path(), "gauge.net");
+    let message =
+        "the netlist may be older than its schematic: power.kicad_sch, sensor.kicad_sch were written after it";
+    assert_eq!(stale(&found), [("warning", message)]);
+    let findings = found["boards"][0]["findings"].as_array().unwrap();
+    let finding = findings.iter().find(|finding| finding["check"] == "stale-export").unwrap();
+    assert_eq!(finding["position"]["file"], "gauge.net");
+    let offset = finding["position"]["offset"].as_u64().unwrap() as usize;
+    assert!(netlist[offset..].starts_with("\"gauge.kicad_sch\""));
+    let declared = folder.path().join("gauge.railworthy.toml");
+    let fingerprint = finding["fingerprint"].as_str().unwrap();
+    let accept = format!("[[accept]]\ncheck = \"stale-export\"\nfinding = \"{fingerprint}\"\nreason = \"a test\"\n");
+    fs::write(&declared, fs::read_to_string(&declared).unwrap() + &accept).unwrap();
+    let found = result(folder.path(), "gauge.net");
+    assert_eq!((&found["boards"][0]["counts"]["review"], stale(&found).len()), (&Value::from(0), 1));
 }

@@ -54,10 +54,16 @@ pub fn find(netlist: &Path) -> (Option<PathBuf>, Option<PathBuf>) {
 /// The board's own file, where it exists.
 #[must_use]
 pub fn find_own(netlist: &Path) -> Option<PathBuf> {
+    own_file(netlist).filter(|path| exists(path))
+}
+
+/// Where the board's own file lies, if it is there; `None` where the path names no file.
+#[must_use]
+pub fn own_file(netlist: &Path) -> Option<PathBuf> {
     let mut name = netlist.file_stem()?.to_owned();
     name.push(".");
     name.push(HOUSE_FILE);
-    Some(netlist.with_file_name(name)).filter(|path| exists(path))
+    Some(netlist.with_file_name(name))
 }
 
 /// The house file of a folder, where it exists.

@@ -24,7 +24,7 @@ mod texts;
 pub use declared::{Declared, Place};
 pub use device_model::{Allowed, DeviceModel, ModelKind};
 pub use fault::TextFault;
-pub use files::{FileError, HOUSE_FILE, LARGEST_FILE, Links, find, find_house, find_own, read_source};
+pub use files::{FileError, HOUSE_FILE, LARGEST_FILE, Links, find, find_house, find_own, own_file, read_source};
 pub(crate) use files::{exists, parent};
 pub use model::{
     Accept, Board, Esr, LoadEntry, LoadKind, PartEntry, RailEntry, SettingValue, Slack, Standard, StandardVoltage,

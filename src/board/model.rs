@@ -9,6 +9,7 @@ use crate::source::Source;
 
 use super::declared::Declared;
 use super::device_model::DeviceModel;
+use super::texts::read_slack;
 use crate::source::toml::Date;
 
 /// What is declared about a board: the house file, the board's own file and the fields on its symbols, merged.
@@ -278,6 +279,14 @@ pub struct Slack {
     pub value: f64,
     /// What it measures.
     pub dimension: Dimension,
+}
+
+impl Slack {
+    /// A slack as a board file states it: one figure with its unit.
+    #[must_use]
+    pub fn read(text: &str) -> Option<Self> {
+        read_slack(text).ok()
+    }
 }
 
 /// `[[accept]]`: a finding that someone has looked at.

@@ -188,11 +188,8 @@ fn day(value: Value<'_>) -> Option<Spanned<Date>> {
         return value.date();
     }
     let text = value.text()?;
-    let date = text.as_str().parse::<toml_edit::Datetime>().ok();
-    match date.filter(|date| date.time.is_none()).and_then(|date| date.date) {
-        Some(date) => {
-            Some(Spanned { value: Date { year: date.year, month: date.month, day: date.day }, span: text.span() })
-        }
+    match Date::read(text.as_str()) {
+        Some(value) => Some(Spanned { value, span: text.span() }),
         None => {
             text.refuse(format!("`{}` must be a date", value.key()), "not a date", "write a date: 2027-06-30");
             None

@@ -4,6 +4,8 @@ use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
 
+use crate::source::toml::Date;
+
 /// Judges the linear regulators and voltage references of a schematic netlist before boards are ordered.
 #[derive(Debug, Parser)]
 #[command(
@@ -31,6 +33,8 @@ pub(super) enum Command {
     Explain(Explain),
     /// Compare a board with what it was: what a change brings and takes away
     Compare(Compare),
+    /// Draft the board file entries that accept what is found on a board, with a reason
+    Accept(Accept),
     /// List what is known: checks, part families, supplies, technologies, quantities
     Catalog(Catalog),
     /// Begin a part file for a part that is not known, from what its symbol tells
@@ -105,6 +109,45 @@ pub(super) struct Compare {
     /// Show findings alone, without headings, figures and summaries
     #[arg(long)]
     pub(super) quiet: bool,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Accept {
+    /// Netlist export; `-` reads standard input
+    #[arg(value_name = "BOARD.net")]
+    pub(super) netlist: PathBuf,
+
+    /// Why the findings are accepted
+    #[arg(long, value_name = "TEXT")]
+    pub(super) reason: String,
+
+    /// The last day on which they are accepted
+    #[arg(long, value_name = "YYYY-MM-DD", value_parser = day)]
+    pub(super) until: Option<Date>,
+
+    /// The least level of findings that are accepted
+    #[arg(long, value_enum, default_value_t, value_name = "LEVEL")]
+    pub(super) least: Least,
+
+    /// Only what this check finds; may be given more than once
+    #[arg(long, value_name = "CHECK")]
+    pub(super) check: Vec<String>,
+
+    /// Only what is found about this part; may be given more than once
+    #[arg(long, value_name = "PART")]
+    pub(super) part: Vec<String>,
+
+    /// Write the entries behind what stands in the board file, whole or not at all; one that is not there is made
+    #[arg(long)]
+    pub(super) write: bool,
+
+    #[command(flatten)]
+    pub(super) input: Input,
+}
+
+/// A day as typed.
+fn day(text: &str) -> Result<Date, String> {
+    Date::read(text).ok_or_else(|| "write a date: 2027-06-30".to_owned())
 }
 
 #[derive(Debug, Args)]
@@ -242,6 +285,14 @@ pub(super) enum FailOn {
     Warning,
     Note,
     Never,
+}
+
+#[derive(Debug, Clone, Copy, Default, PartialEq, Eq, ValueEnum)]
+pub(super) enum Least {
+    Error,
+    #[default]
+    Warning,
+    Note,
 }
 
 #[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]

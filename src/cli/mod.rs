@@ -1,5 +1,6 @@
 //! Arguments, files, exit status.
 
+mod accept;
 mod args;
 mod boards;
 mod catalog;
@@ -91,6 +92,7 @@ fn status(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<'
     let terminal = Terminal::of(typed.color);
     match &typed.command {
         Command::Check(check) => check::run(check, terminal, streams),
+        Command::Accept(accept) => accept::run(accept, terminal, streams),
         Command::Rails(rails) => rails::run(rails, terminal, streams),
         Command::Explain(explain) => explain::run(explain, terminal, streams),
         Command::Compare(compare) => compare::run(compare, terminal, streams),

@@ -1,5 +1,6 @@
 //! Results as bytes: text for people, JSON for programs. Every text that comes from a file passes through [`inert()`].
 
+mod accept;
 mod board;
 pub mod catalog;
 mod catalog_part;
@@ -28,6 +29,7 @@ mod settle;
 mod text;
 mod vet;
 
+pub use accept::{Acceptance, acceptances};
 pub use board::BoardResult;
 pub use draft::{draft, known as known_draft};
 pub use explain::{explain_check, explain_review_check};

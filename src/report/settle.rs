@@ -25,11 +25,13 @@ pub(super) fn lines(settle: &Settle) -> Vec<String> {
     lines
 }
 
-/// A TOML string.
-fn text(value: &str) -> String {
+/// A TOML string that acts on nothing, and that [`super::guarded`] leaves as it is.
+pub(super) fn text(value: &str) -> String {
     let mut out = String::from('"');
+    let mut last = '"';
     for sign in value.chars() {
         match sign {
+            '#' if last == '#' => out.push_str("\\u0023"),
             '"' | '\\' => {
                 out.push('\\');
                 out.push(sign);
@@ -37,6 +39,7 @@ fn text(value: &str) -> String {
             _ if super::acts(sign) => out.push_str(&format!("\\U{:08x}", u32::from(sign))),
             _ => out.push(sign),
         }
+        last = sign;
     }
     out.push('"');
     out

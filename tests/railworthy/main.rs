@@ -2,6 +2,7 @@
 
 #![allow(clippy::unwrap_used, clippy::indexing_slicing, reason = "a test that meets what it does not expect fails")]
 
+mod accept_command;
 mod accepted;
 mod archive;
 mod check_values;

@@ -27,6 +27,16 @@ pub struct Date {
     pub day: u8,
 }
 
+impl Date {
+    /// The day of a text such as `2027-06-30`.
+    #[must_use]
+    pub fn read(text: &str) -> Option<Self> {
+        let read = text.trim().parse::<toml_edit::Datetime>().ok().filter(|read| read.time.is_none())?;
+        let date = read.date?;
+        Some(Self { year: date.year, month: date.month, day: date.day })
+    }
+}
+
 impl fmt::Display for Date {
     fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
         write!(formatter, "{:04}-{:02}-{:02}", self.year, self.month, self.day)

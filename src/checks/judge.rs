@@ -41,8 +41,12 @@ pub fn judge_apart(checks: &Checks, subjects: &[Subject], figures: &dyn Figures)
         told.extend(finding);
         outcomes.push(outcome);
     }
-    // Stable: within a level the order of checks, then of subjects, stays.
-    findings.sort_by_key(|finding: &Finding| finding.level);
+    // Stable: within a level the order of checks, then of subjects, stays; but what is unknown of a regulator tells what
+    // is unknown of its capacitors for the same reason.
+    let told_along = |finding: &Finding| {
+        finding.verdict == Verdict::Unknown && matches!(finding.subject, Subject::Capacitor { .. })
+    };
+    findings.sort_by_key(|finding: &Finding| (finding.level, told_along(finding)));
     Judgement { findings, suppressed, counts: Counts::of(&outcomes), outcomes }
 }
 

@@ -32,7 +32,7 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         |facts, subject| of(subject, |device, net| Value::Figure(facts.voltage_across(device, net))),
     ),
     entry("rating", ValueKind::Figure(Dimension::VOLTAGE), "its rated voltage, where stated", |facts, subject| {
-        of(subject, |device, _| match facts.rating(device) {
+        of(subject, |device, net| match facts.rating(device).or_else(|| facts.wanted_rating(device, net)) {
             Some(rating) => Value::Figure(rating),
             None => Value::inapplicable("no rating is stated"),
         })
@@ -50,7 +50,7 @@ pub(super) const DEFINITIONS: &[Definition] = &[
 
 const TECHNOLOGIES: &[&str] = &["ceramic-1", "ceramic-2", "electrolytic", "tantalum", "polymer", "film"];
 
-const fn entry(
+pub(super) const fn entry(
     name: &'static str,
     kind: ValueKind,
     meaning: &'static str,
@@ -63,7 +63,7 @@ const fn farads(name: &'static str, meaning: &'static str, compute: fn(&Facts<'_
     entry(name, ValueKind::Figure(Dimension::CAPACITANCE), meaning, compute)
 }
 
-fn of(subject: Subject, compute: impl FnOnce(DeviceId, NetId) -> Value) -> Value {
+pub(super) fn of(subject: Subject, compute: impl FnOnce(DeviceId, NetId) -> Value) -> Value {
     match subject {
         Subject::Capacitor { device, net } => compute(device, net),
         _ => Value::inapplicable("not a capacitor"),

@@ -1,7 +1,8 @@
 //! What figures are computed from, and the memory of those that were.
 
 use std::cell::{OnceCell, RefCell};
-use std::collections::{BTreeSet, HashMap};
+use std::collections::btree_map::Entry;
+use std::collections::{BTreeMap, BTreeSet, HashMap};
 use std::ops::Deref;
 use std::rc::Rc;
 
@@ -71,6 +72,7 @@ impl Deref for KnownBank {
 /// Regulators by where they lie; looked up, never gone through in order.
 #[derive(Debug, Default)]
 struct Index {
+    by_input: HashMap<NetId, Vec<usize>>,
     by_output: HashMap<NetId, Vec<usize>>,
     by_device: HashMap<DeviceId, Vec<usize>>,
 }
@@ -222,7 +224,8 @@ impl<'a> Facts<'a> {
         }
     }
 
-    /// The capacitors at inputs and outputs of regulators, each once for each net.
+    /// The capacitors at inputs and outputs of regulators, each once: in the bank of the net that it lies on itself, or
+    /// of the first that it is in.
     fn banked(&self) -> BTreeSet<Subject> {
         let ends = |regulator: &Regulator| {
             let sides = [(regulator.input_net, Side::Input), (regulator.output_net, Side::Output)];
@@ -233,9 +236,18 @@ impl<'a> Facts<'a> {
         let capacitors = each.flat_map(|bank| {
             let net = bank.net;
             let devices: Vec<DeviceId> = bank.branches.iter().map(|branch| branch.capacitor).collect();
-            devices.into_iter().map(move |device| Subject::Capacitor { device, net })
+            devices.into_iter().map(move |device| (device, net))
         });
-        capacitors.collect()
+        let mut found: BTreeMap<DeviceId, NetId> = BTreeMap::new();
+        for (device, net) in capacitors {
+            let own = self.circuit().other_end(device, net).is_some();
+            match found.entry(device) {
+                Entry::Vacant(free) => _ = free.insert(net),
+                Entry::Occupied(mut known) if own => _ = known.insert(net),
+                Entry::Occupied(_) => {}
+            }
+        }
+        found.into_iter().map(|(device, net)| Subject::Capacitor { device, net }).collect()
     }
 
     fn index(&self) -> &Index {
@@ -243,6 +255,9 @@ impl<'a> Facts<'a> {
             let mut index = Index::default();
             for (id, regulator) in self.regulators() {
                 index.by_device.entry(regulator.device).or_default().push(id.0);
+                if let Some(input) = regulator.input_net {
+                    index.by_input.entry(input).or_default().push(id.0);
+                }
                 if let Some(output) = regulator.output_net {
                     index.by_output.entry(output).or_default().push(id.0);
                 }
@@ -251,10 +266,21 @@ impl<'a> Facts<'a> {
         })
     }
 
+    /// The regulators whose input lies on a net, in order.
+    pub(super) fn fed_by(&self, net: NetId) -> impl Iterator<Item = &'a Regulator> + use<'_, 'a> {
+        let found = self.index().by_input.get(&net).map_or(&[][..], Vec::as_slice);
+        found.iter().filter_map(|at| self.design.regulators.get(*at))
+    }
+
     /// The regulators whose output lies on a net, in order.
     pub(super) fn feeding(&self, net: NetId) -> impl Iterator<Item = &'a Regulator> + use<'_, 'a> {
+        self.feeding_ids(net).map(|(_, regulator)| regulator)
+    }
+
+    /// The same, with their ids.
+    pub(super) fn feeding_ids(&self, net: NetId) -> impl Iterator<Item = (RegulatorId, &'a Regulator)> + use<'_, 'a> {
         let found = self.index().by_output.get(&net).map_or(&[][..], Vec::as_slice);
-        found.iter().filter_map(|at| self.design.regulators.get(*at))
+        found.iter().filter_map(|at| Some((RegulatorId(*at), self.design.regulators.get(*at)?)))
     }
 
     /// The regulators in a part, one for each output.

@@ -19,7 +19,7 @@ const SOME_CERAMIC: (f64, f64, f64) = (0.01e-6, 0.1e-6, 1e-6);
 /// Two capacitances that differ by less than this part are one figure written twice.
 const SAME: f64 = 1e-3;
 
-const KINDS: &[&str] = &["required", "recommended", "recalled", "optional"];
+pub(super) const KINDS: &[&str] = &["required", "recommended", "recalled", "optional"];
 
 pub(super) const DEFINITIONS: &[Definition] = &[
     farads("minimum_capacitance", "the least output capacitance that the part asks for", |facts, subject| {

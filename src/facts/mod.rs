@@ -3,6 +3,7 @@
 //! A figure is one [`Definition`] in the file that computes it, and that file one line in [`DEFINITIONS`].
 
 mod battery;
+mod bypass;
 mod capacitance;
 mod capacitor;
 mod circuit_values;
@@ -13,10 +14,12 @@ mod dropout;
 mod enable;
 mod esr;
 mod family_figure;
+mod feedback;
 mod flow;
 mod headroom;
 mod heat;
 mod identity;
+mod least_load;
 mod load;
 mod net;
 mod open_pins;
@@ -25,12 +28,15 @@ mod pins;
 mod programmed;
 mod protection;
 mod ratings;
+mod reference_load;
 mod sequence;
 mod sheet;
 mod shunt;
 mod startup;
+mod stress;
 mod target;
 mod technology;
+mod tied;
 mod value;
 
 pub use context::Facts;
@@ -52,6 +58,7 @@ pub const DEFINITIONS: &[&[Definition]] = &[
     demand::DEFINITIONS,
     esr::DEFINITIONS,
     capacitor::DEFINITIONS,
+    stress::DEFINITIONS,
     net::DEFINITIONS,
     enable::DEFINITIONS,
     shunt::DEFINITIONS,
@@ -62,6 +69,11 @@ pub const DEFINITIONS: &[&[Definition]] = &[
     ratings::DEFINITIONS,
     protection::DEFINITIONS,
     sequence::DEFINITIONS,
+    bypass::DEFINITIONS,
+    reference_load::DEFINITIONS,
+    feedback::DEFINITIONS,
+    least_load::DEFINITIONS,
+    tied::DEFINITIONS,
 ];
 
 /// The definition of a name for a kind of subject.

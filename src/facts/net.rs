@@ -31,7 +31,7 @@ const fn entry(
     Definition { name, of: SubjectKind::Net, kind, meaning, defined_in: file!(), compute }
 }
 
-fn of(subject: Subject, compute: impl FnOnce(NetId) -> Value) -> Value {
+pub(super) fn of(subject: Subject, compute: impl FnOnce(NetId) -> Value) -> Value {
     match subject {
         Subject::Net(net) => compute(net),
         _ => Value::inapplicable("not a net"),

@@ -137,7 +137,7 @@ fn names(facts: &Facts<'_>, regulator: &Regulator, group: Group) -> Value {
 }
 
 /// `pin 3 (VI)`, `pin 3 (VI), pin 4 (VI)`.
-fn listed(pins: &[&Pin]) -> String {
+pub(super) fn listed(pins: &[&Pin]) -> String {
     pins.iter().map(|pin| named(pin)).collect::<Vec<_>>().join(", ")
 }
 

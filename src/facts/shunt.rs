@@ -9,7 +9,7 @@ use crate::recognize::{Regulator, RegulatorKind};
 
 /// What a supply pin on a reference is taken to draw (amperes): low, nominal, high.
 const SUPPLY_PIN: (f64, f64, f64) = (0.0, 1e-3, 5e-3);
-/// The part of the bias that signal pins on a reference may draw, at worst.
+/// The part of its bias, or of what it can give, that signal pins on a reference may draw, at worst.
 const SIGNAL_SHARE: f64 = 0.25;
 /// Minimum bias of a shunt that no family knows (amperes): low, nominal, high (common practice).
 const MINIMUM_BIAS: (f64, f64, f64) = (0.05e-3, 0.5e-3, 1e-3);
@@ -30,8 +30,11 @@ pub(super) const DEFINITIONS: &[Definition] = &[
             })
         },
     ),
-    amperes("reference_load", "the current drawn from a shunt reference", |facts, subject| {
-        shunt(facts, subject, |regulator| Value::Figure(facts.reference_load(regulator)))
+    amperes("reference_load", "the current drawn from a reference", |facts, subject| {
+        of(facts, subject, |regulator| match regulator.kind {
+            RegulatorKind::Shunt | RegulatorKind::Reference => Value::Figure(facts.reference_load(regulator)),
+            _ => Value::inapplicable("not a reference"),
+        })
     }),
     amperes("bias_minimum", "the least current at which a shunt reference regulates", |facts, subject| {
         shunt(facts, subject, |regulator| Value::Figure(facts.least_bias(regulator)))
@@ -153,8 +156,8 @@ impl Facts<'_> {
         let evidence = Evidence::new(Grade::Assumed, format!("load on {name}"), "no load declared")
             .settled_by(Settle::new(Table::Load, name, "current", "0 .. 50 µA"));
         let (low, nominal, high) = SUPPLY_PIN;
-        let most =
-            self.feed_current(regulator).and_then(|feed| feed.shown()).map_or(0.0, |feed| feed.nominal().abs());
+        let most = self.feed_current(regulator).or_else(|| self.largest_load(regulator));
+        let most = most.and_then(|most| most.shown()).map_or(0.0, |most| most.nominal().abs());
         let signals = if signal_pins > 0.0 { most * SIGNAL_SHARE } else { 0.0 };
         let range = Range::clamped(low * supply_pins, nominal * supply_pins, (high * supply_pins + signals).max(0.0));
         Quantity::given(Dimension::CURRENT, range, Pair::NOT_NEGATIVE, evidence)

@@ -16,6 +16,7 @@ mod documents;
 mod draft;
 mod exported;
 mod failures;
+mod field_failures;
 mod fingerprints;
 mod hostile_formats;
 mod house_rules;

@@ -41,6 +41,7 @@ mod shared;
 mod sheets;
 mod small_board;
 mod spoiled;
+mod sweeps;
 mod text_formats;
 mod user_checks;
 mod wiring;

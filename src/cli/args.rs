@@ -41,6 +41,12 @@ pub(super) enum Command {
     Draft(Draft),
     /// Validate rule folders and run the cases of their checks
     Vet(Vet),
+    /// Print a JSON Schema of a file that people write, or of a result
+    Schema(Schema),
+    /// Print completions for a shell
+    Completions(Completions),
+    /// Print the manual page of the program, or of one command
+    Manual(Manual),
 }
 
 #[derive(Debug, Args)]
@@ -220,6 +226,27 @@ pub(super) struct Vet {
     /// List what the built-in part files lack, too; of folders that are named it is always listed
     #[arg(long)]
     pub(super) lacks: bool,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Schema {
+    /// Which: board, check, part, result, rails; without it they are listed
+    #[arg(value_name = "NAME")]
+    pub(super) name: Option<String>,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Completions {
+    /// The shell
+    #[arg(value_enum, value_name = "SHELL")]
+    pub(super) shell: clap_complete::Shell,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Manual {
+    /// The command; without it the program as a whole
+    #[arg(value_name = "COMMAND")]
+    pub(super) command: Option<String>,
 }
 
 /// What a board is judged under.

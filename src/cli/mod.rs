@@ -13,6 +13,7 @@ mod guard;
 mod input;
 mod output;
 mod rails;
+mod repository;
 mod settings;
 mod streams;
 mod vet;
@@ -99,6 +100,9 @@ fn status(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<'
         Command::Catalog(catalog) => catalog::run(catalog, terminal, streams),
         Command::Draft(draft) => draft::run(draft, terminal, streams),
         Command::Vet(vet) => vet::run(vet, terminal, streams),
+        Command::Schema(schema) => repository::schema(schema, streams),
+        Command::Completions(completions) => repository::completions(completions, streams),
+        Command::Manual(manual) => repository::manual(manual, streams),
     }
 }
 

@@ -23,6 +23,10 @@ pub enum Grade {
 }
 
 impl Grade {
+    /// Every grade, the strongest first.
+    pub const ALL: &'static [Self] =
+        &[Self::Declared, Self::Drawn, Self::Published, Self::Described, Self::Inferred, Self::Assumed];
+
     /// Whether a failure may be claimed on it.
     #[must_use]
     pub fn is_fact(self) -> bool {

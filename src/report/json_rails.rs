@@ -12,7 +12,7 @@ use crate::facts::{Facts, RailOrigin, Subject, Value};
 use crate::quantity::Quantity;
 
 /// The name of the layout.
-const SCHEMA: &str = "railworthy-rails/1";
+pub(super) const SCHEMA: &str = "railworthy-rails/1";
 
 /// The figures that other programs may rely on, known or not.
 pub(super) const FACTS: &[&str] = &[

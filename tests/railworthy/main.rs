@@ -37,6 +37,7 @@ mod reference_tokens;
 mod regulator_sheets;
 mod report;
 mod result_json;
+mod schemas;
 mod shared;
 mod sheets;
 mod small_board;

@@ -6,10 +6,13 @@ use std::path::PathBuf;
 pub(crate) fn shared_folder() -> Option<PathBuf> {
     let folder = std::env::var_os("RAILWORTHY_SHARED").map(PathBuf::from);
     if folder.is_none() {
-        #[allow(clippy::print_stderr, reason = "a test that skips says so")]
-        {
-            eprintln!("skipped: RAILWORTHY_SHARED is not set");
-        }
+        tell_skipped("RAILWORTHY_SHARED is not set");
     }
     folder
+}
+
+/// Says that a test skips, and why.
+#[allow(clippy::print_stderr, reason = "a test that skips says so")]
+pub(crate) fn tell_skipped(why: &str) {
+    eprintln!("skipped: {why}");
 }

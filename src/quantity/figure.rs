@@ -127,7 +127,8 @@ impl Quantity {
         for (index, (input, _)) in inputs.iter().enumerate() {
             figure.inherit(input);
             if !input.guesses.is_empty() {
-                figure.inherit_guesses(input, swing(&formula, &mut values, index, input.worst));
+                let swing = swing(&formula, &mut values, index, input.worst);
+                figure.inherit_guesses(input, swing);
             }
         }
         figure
@@ -147,12 +148,18 @@ impl Quantity {
         self.missing.take_over(&other.missing, Arc::ptr_eq);
     }
 
-    /// Takes over the guesses of an input which, moved over its whole range, moves this figure by `swing`.
+    /// Takes over the guesses of an input which, moved over its whole range, moves this figure by `swing`. Facts take
+    /// their part of that range: a guess gets no more of the swing than it moves of the input.
     fn inherit_guesses(&mut self, input: &Quantity, swing: f64) {
         let total: f64 = input.guesses.values().map(|guess| guess.moves).sum();
+        let whole = total.max(input.worst.width());
         let shared = input.guesses.map(|guess| {
-            let share = if total > 0.0 && total.is_finite() { guess.moves / total } else { 1.0 };
-            let moves = if swing.is_nan() { 0.0 } else { swing.abs() * share };
+            let share = match guess.moves {
+                0.0 => 0.0,
+                moves if whole.is_finite() => moves / whole,
+                _ => 1.0,
+            };
+            let moves = if swing.is_nan() || share == 0.0 { 0.0 } else { swing.abs() * share };
             Guess { evidence: Arc::clone(&guess.evidence), moves }
         });
         self.guesses = if self.guesses.is_empty() {
@@ -284,6 +291,19 @@ mod tests {
         assert_eq!(headroom.kind().low(), f64::INFINITY);
         let moves: Vec<f64> = headroom.guesses().map(|guess| guess.moves).collect();
         assert!(moves.len() == 1 && (moves[0] - 0.4).abs() < 1e-12);
+    }
+
+    #[test]
+    fn a_guess_is_not_charged_with_what_the_facts_beside_it_move() {
+        let exactly = |value| Range::new(value, value, value).unwrap();
+        let supply = Quantity::fact(Dimension::VOLTAGE, Range::between(4.0, 6.0), evidence(Grade::Declared, "in"));
+        let guess = |range| Quantity::given(Dimension::VOLTAGE, range, Pair::ANY, evidence(Grade::Assumed, "drop"));
+        let moves = |drop: Quantity| {
+            let twice = supply.minus(&drop).scaled(2.0);
+            twice.guesses().map(|guess| guess.moves).sum::<f64>()
+        };
+        assert!((moves(guess(Range::between(0.0, 0.5))) - 1.0).abs() < 1e-12);
+        assert_eq!(moves(guess(exactly(0.0))), 0.0);
     }
 
     #[test]

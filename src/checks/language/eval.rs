@@ -273,8 +273,11 @@ fn decision(verdict: Verdict, a: &Quantity, b: &Quantity, figures: Vec<(String, 
     };
     let mut settle: Vec<Settle> = missing.iter().filter_map(|evidence| evidence.settle.clone()).collect();
     if matches!(verdict, Verdict::Doubtful | Verdict::Tight) {
-        let mut guesses: Vec<_> = difference.guesses().filter(|guess| guess.moves > 0.0).collect();
+        let mut guesses: Vec<_> = difference.guesses().collect();
         guesses.sort_by(|one, other| other.moves.total_cmp(&one.moves));
+        // A guess of one value moves nothing; what is doubtful may hang on it all the same.
+        let moving = guesses.iter().any(|guess| guess.moves > 0.0) || verdict == Verdict::Tight;
+        guesses.retain(|guess| guess.moves > 0.0 || !moving);
         settle.extend(guesses.into_iter().filter_map(|guess| guess.evidence.settle.clone()));
     }
     let mut seen = std::collections::BTreeSet::new();

@@ -11,6 +11,7 @@ mod fields;
 mod files;
 mod merge;
 mod model;
+mod outline;
 mod read;
 mod read_entries;
 mod read_part;
@@ -30,4 +31,5 @@ pub use model::{
     Accept, Board, Esr, LoadEntry, LoadKind, PartEntry, RailEntry, SettingValue, Slack, Standard, StandardVoltage,
     SupplyEntry, SupplyNodes,
 };
+pub use outline::Outline;
 pub use read::Options;

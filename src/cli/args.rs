@@ -35,6 +35,8 @@ pub(super) enum Command {
     Compare(Compare),
     /// Draft the board file entries that accept what is found on a board, with a reason
     Accept(Accept),
+    /// Begin or continue a board file: what is not declared and decides most comes first
+    Declare(Declare),
     /// List what is known: checks, part families, supplies, technologies, quantities
     Catalog(Catalog),
     /// Begin a part file for a part that is not known, from what its symbol tells
@@ -182,6 +184,24 @@ pub(super) struct Explain {
 
     #[command(flatten)]
     pub(super) input: Input,
+}
+
+#[derive(Debug, Args)]
+pub(super) struct Declare {
+    /// Netlist export; `-` reads standard input
+    #[arg(value_name = "BOARD.net")]
+    pub(super) netlist: PathBuf,
+
+    #[command(flatten)]
+    pub(super) input: Input,
+
+    /// Write the board file to a file, whole or not at all
+    #[arg(long, value_name = "FILE")]
+    pub(super) output: Option<PathBuf>,
+
+    /// Let the output take the place of a file that exists
+    #[arg(long, requires = "output")]
+    pub(super) replace: bool,
 }
 
 #[derive(Debug, Args)]

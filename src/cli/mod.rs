@@ -7,6 +7,7 @@ mod catalog;
 mod check;
 mod compare;
 mod day;
+mod declare;
 mod draft;
 mod explain;
 mod guard;
@@ -97,6 +98,7 @@ fn status(arguments: impl IntoIterator<Item = OsString>, streams: &mut Streams<'
         Command::Rails(rails) => rails::run(rails, terminal, streams),
         Command::Explain(explain) => explain::run(explain, terminal, streams),
         Command::Compare(compare) => compare::run(compare, terminal, streams),
+        Command::Declare(declare) => declare::run(declare, terminal, streams),
         Command::Catalog(catalog) => catalog::run(catalog, terminal, streams),
         Command::Draft(draft) => draft::run(draft, terminal, streams),
         Command::Vet(vet) => vet::run(vet, terminal, streams),

@@ -6,6 +6,7 @@ pub mod catalog;
 mod catalog_part;
 mod caution;
 pub mod compare;
+mod declare;
 mod draft;
 mod excerpt;
 mod explain;
@@ -32,6 +33,7 @@ mod vet;
 
 pub use accept::{Acceptance, acceptances};
 pub use board::BoardResult;
+pub use declare::declare;
 pub use draft::{draft, known as known_draft};
 pub use explain::{explain_check, explain_review_check};
 pub use inert::{acts, guarded, inert, inert_short};

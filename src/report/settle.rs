@@ -10,19 +10,27 @@ pub(super) fn phrase(settle: &Settle) -> String {
 
 /// The lines of a board file that declare it, with an example for a value.
 pub(super) fn lines(settle: &Settle) -> Vec<String> {
-    let header = match settle.table {
+    let mut lines = vec![header(settle.table)];
+    lines.extend(target_key(settle.table).map(|key| format!("{key} = {}", text(&settle.target))));
+    lines.push(format!("{} = {}", settle.key, value(settle.example)));
+    lines
+}
+
+/// The header of an entry.
+pub(super) fn header(table: Table) -> String {
+    match table {
         Table::Board => "[board]".to_owned(),
         table => format!("[[{}]]", table.name()),
-    };
-    let target = match settle.table {
+    }
+}
+
+/// The key that says what an entry is about.
+pub(super) fn target_key(table: Table) -> Option<&'static str> {
+    match table {
         Table::Board => None,
         Table::Part => Some("ref"),
         Table::Supply | Table::Load | Table::Rail => Some("net"),
-    };
-    let mut lines = vec![header];
-    lines.extend(target.map(|key| format!("{key} = {}", text(&settle.target))));
-    lines.push(format!("{} = {}", settle.key, value(settle.example)));
-    lines
+    }
 }
 
 /// A TOML string that acts on nothing, and that [`super::guarded`] leaves as it is.
@@ -46,7 +54,7 @@ pub(super) fn text(value: &str) -> String {
 }
 
 /// An example as TOML: flags, tables and what is quoted already stay as they are.
-fn value(example: &str) -> String {
+pub(super) fn value(example: &str) -> String {
     let is_value = matches!(example, "true" | "false") || example.starts_with(['{', '[', '"']);
     if is_value { example.to_owned() } else { text(example) }
 }

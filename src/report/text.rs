@@ -77,7 +77,7 @@ fn one(board: &BoardResult, options: TextOptions, of_many: bool) -> String {
     }
     text.push_str(&findings(examination, look));
     if !options.quiet {
-        text.push_str(&summary(examination, look));
+        text.push_str(&summary(examination, board.board_file.is_none(), look));
         if !of_many {
             text.push_str(&look.faint(wrapped(&caution(examination), "", "  ", look.width()).trim_end()));
             text.push('\n');
@@ -187,11 +187,14 @@ pub(super) fn accepted_of(accepted: &[&Reviewed], look: Look) -> String {
     text
 }
 
-fn summary(examination: &Examination, look: Look) -> String {
+fn summary(examination: &Examination, undeclared: bool, look: Look) -> String {
     let mut text = String::new();
     text.push_str(&wrapped(&counts(examination), "", "  ", look.width()));
     if !examination.declare_first.is_empty() {
-        let line = format!("Declare first: {}", declarations(&examination.declare_first));
+        let mut line = format!("Declare first: {}", declarations(&examination.declare_first));
+        if undeclared {
+            line.push_str("; `railworthy declare` begins a board file that asks for them");
+        }
         text.push_str(&wrapped(&line, "", "  ", look.width()));
     }
     text
@@ -254,9 +257,9 @@ pub(super) fn not_judged(examination: &Examination) -> String {
 }
 
 fn declarations(decisive: &[Decisive]) -> String {
-    let told = decisive
-        .iter()
-        .take(MOST_DECLARATIONS)
-        .map(|each| format!("{} (decides {})", settle::phrase(&each.settle), each.decides));
+    let told = decisive.iter().take(MOST_DECLARATIONS).map(|each| match each.decides {
+        0 => format!("{} (plays into {})", settle::phrase(&each.settle), each.concerns),
+        decides => format!("{} (decides {decides})", settle::phrase(&each.settle)),
+    });
     told.collect::<Vec<_>>().join(", ")
 }

@@ -140,10 +140,9 @@ pub fn examine_with_sheets(
         checks = checks.at_most(Verdict::Doubtful);
     }
     let design = recognize(circuit, &board, knowledge);
-    let Judged { findings, counts, review, told } =
+    let Judged { findings, counts, review, told, declare_first } =
         judged(&design, &board, knowledge, &checks, Given { netlist: &netlist, sheets, whole, today });
     let accepted = findings.iter().filter(|finding| finding.accepted.is_some()).count();
-    let declare_first = declare_first(&findings);
     Examination { netlist, board, design, findings, counts, accepted, review, told, problems, declare_first }
 }
 
@@ -193,6 +192,7 @@ struct Judged {
     counts: Counts,
     review: usize,
     told: Vec<Told>,
+    declare_first: Vec<Decisive>,
 }
 
 fn judged(design: &Design, board: &Board, knowledge: &Knowledge, checks: &Checks, given: Given<'_>) -> Judged {
@@ -226,7 +226,8 @@ fn judged(design: &Design, board: &Board, knowledge: &Knowledge, checks: &Checks
     findings.extend(notices);
     // Stable: within a level the order of checks and subjects stays.
     findings.sort_by_key(|found| found.finding.level);
-    Judged { findings, counts, review, told }
+    let declare_first = declare_first(&facts, &findings);
+    Judged { findings, counts, review, told, declare_first }
 }
 
 /// One open finding for what the same missing figures leave unknown; accepted ones stand apart, for an entry accepts

@@ -223,9 +223,12 @@ fn names_from_a_file_act_on_nothing() {
     for name in HOSTILE {
         let folder = folder_with("a.net", &board(name));
         // What every format of `check` makes of them: `hostile_formats`.
-        for arguments in
-            [&["rails", "a.net"][..], &["rails", "a.net", "--format", "json"], &["explain", "a.net", "U1"]]
-        {
+        for arguments in [
+            &["rails", "a.net"][..],
+            &["rails", "a.net", "--format", "json"],
+            &["explain", "a.net", "U1"],
+            &["declare", "a.net"],
+        ] {
             let run = run(folder.path(), arguments);
             assert_inert(&run.out, &format!("{name:?} {arguments:?}"));
             assert_inert(&run.err, &format!("{name:?} {arguments:?}"));

@@ -10,6 +10,7 @@ mod circuit_corpus;
 mod cli;
 mod compare;
 mod corpus_verdicts;
+mod declare;
 mod declared_parts;
 mod devices_symbols;
 mod documents;

@@ -6,6 +6,7 @@ mod accept_command;
 mod accepted;
 mod archive;
 mod check_values;
+mod check_values_supply;
 mod circuit_corpus;
 mod cli;
 mod compare;

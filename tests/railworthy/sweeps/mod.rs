@@ -4,8 +4,10 @@
 //! Each file sweeps the checks of one subject; the formula that gives an edge stands beside it, with its source.
 
 mod capacitors;
+mod power;
 mod references;
 mod set_points;
+mod supply;
 
 use railworthy::board::{Board, Options};
 use railworthy::checks::Verdict;

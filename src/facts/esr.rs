@@ -14,10 +14,6 @@ const COLD_FACTOR_FROM: f64 = 25.0;
 const WARM: f64 = 0.5;
 /// ESR of a capacitor that nothing is known of, ohms.
 const ANY_ESR: (f64, f64, f64) = (0.003, 0.1, 10.0);
-/// The band over which a bank's resistance is taken: where the loops of such parts cross over (hertz, logarithmic).
-const BAND: [f64; 7] = [20e3, 35e3, 60e3, 100e3, 170e3, 300e3, 500e3];
-/// The frequency of the bank's nominal resistance (hertz).
-const MIDBAND: f64 = 100e3;
 
 pub(super) const DEFINITIONS: &[Definition] = &[
     ohms(
@@ -25,9 +21,6 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         "ESR, with its series resistor, of the output capacitor that dominates the bank",
         |facts, subject| of(facts, subject, |regulator| facts.bulk_esr(regulator)),
     ),
-    ohms("bank_esr", "resistance of the whole output bank where the loop crosses over", |facts, subject| {
-        of(facts, subject, |regulator| facts.bank_esr(regulator))
-    }),
     ohms("esr_low", "the least ESR that the part is stable with", |facts, subject| {
         of(facts, subject, |regulator| facts.window_end(regulator, End::Low))
     }),
@@ -185,7 +178,7 @@ impl Facts<'_> {
         (told.technology.name == technology).then_some(told.evidence.grade)
     }
 
-    fn branch_esr(&self, branch: &Branch) -> Quantity {
+    pub(super) fn branch_esr(&self, branch: &Branch) -> Quantity {
         let own = self.capacitor_esr(branch.capacitor);
         match self.network(&branch.series, &[]) {
             Some(series) => own.plus(&series),
@@ -214,37 +207,6 @@ impl Facts<'_> {
             [esr, farads] => 1.0 / (std::f64::consts::TAU * esr * farads),
             _ => f64::NAN,
         }))
-    }
-
-    /// Re Z of the bank, each branch a capacitance with its ESR: the least over the band with every ESR low, the most
-    /// with every ESR high.
-    fn bank_esr(&self, regulator: &Regulator) -> Value {
-        let Some(bank) = self.bank_of(regulator, Side::Output) else {
-            return Value::inapplicable("the output is open");
-        };
-        let branches: Vec<(f64, Range, Quantity)> = counted(&bank)
-            .filter_map(|branch| {
-                let farads = self.circuit().device(branch.capacitor).amount.as_ref()?.amount;
-                let esr = self.branch_esr(branch);
-                Some((farads, esr.shown()?, esr))
-            })
-            .filter(|(farads, ..)| *farads > 0.0)
-            .collect();
-        if branches.is_empty() {
-            return Value::inapplicable("no output capacitor");
-        }
-        let at = |frequency: f64, pick: &dyn Fn(Range) -> f64| {
-            resistance(branches.iter().map(|(farads, esr, _)| (*farads, pick(*esr))), frequency)
-        };
-        let low = BAND.iter().map(|f| at(*f, &Range::low)).fold(f64::INFINITY, f64::min);
-        let high = BAND.iter().map(|f| at(*f, &Range::high)).fold(0.0, f64::max);
-        let range = Range::clamped(low, at(MIDBAND, &Range::nominal), high);
-        let grade = branches.iter().filter_map(|(_, _, esr)| esr.grade()).max().unwrap_or(Grade::Drawn);
-        let name = &self.circuit().net(bank.net).name;
-        let evidence =
-            Evidence::new(grade, format!("resistance of the bank on {name}"), "its capacitors in parallel");
-        let figure = Quantity::given(Dimension::RESISTANCE, range, Pair::NOT_NEGATIVE, evidence);
-        Value::Figure(branches.iter().fold(figure, |figure, (_, _, esr)| figure.also_resting_on(esr)))
     }
 
     fn window_end(&self, regulator: &Regulator, end: End) -> Value {
@@ -320,37 +282,4 @@ fn aged(reference: &str, technology: &Technology) -> Quantity {
     )
     .settled_by(Settle::new(Table::Part, reference, "esr", "20 .. 60 mΩ"));
     Quantity::given(Dimension::ONE, Range::clamped(1.0, 1.0, life.value.high()), Pair::NOT_NEGATIVE, evidence)
-}
-
-/// Re Z of branches `ESR + 1 / jωC` in parallel.
-fn resistance(branches: impl Iterator<Item = (f64, f64)>, frequency: f64) -> f64 {
-    let omega = std::f64::consts::TAU * frequency;
-    let (mut conductance, mut susceptance) = (0.0, 0.0);
-    for (farads, esr) in branches {
-        let reactance = 1.0 / (omega * farads);
-        let square = esr * esr + reactance * reactance;
-        conductance += esr / square;
-        susceptance += reactance / square;
-    }
-    conductance / (conductance * conductance + susceptance * susceptance)
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    #[test]
-    fn two_equal_branches_have_half_the_resistance() {
-        let one = resistance([(10e-6, 0.2)].into_iter(), 100e3);
-        let two = resistance([(10e-6, 0.2), (10e-6, 0.2)].into_iter(), 100e3);
-        assert!((one - 0.2).abs() < 1e-12 && (two - 0.1).abs() < 1e-12);
-    }
-
-    #[test]
-    fn a_large_ceramic_beside_an_electrolytic_takes_its_resistance_away() {
-        // Ten microfarads with 1 Ω beside the same of ceramic: well above the new pole at 31.8 kHz the ceramic rules.
-        let alone = resistance([(10e-6, 1.0)].into_iter(), 300e3);
-        let beside = resistance([(10e-6, 1.0), (10e-6, 0.005)].into_iter(), 300e3);
-        assert!(alone > 0.99 && beside < 0.02, "{alone} {beside}");
-    }
 }

@@ -19,6 +19,7 @@ mod flow;
 mod headroom;
 mod heat;
 mod identity;
+mod impedance;
 mod least_load;
 mod load;
 mod net;
@@ -57,6 +58,7 @@ pub const DEFINITIONS: &[&[Definition]] = &[
     capacitance::DEFINITIONS,
     demand::DEFINITIONS,
     esr::DEFINITIONS,
+    impedance::DEFINITIONS,
     capacitor::DEFINITIONS,
     stress::DEFINITIONS,
     net::DEFINITIONS,

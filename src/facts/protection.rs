@@ -87,7 +87,10 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         Dimension::CURRENT,
         "the current that resistors bring into the output from higher rails",
         |facts, subject| {
-            series(facts, subject, |facts, regulator| match facts.injected(regulator) {
+            of(facts, subject, |regulator| match facts.injected(regulator) {
+                _ if !matches!(regulator.kind, RegulatorKind::Series | RegulatorKind::Reference) => {
+                    Value::inapplicable("nothing passes through it")
+                }
                 Some(current) => Value::Figure(current),
                 None => Value::inapplicable("no resistor leads to the output from a higher rail"),
             })

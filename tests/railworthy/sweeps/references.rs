@@ -29,7 +29,7 @@ fn loaded(board: &str) -> Sweep {
         Part::two_ended("R1", "@", ("VREF", "GND")),
         Part::two_ended("C1", "2.2uF", ("VREF", "GND")),
     ];
-    Sweep::new(&parts, board, "reference-load", "U1")
+    Sweep::new(&parts, board, "current-rating", "U1")
 }
 
 #[test]

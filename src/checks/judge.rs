@@ -74,14 +74,14 @@ pub fn ask(check: &Check, subject: Subject, figures: &dyn Figures) -> Option<(Ou
 
 /// Whether something is asked, and how surely.
 #[derive(Debug)]
-struct Gate {
+pub(super) struct Gate {
     verdict: Verdict,
     decision: Decision,
 }
 
 impl Gate {
     /// `None` where it is not asked: the condition does not apply, or speaks against it with guesses at nominal.
-    fn of(when: Option<&Condition>, context: Context<'_>) -> Option<Self> {
+    pub(super) fn of(when: Option<&Condition>, context: Context<'_>) -> Option<Self> {
         let Some(when) = when else {
             return Some(Self { verdict: Verdict::Holds, decision: Decision::default() });
         };
@@ -93,7 +93,7 @@ impl Gate {
 
     /// What a requirement comes to behind the gate: where a guess opened it, it cannot fail; where it is unknown
     /// whether it is open, what breaks is unknown.
-    fn pass(&self, mut judged: Judged) -> Judged {
+    pub(super) fn pass(&self, mut judged: Judged) -> Judged {
         let guessed = self.decision.guessed || self.verdict == Verdict::Tight;
         if judged.verdict == Verdict::Holds || (!guessed && self.verdict != Verdict::Unknown) {
             return judged;

@@ -10,6 +10,7 @@ mod load;
 mod merge;
 mod set;
 mod template;
+mod trace;
 mod verdict;
 mod wording;
 
@@ -22,6 +23,7 @@ pub use load::read;
 pub use merge::{tell, told_together};
 pub use set::{Checks, Override};
 pub use template::Template;
+pub use trace::{Asked, Trace, trace};
 pub use verdict::{Level, Verdict};
 pub use wording::{Filling, Sentence, missing};
 

@@ -29,7 +29,7 @@ pub(super) enum Command {
     Check(Check),
     /// Show the supply tree and every figure known of each regulator, unjudged
     Rails(Rails),
-    /// Explain a check, or every figure about a part of a board
+    /// Explain a check, or a part of a board: its supply, every figure, each verdict
     Explain(Explain),
     /// Compare a board with what it was: what a change brings and takes away
     Compare(Compare),

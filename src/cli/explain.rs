@@ -48,11 +48,10 @@ fn explain_part(typed: &Explain, part: &str, rules: &Rules, terminal: Terminal, 
         return to.result(&text).max(status);
     }
     to.tell(&report::problems(board.all_problems(), terminal.err));
-    let names = report::regulator_names(&board);
+    let names = report::part_names(&board);
     let help = match nearest(part, names.iter().map(String::as_str)) {
         Some(near) => format!("did you mean `{near}`?"),
-        None if names.is_empty() => "none was found on the board".to_owned(),
-        None => format!("there are {}", names.join(", ")),
+        None => "`railworthy rails` lists the regulators and references".to_owned(),
     };
-    to.broken(&format!("no regulator or reference is called `{part}`; {help}"))
+    to.broken(&format!("no part of the board is called `{part}`; {help}"))
 }

@@ -3,7 +3,7 @@
 use std::collections::{BTreeMap, BTreeSet};
 
 use super::board::BoardResult;
-use super::figures::{every_evidence, gist, range};
+use super::figures::{gist, range};
 use super::inert::inert;
 use super::layout::{table, wrapped};
 use super::look::Look;
@@ -11,9 +11,7 @@ use super::problem::problems;
 use super::text::{heading, unread};
 use crate::circuit::NetId;
 use crate::facts::{DEFINITIONS, Definition, Facts, RailOrigin, Subject, SubjectKind, Value};
-use crate::quantity::Evidence;
 use crate::recognize::{Mode, Regulator, RegulatorKind};
-use crate::review::Examination;
 
 /// The supply tree of a board, then each regulator with every figure known.
 #[must_use]
@@ -26,7 +24,7 @@ pub fn rails(board: &BoardResult, look: Look) -> String {
     text.push_str(&tree(&facts, look));
     for (id, regulator) in facts.regulators() {
         text.push('\n');
-        text.push_str(&block(&facts, Subject::Regulator(id), regulator, look, false));
+        text.push_str(&block(&facts, Subject::Regulator(id), regulator, look));
     }
     let not_judged = super::text::not_judged(examination);
     if !not_judged.is_empty() {
@@ -34,52 +32,6 @@ pub fn rails(board: &BoardResult, look: Look) -> String {
     }
     text.push_str(&look.faint("\n`railworthy explain BOARD.net PART` shows all that a part's figures rest on.\n"));
     super::guarded(&text)
-}
-
-/// Every figure about a part with all that it rests on; `None` where the board has no such regulator.
-#[must_use]
-pub fn explain_part(board: &BoardResult, reference: &str, look: Look) -> Option<String> {
-    let examination = board.examination.as_ref()?;
-    let facts = Facts::new(&examination.design, &examination.board, &board.knowledge);
-    let mut text = heading(board, look);
-    text.push('\n');
-    text.push_str(&problems(board.all_problems(), look));
-    let mut found = false;
-    for (id, regulator) in facts.regulators().filter(|(_, one)| facts.part_of(one).reference == reference) {
-        found = true;
-        text.push_str(&block(&facts, Subject::Regulator(id), regulator, look, true));
-        text.push('\n');
-    }
-    text.push_str(&told(examination, reference, look));
-    found.then(|| super::guarded(&text))
-}
-
-/// The regulators of a board by reference, for a part that is none.
-#[must_use]
-pub fn regulator_names(board: &BoardResult) -> Vec<String> {
-    let Some(examination) = &board.examination else { return Vec::new() };
-    let circuit = &examination.design.circuit;
-    let names = examination.design.regulators.iter().map(|one| circuit.device(one.device).reference.clone());
-    names.collect::<BTreeSet<_>>().into_iter().collect()
-}
-
-/// What every requirement asked of a part came to.
-fn told(examination: &Examination, reference: &str, look: Look) -> String {
-    let own = |subject: &str| subject == reference || subject.starts_with(&format!("{reference} output "));
-    let rows: Vec<Vec<String>> = examination
-        .told
-        .iter()
-        .filter(|told| own(&told.subject))
-        .map(|told| {
-            let finding = examination.findings.iter().find(|found| {
-                found.finding.check == told.check && found.parts.first().is_some_and(|part| part == reference)
-            });
-            let message = finding.map(|found| inert(&found.finding.message).into_owned()).unwrap_or_default();
-            vec![told.check.clone(), told.verdict.name().to_owned(), message]
-        })
-        .collect();
-    let title = if rows.is_empty() { "No check asks anything of it.\n" } else { "Requirements\n" };
-    format!("{}{}", look.bold(title), table(&rows, "  ", look.width()))
 }
 
 /// The supply nets, each under the one that feeds it.
@@ -143,36 +95,17 @@ fn row(facts: &Facts<'_>, net: NetId, depth: usize) -> Vec<String> {
     vec![name, range(&rail.voltage), from, load]
 }
 
-/// A regulator and its figures; with everything behind them where `whole`.
-fn block(facts: &Facts<'_>, subject: Subject, regulator: &Regulator, look: Look, whole: bool) -> String {
-    let mut text = wrapped(&title(facts, regulator), "", "  ", look.width());
-    for note in notes(facts, regulator) {
-        text.push_str(&wrapped(&note, "  note: ", "        ", look.width()));
-    }
-    let mut rows = Vec::new();
-    let mut unknown = Vec::new();
-    let (mut holding, mut sources) = (Vec::new(), BTreeSet::new());
+/// A regulator and its figures.
+fn block(facts: &Facts<'_>, subject: Subject, regulator: &Regulator, look: Look) -> String {
+    let mut text = introduction(facts, regulator, look);
+    let (mut rows, mut unknown, mut holding) = (Vec::new(), Vec::new(), Vec::new());
     for definition in definitions() {
         match facts.value(subject, definition.name) {
-            Value::Figure(figure) if figure.is_missing() && !whole => unknown.push(shown_name(definition.name)),
-            Value::Figure(figure) if whole => {
-                let mut parts = every_evidence(&figure).into_iter();
-                rows.push(vec![shown_name(definition.name), range(&figure), parts.next().unwrap_or_default()]);
-                rows.extend(parts.map(|part| vec![String::new(), String::new(), part]));
-                sources.extend(figure.evidence().filter(|evidence| is_sheet(evidence)).map(|e| e.source.clone()));
-            }
+            Value::Figure(figure) if figure.is_missing() => unknown.push(shown_name(definition.name)),
             Value::Figure(figure) => {
                 rows.push(vec![shown_name(definition.name), range(&figure), gist(&figure)]);
             }
-            Value::Flag(flag) if whole => {
-                let answer = if flag.holds { "yes" } else { "no" };
-                let source = flag.evidence.map(|evidence| inert(&evidence.source).into_owned()).unwrap_or_default();
-                rows.push(vec![shown_name(definition.name), answer.to_owned(), source]);
-            }
             Value::Flag(flag) => holding.extend(flag.holds.then(|| shown_name(definition.name))),
-            Value::Inapplicable(reason) if whole => {
-                rows.push(vec![shown_name(definition.name), "none".to_owned(), inert(&reason).into_owned()]);
-            }
             Value::Word(_) | Value::Group(_) | Value::Inapplicable(_) => {}
         }
     }
@@ -183,15 +116,14 @@ fn block(facts: &Facts<'_>, subject: Subject, regulator: &Regulator, look: Look,
     if !unknown.is_empty() {
         text.push_str(&wrapped(&format!("not known: {}", unknown.join(", ")), "  ", "    ", look.width()));
     }
-    for source in &sources {
-        text.push_str(&wrapped(&inert(source), "  source: ", "          ", look.width()));
-    }
     text
 }
 
-/// Whether a source is cited short in the lines above.
-fn is_sheet(evidence: &Evidence) -> bool {
-    super::figures::title(&evidence.source) != evidence.source
+/// What a regulator is in a line, and what was odd about it.
+pub(super) fn introduction(facts: &Facts<'_>, regulator: &Regulator, look: Look) -> String {
+    let notes = notes(facts, regulator);
+    let notes = notes.iter().map(|note| wrapped(note, "  note: ", "        ", look.width()));
+    wrapped(&title(facts, regulator), "", "  ", look.width()) + &notes.collect::<String>()
 }
 
 /// `U2 AMS1117-3.3 · series, fixed · 1117 / AMS1117 · +5V → +3V3 · sheet /Power/`

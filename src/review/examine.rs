@@ -66,6 +66,8 @@ pub struct Examination {
     pub board: Board,
     /// The design.
     pub design: Design,
+    /// The checks as they were asked, with the settings of the board.
+    pub checks: Checks,
     /// Findings: errors first, then by check, then by subject; within a level those of the review last.
     pub findings: Vec<Reviewed>,
     /// The counts of what was asked of the design; accepted findings are left out of their verdicts.
@@ -143,7 +145,7 @@ pub fn examine_with_sheets(
     let Judged { findings, counts, review, told, declare_first } =
         judged(&design, &board, knowledge, &checks, Given { netlist: &netlist, sheets, whole, today });
     let accepted = findings.iter().filter(|finding| finding.accepted.is_some()).count();
-    Examination { netlist, board, design, findings, counts, accepted, review, told, problems, declare_first }
+    Examination { netlist, board, design, checks, findings, counts, accepted, review, told, problems, declare_first }
 }
 
 /// Adds what symbol fields declare and looks up the names that the board file uses.

@@ -16,6 +16,7 @@ mod declared_parts;
 mod devices_symbols;
 mod documents;
 mod draft;
+mod explain;
 mod exported;
 mod failures;
 mod field_failures;

@@ -9,7 +9,7 @@ use std::rc::Rc;
 use super::flow::{self, Drawn, Flow, Rail, Rails};
 use super::{Subject, SubjectKind, Value, definition};
 use crate::board::Board;
-use crate::circuit::{Circuit, Device, DeviceId, NetId};
+use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId};
 use crate::knowledge::{Family, Knowledge};
 use crate::quantity::{Dimension, Evidence, Grade, Quantity, Range};
 use crate::recognize::{Bank, Design, Regulator, RegulatorId, Side, bank_to};
@@ -36,6 +36,7 @@ pub struct Facts<'a> {
     loads: OnceCell<HashMap<NetId, Vec<Quantity>>>,
     draws: RefCell<HashMap<(NetId, Drawn), Quantity>>,
     cycles: OnceCell<Vec<Vec<RegulatorId>>>,
+    clamps: RefCell<HashMap<NetId, Option<DeviceId>>>,
     // Never gone through in order: only looked up.
     values: RefCell<HashMap<(Subject, &'static str), Value>>,
     banks: RefCell<HashMap<BankKey, Rc<KnownBank>>>,
@@ -90,6 +91,7 @@ impl<'a> Facts<'a> {
             loads: OnceCell::new(),
             draws: RefCell::new(HashMap::new()),
             cycles: OnceCell::new(),
+            clamps: RefCell::new(HashMap::new()),
             values: RefCell::new(HashMap::new()),
             banks: RefCell::new(HashMap::new()),
             totals: RefCell::new(HashMap::new()),
@@ -179,6 +181,27 @@ impl<'a> Facts<'a> {
     /// What fields on parts say that these draw, by net.
     pub(super) fn field_loads(&self) -> &HashMap<NetId, Vec<Quantity>> {
         self.loads.get_or_init(|| self.loads_by_field())
+    }
+
+    /// The first fitted diode of some kinds between a net and ground, looked for once: many parts share an input.
+    pub(super) fn diode_to_ground(&self, net: NetId) -> Option<DeviceId> {
+        if let Some(known) = self.clamps.borrow().get(&net) {
+            return *known;
+        }
+        let circuit = self.circuit();
+        let is_diode = |device: DeviceId| {
+            matches!(circuit.device(device).kind, DeviceKind::Diode | DeviceKind::Schottky | DeviceKind::Zener)
+        };
+        // A clamp is told ahead of a plain diode, which only stops a reversed supply.
+        let mut found: Vec<DeviceId> = circuit
+            .neighbours(net)
+            .filter(|(device, to)| circuit.net(*to).ground && is_diode(*device))
+            .map(|(device, _)| device)
+            .collect();
+        found.sort_by_key(|device| circuit.device(*device).kind != DeviceKind::Zener);
+        let first = found.first().copied();
+        self.clamps.borrow_mut().insert(net, first);
+        first
     }
 
     /// What is drawn from a net, summed once.

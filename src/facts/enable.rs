@@ -176,7 +176,7 @@ impl Facts<'_> {
         let Some(least) = self.set_point(regulator).magnitude().nominal() else { return unknown };
         let Some(evidence) = unknown.missing_evidence().next().cloned() else { return unknown };
         let evidence = Evidence { source: "at least the output".to_owned(), ..evidence };
-        Quantity::given(Dimension::VOLTAGE, Range::exactly(least), Pair::NOT_NEGATIVE, evidence)
+        Quantity::missing(Dimension::VOLTAGE, Pair::new(least, f64::INFINITY), evidence)
     }
 
     /// The resistors from a net to rails. An error names a part that drives the net in a way that no netlist tells.

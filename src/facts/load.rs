@@ -17,6 +17,20 @@ pub(super) const DEFINITIONS: &[Definition] = &[
     amperes("load", "the current drawn from the output, idle to peak; its nominal is the peak", |facts, subject| {
         of(facts, subject, |regulator| Value::Figure(facts.load(regulator)))
     }),
+    Definition {
+        name: "load_is_declared",
+        of: SubjectKind::Regulator,
+        kind: ValueKind::Flag,
+        meaning: "a load is declared for the output net or one behind it",
+        defined_in: file!(),
+        compute: |facts, subject| {
+            of(facts, subject, |regulator| {
+                let declared =
+                    regulator.output_net.and_then(|net| facts.declared_draw(net, regulator.input_net, Drawn::Peak));
+                Value::flag(declared.is_some())
+            })
+        },
+    },
     amperes("rated_current", "the current that the part is rated for", |facts, subject| {
         of(facts, subject, |regulator| match facts.rated_current(regulator) {
             Some(rated) => Value::Figure(rated),

@@ -158,10 +158,8 @@ impl Facts<'_> {
     fn clamp_on(&self, regulator: &Regulator) -> Option<String> {
         let circuit = self.circuit();
         self.path_of(regulator).into_iter().find_map(|(net, _)| {
-            circuit.neighbours(net).find_map(|(device, to)| {
-                let part = circuit.device(device);
-                (part.kind == DeviceKind::Zener && circuit.net(to).ground).then(|| part.reference.clone())
-            })
+            let part = circuit.device(self.diode_to_ground(net)?);
+            (part.kind == DeviceKind::Zener).then(|| part.reference.clone())
         })
     }
 
@@ -178,13 +176,7 @@ impl Facts<'_> {
             return true;
         }
         // A diode from ground conducts when the supply is reversed, and blows the fuse.
-        let shorts = |net: NetId| {
-            circuit.neighbours(net).any(|(device, to)| {
-                let kind = circuit.device(device).kind;
-                let diode = matches!(kind, DeviceKind::Diode | DeviceKind::Schottky | DeviceKind::Zener);
-                diode && circuit.net(to).ground
-            })
-        };
+        let shorts = |net: NetId| self.diode_to_ground(net).is_some();
         kinds.contains(&DeviceKind::Fuse) && path.iter().any(|(net, _)| shorts(*net))
     }
 

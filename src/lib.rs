@@ -18,6 +18,8 @@ pub mod board;
 
 pub mod recognize;
 
+pub mod solve;
+
 pub mod facts;
 
 pub mod checks;

@@ -301,6 +301,8 @@ pub(super) enum CheckFormat {
     Markdown,
     /// For programs
     Json,
+    /// For code hosts and editors: SARIF 2.1.0
+    Sarif,
 }
 
 #[derive(Debug, Clone, Copy, Default, PartialEq, Eq, ValueEnum)]

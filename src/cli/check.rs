@@ -4,7 +4,7 @@ use super::args::{Check, CheckFormat};
 use super::boards::{self, How};
 use super::input::Rules;
 use super::settings::Terminal;
-use super::{Status, Streams, day, output};
+use super::{Status, Streams, day, folders, output};
 use crate::report::{self, BoardResult, TextOptions};
 
 pub(super) fn run(typed: &Check, terminal: Terminal, to: &mut Streams<'_>) -> Status {
@@ -36,6 +36,7 @@ fn writer(format: CheckFormat) -> Writer {
         CheckFormat::Line => |boards, _| report::lines(boards),
         CheckFormat::Markdown => |boards, _| report::markdown(boards),
         CheckFormat::Json => |boards, _| report::check_json(boards),
+        CheckFormat::Sarif => |boards, _| report::check_sarif(boards, &folders::folders()),
     }
 }
 

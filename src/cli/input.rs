@@ -25,7 +25,7 @@ const STANDARD_INPUT: &str = "<stdin>";
 #[derive(Debug)]
 pub(super) struct Rules {
     pub(super) knowledge: Arc<Knowledge>,
-    pub(super) checks: Checks,
+    pub(super) checks: Arc<Checks>,
     pub(super) problems: Arc<[Problem]>,
     /// Those of boards that name folders of their own, by all folders that count.
     own: Mutex<BTreeMap<Vec<PathBuf>, Arc<Rules>>>,
@@ -38,7 +38,12 @@ impl Rules {
         let (checks, found) = Checks::load(&knowledge.checks, &DefinedNames);
         problems.extend(found);
         problems.extend(checks.iter().filter_map(|check| name_is_taken(&check.name)));
-        Self { knowledge: Arc::new(knowledge), checks, problems: problems.into(), own: Mutex::default() }
+        Self {
+            knowledge: Arc::new(knowledge),
+            checks: Arc::new(checks),
+            problems: problems.into(),
+            own: Mutex::default(),
+        }
     }
 
     /// The rules of a board that names folders of its own; loaded once, however many boards name the same.
@@ -91,6 +96,7 @@ pub(super) fn board(path: &Path, input: &args::Input, rules: &Rules, today: &str
         board_file: declared.own_file,
         house_file: declared.house_file,
         knowledge: Arc::clone(&rules.knowledge),
+        checks: Arc::clone(&rules.checks),
         rule_problems: Arc::clone(&rules.problems),
         problems: declared.problems,
         examination: None,
@@ -141,6 +147,7 @@ pub(super) fn not_judged(path: &Path, problem: Problem, rules: &Rules) -> BoardR
         board_file: None,
         house_file: None,
         knowledge: Arc::clone(&rules.knowledge),
+        checks: Arc::clone(&rules.checks),
         rule_problems: Arc::clone(&rules.problems),
         problems: vec![problem],
         examination: None,

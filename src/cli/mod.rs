@@ -10,6 +10,7 @@ mod day;
 mod declare;
 mod draft;
 mod explain;
+mod folders;
 mod guard;
 mod input;
 mod output;

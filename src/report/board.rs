@@ -2,7 +2,7 @@
 
 use std::sync::Arc;
 
-use crate::checks::Level;
+use crate::checks::{Checks, Level};
 use crate::knowledge::Knowledge;
 use crate::review::{Examination, Reviewed};
 use crate::source::{Problem, Severity};
@@ -18,6 +18,8 @@ pub struct BoardResult {
     pub house_file: Option<String>,
     /// What it was judged with.
     pub knowledge: Arc<Knowledge>,
+    /// The checks that it was judged by, with their settings as their files have them.
+    pub checks: Arc<Checks>,
     /// What is wrong or odd in its rules.
     pub rule_problems: Arc<[Problem]>,
     /// What was lost or odd in its files, in the order of reading.

@@ -53,6 +53,7 @@ impl Judge {
             board_file: own.map(|_| "own.toml".to_owned()),
             house_file: None,
             knowledge: Arc::clone(&self.knowledge),
+            checks: Arc::new(self.rules.checks.clone()),
             rule_problems: Arc::from([]),
             problems: Vec::new(),
             examination: Some(self.judge(netlist, board)),

@@ -43,6 +43,7 @@ mod reference_tokens;
 mod regulator_sheets;
 mod report;
 mod result_json;
+mod sarif;
 mod schemas;
 mod shared;
 mod sheets;

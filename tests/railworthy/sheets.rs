@@ -72,6 +72,11 @@ fn board(folder: &Path) -> String {
     text
 }
 
+/// The demo board beside its sheets, as `gauge.net`.
+pub(crate) fn drawn_board(folder: &Path) {
+    draw(&board(folder), folder, Layout::Lists, as_drawn);
+}
+
 fn result(folder: &Path, netlist: &str) -> Value {
     let run = run(folder, &["check", netlist, "--format", "json"]);
     assert_eq!(run.status, Some(1), "{}{}", run.out, run.err);

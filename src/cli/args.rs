@@ -303,6 +303,8 @@ pub(super) enum CheckFormat {
     Json,
     /// For code hosts and editors: SARIF 2.1.0
     Sarif,
+    /// For continuous integration: JUnit XML
+    Junit,
 }
 
 #[derive(Debug, Clone, Copy, Default, PartialEq, Eq, ValueEnum)]

@@ -1,6 +1,6 @@
 //! `railworthy check`
 
-use super::args::{Check, CheckFormat};
+use super::args::{Check, CheckFormat, FailOn};
 use super::boards::{self, How};
 use super::input::Rules;
 use super::settings::Terminal;
@@ -12,7 +12,7 @@ pub(super) fn run(typed: &Check, terminal: Terminal, to: &mut Streams<'_>) -> St
     let how = How { input: &typed.input, rules: &rules, today: &day::today(), jobs: typed.jobs, quiet: typed.quiet };
     let boards = boards::judge(&typed.boards, &how, to);
     let look = if typed.output.is_some() { terminal.file() } else { terminal.out };
-    let text = writer(typed.format)(&boards, TextOptions { look, quiet: typed.quiet });
+    let text = writer(typed.format)(&boards, TextOptions { look, quiet: typed.quiet }, typed.fail_on);
     let written = match &typed.output {
         None => to.result(&text),
         Some(path) => {
@@ -27,16 +27,17 @@ pub(super) fn run(typed: &Check, terminal: Terminal, to: &mut Streams<'_>) -> St
 }
 
 /// What writes a result.
-type Writer = fn(&[BoardResult], TextOptions) -> String;
+type Writer = fn(&[BoardResult], TextOptions, FailOn) -> String;
 
 /// What writes each format: a line here and one in the list of formats is all that a further one needs.
 fn writer(format: CheckFormat) -> Writer {
     match format {
-        CheckFormat::Text => report::check_text,
-        CheckFormat::Line => |boards, _| report::lines(boards),
-        CheckFormat::Markdown => |boards, _| report::markdown(boards),
-        CheckFormat::Json => |boards, _| report::check_json(boards),
-        CheckFormat::Sarif => |boards, _| report::check_sarif(boards, &folders::folders()),
+        CheckFormat::Text => |boards, options, _| report::check_text(boards, options),
+        CheckFormat::Line => |boards, _, _| report::lines(boards),
+        CheckFormat::Markdown => |boards, _, _| report::markdown(boards),
+        CheckFormat::Json => |boards, _, _| report::check_json(boards),
+        CheckFormat::Sarif => |boards, _, _| report::check_sarif(boards, &folders::folders()),
+        CheckFormat::Junit => |boards, _, fail_on| report::check_junit(boards, &|level| fail_on.fails(level)),
     }
 }
 

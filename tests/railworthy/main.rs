@@ -24,6 +24,7 @@ mod fingerprints;
 mod hostile_formats;
 mod house_rules;
 mod judge;
+mod junit;
 mod loop_check_values;
 mod made_board;
 mod makers;

@@ -34,6 +34,7 @@ mod netlist_hostile;
 mod oracle_deck;
 mod oracle_solver;
 mod order_codes;
+mod outside_gates;
 mod part_files;
 mod parts_page;
 mod program;

@@ -22,6 +22,7 @@ const LONGER_FILES: &[(&str, &str)] = &[
 /// What stands in the project's folder, beside the hidden files of tools; anything else belongs elsewhere.
 const TOP_LEVEL: &[&str] = &[
     ".ci",
+    ".pre-commit-hooks.yaml",
     "Cargo.lock",
     "Cargo.toml",
     "DEVELOPERS.md",

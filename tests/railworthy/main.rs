@@ -21,6 +21,7 @@ mod exported;
 mod failures;
 mod field_failures;
 mod fingerprints;
+mod guide;
 mod hostile_formats;
 mod house_rules;
 mod judge;

@@ -1,14 +1,15 @@
-//! What a repository takes to be checked: the hook, the script.
+//! The guide of the README, command by command, and what a repository takes to be checked: the hook, the script.
 
 use std::fs;
-use std::path::Path;
+use std::path::{Path, PathBuf};
 use std::process::{Command, Output, Stdio};
 
 use roxmltree::Document;
 use serde_json::Value;
 
 use crate::program::examples;
-use crate::project::text;
+use crate::project::{root, text};
+use crate::shared::tell_skipped;
 
 /// A command with the program on the path, a name for what git records, and no settings of who runs the test.
 fn command(program: &str, folder: &Path) -> Command {
@@ -30,8 +31,114 @@ fn command(program: &str, folder: &Path) -> Command {
     command
 }
 
+/// Whether a program can be run here; a test that needs it says so and skips.
+fn is_here(program: &str) -> bool {
+    let here = Command::new(program).arg("--version").output().is_ok_and(|output| output.status.success());
+    if !here {
+        tell_skipped(&format!("{program} is not here"));
+    }
+    here
+}
+
 fn told(output: &Output) -> String {
     format!("{}{}", String::from_utf8_lossy(&output.stdout), String::from_utf8_lossy(&output.stderr))
+}
+
+/// The blocks of a section of the README, each with its language.
+fn blocks(section: &str) -> Vec<(String, String)> {
+    let readme = text("README.md");
+    let (_, rest) = readme.split_once(&format!("\n## {section}\n")).unwrap();
+    let section = rest.split("\n## ").next().unwrap();
+    let fenced = section.split("\n```").skip(1).step_by(2);
+    let of = |block: &str| block.split_once('\n').map(|(kind, text)| (kind.to_owned(), format!("{text}\n"))).unwrap();
+    fenced.map(of).collect()
+}
+
+/// Runs a line of the guide in a shell; the folder that it ends in.
+fn run_line(line: &str, folder: &Path) -> PathBuf {
+    let place = tempfile::NamedTempFile::new().unwrap();
+    let script = format!("{line}\nstatus=$?\npwd > \"$PLACE\"\nexit $status\n");
+    let output = command("sh", folder).arg("-c").arg(script).env("PLACE", place.path()).output().unwrap();
+    let wanted = match line.split_once("# exits with ") {
+        Some((_, rest)) => rest[..1].parse().unwrap(),
+        None => 0,
+    };
+    assert_eq!(output.status.code(), Some(wanted), "{line}\n{}", told(&output));
+    PathBuf::from(fs::read_to_string(place.path()).unwrap().trim_end())
+}
+
+/// The board file with some tables taken up: each in place of the one of its heading and net that is commented out.
+fn taken_up(file: &str, tables: &str) -> String {
+    let mut lines: Vec<String> = file.lines().map(str::to_owned).collect();
+    for table in tables.trim_end().split("\n\n") {
+        let wanted: Vec<&str> = table.lines().collect();
+        let names = |line: &&&str| line.starts_with('[') || line.starts_with("net ");
+        let plain = |line: &str| line.split_whitespace().collect::<String>();
+        let head: Vec<String> = wanted.iter().filter(names).map(|line| format!("#{}", plain(line))).collect();
+        let is_it = |there: &[String]| there.iter().map(|line| plain(line)).eq(head.iter().cloned());
+        let start = lines.windows(head.len()).position(is_it);
+        let start = start.unwrap_or_else(|| panic!("{head:?} is not asked for in\n{file}"));
+        let length =
+            lines[start..].iter().take_while(|line| line.starts_with('#') && !line.starts_with("# ")).count();
+        lines.splice(start..start + length, wanted.iter().map(|line| (*line).to_owned()));
+    }
+    lines.join("\n") + "\n"
+}
+
+#[test]
+fn the_guide_leads_from_nothing_to_a_board_that_is_checked_at_each_commit() {
+    if !is_here("git") {
+        return;
+    }
+    let place = tempfile::tempdir().unwrap();
+    // The guide begins in a clone: what it needs of one are the demo boards.
+    let clone = place.path().join("railworthy");
+    for folder in ["examples", "examples/ci"] {
+        fs::create_dir_all(clone.join(folder)).unwrap();
+        for entry in fs::read_dir(root().join(folder)).unwrap().map(|entry| entry.unwrap().path()) {
+            if entry.is_file() {
+                fs::copy(&entry, clone.join(folder).join(entry.file_name().unwrap())).unwrap();
+            }
+        }
+    }
+    let mut folder = clone;
+    let (mut lines, mut edits) = (Vec::new(), 0);
+    for (kind, block) in blocks("From nothing to a checked repository") {
+        match kind.as_str() {
+            "sh" => {
+                for line in block.lines() {
+                    folder = run_line(line, &folder);
+                    lines.push(line.to_owned());
+                }
+            }
+            "toml" => {
+                let file = folder.join("gauge.railworthy.toml");
+                fs::write(&file, taken_up(&fs::read_to_string(&file).unwrap(), &block)).unwrap();
+                edits += 1;
+            }
+            _ => panic!("the guide has a block of the kind `{kind}`"),
+        }
+    }
+    assert_eq!(edits, 1);
+    let checks: Vec<bool> = lines
+        .iter()
+        .filter(|line| line.starts_with("railworthy check "))
+        .map(|line| line.contains("# exits with 1"))
+        .collect();
+    assert_eq!(checks, [true, true, true, false]);
+    for command in ["railworthy declare ", "railworthy accept ", "git commit ", "sh check-boards.sh"] {
+        assert!(lines.iter().any(|line| line.starts_with(command)), "{command}");
+    }
+    for file in ["boards.sarif", "junit.xml", "boards.md"] {
+        assert!(folder.join("results").join(file).is_file(), "{file}");
+    }
+    let committed = command("git", &folder).args(["ls-files"]).output().unwrap();
+    assert!(told(&committed).contains("gauge.railworthy.toml"), "{}", told(&committed));
+    // The hook holds: a fault that comes back is not committed.
+    fs::copy(examples().join("gauge-draft.net"), folder.join("gauge.net")).unwrap();
+    let refused = command("git", &folder).args(["commit", "--quiet", "--all", "--message", "Back"]).output().unwrap();
+    assert_eq!(refused.status.code(), Some(1), "{}", told(&refused));
+    assert!(told(&refused).contains("U4"), "{}", told(&refused));
 }
 
 /// A value of the hook's definition.

@@ -13,6 +13,7 @@ mod compare;
 mod corpus_verdicts;
 mod declare;
 mod declared_parts;
+mod demo_formats;
 mod devices_symbols;
 mod documents;
 mod draft;

@@ -152,8 +152,7 @@ impl Net {
     /// Whether its name was made from a pin or a code, so that it changes with references and codes.
     #[must_use]
     pub fn has_made_name(&self) -> bool {
-        let name = self.name.trim_start_matches('/');
-        name.is_empty() || ["Net-(", "unconnected-(", "net "].iter().any(|start| name.starts_with(start))
+        self.name.is_empty() || super::is_made_up(&self.name)
     }
 }
 

@@ -318,6 +318,10 @@ pub(super) enum CompareFormat {
     Markdown,
     /// For programs
     Json,
+    /// For code hosts and editors: SARIF 2.1.0, each result with what it is beside the old board
+    Sarif,
+    /// For continuous integration: JUnit XML, where what is new or worse fails
+    Junit,
 }
 
 #[derive(Debug, Clone, Copy, Default, PartialEq, Eq, ValueEnum)]

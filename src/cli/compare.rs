@@ -8,7 +8,7 @@ use super::args::{Compare, CompareFormat, Input};
 use super::boards::{self, How};
 use super::input::{Rules, is_standard_input};
 use super::settings::Terminal;
-use super::{Status, Streams, day, output};
+use super::{Status, Streams, day, folders as project, output};
 use crate::report::compare::{self, ComparedBoards};
 use crate::report::{BoardResult, TextOptions};
 use crate::review::compare::{Comparison, Side};
@@ -38,6 +38,8 @@ pub(super) fn run(typed: &Compare, terminal: Terminal, to: &mut Streams<'_>) -> 
         CompareFormat::Line => compare::line(&compared),
         CompareFormat::Markdown => compare::markdown(&compared),
         CompareFormat::Json => compare::json(&compared),
+        CompareFormat::Sarif => compare::sarif(&compared, &project::folders()),
+        CompareFormat::Junit => compare::junit(&compared, &|level| typed.fail_on.fails(level)),
     };
     let written = match &typed.output {
         None => to.result(&text),

@@ -11,17 +11,17 @@ use crate::checks::Level;
 use crate::review::{REVIEW_CHECKS, Reviewed};
 use crate::source::{Problem, Severity};
 
-/// The case that tells whether all of a board was read. No check is called so, for it has blanks.
-const READING: &str = "all was read";
+/// The case that tells whether all of a board was read.
+pub(super) const READING: &str = "all was read";
 
 /// A board with its cases.
-struct Suite {
-    name: String,
-    cases: Vec<Case>,
+pub(super) struct Suite {
+    pub(super) name: String,
+    pub(super) cases: Vec<Case>,
 }
 
 /// A check, or the reading of the files.
-struct Case {
+pub(super) struct Case {
     name: String,
     outcome: Outcome,
     /// What is told besides.
@@ -47,7 +47,13 @@ struct Tally {
 /// The result of some boards; `fails` tells whether a finding of a level fails the run.
 #[must_use]
 pub fn check(boards: &[BoardResult], fails: &dyn Fn(Level) -> bool) -> String {
-    let suites: Vec<Suite> = boards.iter().map(|board| suite(board, fails)).collect();
+    let fails = |found: &Reviewed| fails(found.finding.level);
+    let suite = |board| suite(board, vec![reading(READING.to_owned(), board)], &fails);
+    document(&boards.iter().map(suite).collect::<Vec<_>>())
+}
+
+/// Suites as a file.
+pub(super) fn document(suites: &[Suite]) -> String {
     let all = tally(suites.iter().flat_map(|suite| &suite.cases));
     let mut text = "<?xml version=\"1.0\" encoding=\"UTF-8\"?>\n".to_owned();
     // The whole has no place for a count of those skipped.
@@ -75,7 +81,8 @@ fn tally<'c>(cases: impl Iterator<Item = &'c Case>) -> Tally {
     tally
 }
 
-fn suite(board: &BoardResult, fails: &dyn Fn(Level) -> bool) -> Suite {
+/// A board with a case for each check behind some others; `fails` tells whether a finding fails the run.
+pub(super) fn suite(board: &BoardResult, mut cases: Vec<Case>, fails: &dyn Fn(&Reviewed) -> bool) -> Suite {
     // What was asked and found nothing is a case too: one that passed.
     let mut checks: BTreeMap<&str, Vec<&Reviewed>> = BTreeMap::new();
     if let Some(examination) = &board.examination {
@@ -86,12 +93,12 @@ fn suite(board: &BoardResult, fails: &dyn Fn(Level) -> bool) -> Suite {
     for found in board.findings().flat_map(|found| std::iter::once(found).chain(&found.merged)) {
         checks.entry(&found.finding.check).or_default().push(found);
     }
-    let cases = checks.into_iter().map(|(name, found)| judged(name, &found, fails));
-    Suite { name: board.netlist.clone(), cases: std::iter::once(reading(board)).chain(cases).collect() }
+    cases.extend(checks.into_iter().map(|(name, found)| judged(name, &found, fails)));
+    Suite { name: board.netlist.clone(), cases }
 }
 
-/// Whether all of a board was read.
-fn reading(board: &BoardResult) -> Case {
+/// Whether all of a board was read, as a case of a name with blanks, which no check has.
+pub(super) fn reading(name: String, board: &BoardResult) -> Case {
     let (errors, others): (Vec<&Problem>, Vec<&Problem>) =
         board.all_problems().partition(|problem| problem.severity() >= Severity::Error);
     let lines = |problems: &[&Problem]| problems.iter().map(|problem| problem_lines(board, problem)).collect();
@@ -101,14 +108,13 @@ fn reading(board: &BoardResult) -> Case {
         let first = errors.first().map_or("nothing could be judged", |problem| problem.message());
         Outcome::Broken { message: with_others(first, errors.len()), body: lines(&errors) }
     };
-    Case { name: READING.to_owned(), outcome, output: lines(&others) }
+    Case { name, outcome, output: lines(&others) }
 }
 
 /// What a check found on a board.
-fn judged(name: &str, found: &[&Reviewed], fails: &dyn Fn(Level) -> bool) -> Case {
+fn judged(name: &str, found: &[&Reviewed], fails: &dyn Fn(&Reviewed) -> bool) -> Case {
     let (accepted, open): (Vec<&Reviewed>, Vec<&Reviewed>) = found.iter().partition(|found| found.accepted.is_some());
-    let (failing, others): (Vec<&Reviewed>, Vec<&Reviewed>) =
-        open.into_iter().partition(|found| fails(found.finding.level));
+    let (failing, others): (Vec<&Reviewed>, Vec<&Reviewed>) = open.into_iter().partition(|found| fails(found));
     let reasons: Vec<&str> = accepted
         .iter()
         .filter_map(|found| found.accepted.as_ref())

@@ -205,6 +205,50 @@ fn lines_and_comments_tell_what_is_new() {
 }
 
 #[test]
+fn code_hosts_get_each_finding_with_what_it_was() {
+    let mut new = board();
+    let capacitor = new.components.iter().find(|one| one.value == "22uF/10V tantalum").unwrap().reference.clone();
+    new.component(&capacitor).value = "1uF/10V tantalum".to_owned();
+    let pair = Pair::boards(&board(), &new);
+    let read = |run: Run| -> Vec<Value> {
+        let value: Value = serde_json::from_str(&run.out).unwrap();
+        assert_eq!(value["version"], "2.1.0");
+        value["runs"][0]["results"].as_array().unwrap().clone()
+    };
+    let results = read(pair.compare(&["--format", "sarif"]));
+    let in_state = |state: &str| results.iter().filter(|one| one["baselineState"] == state).collect::<Vec<_>>();
+    let [new, absent] = &[in_state("new"), in_state("absent")].map(|list| list[0].clone());
+    assert_eq!((&new["ruleId"], &absent["ruleId"]), (&"output-capacitor".into(), &"esr-window".into()));
+    assert!(in_state("unchanged").len() > 5);
+    assert!(results.iter().all(|one| one["baselineState"].is_string()));
+    let uri = |one: &Value| one["locations"][0]["physicalLocation"]["artifactLocation"]["uri"].clone();
+    assert_eq!((uri(new), uri(absent)), ("new/buoy.net".into(), "old/buoy.net".into()));
+    let lost = Pair::of("(export", &board().written(Format::E));
+    let lost = read(lost.compare(&["--format", "sarif"]));
+    assert!(lost.len() > 5 && lost.iter().all(|one| one.get("baselineState").is_none()));
+}
+
+#[test]
+fn continuous_integration_fails_on_what_is_new_alone() {
+    let mut new = board();
+    let capacitor = new.components.iter().find(|one| one.value == "22uF/10V tantalum").unwrap().reference.clone();
+    new.component(&capacitor).value = "1uF/10V tantalum".to_owned();
+    let failing = |run: &Run| -> Vec<String> {
+        let document = roxmltree::Document::parse(&run.out).unwrap();
+        let cases = document.descendants().filter(|node| node.has_tag_name("testcase"));
+        let failed =
+            cases.filter(|case| case.children().any(|inner| matches!(inner.tag_name().name(), "failure" | "error")));
+        failed.map(|case| case.attribute("name").unwrap().to_owned()).collect()
+    };
+    let changed = Pair::boards(&board(), &new).compare(&["--format", "junit"]);
+    assert_eq!((changed.status, failing(&changed)), (Some(1), vec!["output-capacitor".to_owned()]));
+    let same = Pair::boards(&board(), &board()).compare(&["--format", "junit"]);
+    assert_eq!((same.status, failing(&same)), (Some(0), vec![]));
+    let lost = Pair::of("(export", &board().written(Format::E)).compare(&["--format", "junit"]);
+    assert!(lost.status == Some(2) && failing(&lost).contains(&"all was read of what it was".to_owned()));
+}
+
+#[test]
 fn a_capacitor_that_is_taken_out_is_missed_at_its_regulator_alone() {
     let capacitor = board().components.iter().find(|one| one.value == "22uF/10V tantalum").unwrap().reference.clone();
     let regulator = board().components.iter().find(|one| one.value == "LM1117MP-3.3").unwrap().reference.clone();
@@ -420,7 +464,7 @@ fn a_hostile_name_acts_on_nothing() {
     new.component(&reference).value = "LM2940CT-5.0\u{1b}[2J\n::error::x ##[error]".to_owned();
     new.net("+9V").name = "+9V\u{202e}##vso[x]".to_owned();
     let pair = Pair::boards(&board(), &new);
-    for format in ["text", "line", "markdown", "json"] {
+    for format in ["text", "line", "markdown", "json", "sarif", "junit"] {
         let out = pair.compare(&["--format", format]).out;
         assert!(!out.contains(['\u{1b}', '\u{202e}']), "{format}");
         assert!(out.lines().all(|line| !line.trim_start().starts_with("::")), "{format}");

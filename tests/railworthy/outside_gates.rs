@@ -62,7 +62,7 @@ fn boards(folder: &Path) -> Vec<(&'static str, Vec<String>)> {
 
 /// Writes the result of each kind of board in a format; the files' names.
 fn written(folder: &Path, format: &str) -> Vec<String> {
-    boards(folder)
+    let mut files: Vec<String> = boards(folder)
         .into_iter()
         .map(|(name, boards)| {
             let file = format!("{name}.{format}");
@@ -77,7 +77,14 @@ fn written(folder: &Path, format: &str) -> Vec<String> {
             assert_eq!(run.status, wanted, "{name}: {}", run.err);
             file
         })
-        .collect()
+        .collect();
+    for (name, old, wanted) in [("compared", "clean.net", 1), ("not-compared", "bytes.net", 2)] {
+        let file = format!("{name}.{format}");
+        let run = run(folder, &["compare", old, "accepted.net", "--format", format, "--output", &file]);
+        assert_eq!(run.status, Some(wanted), "{name}: {}", run.err);
+        files.push(file);
+    }
+    files
 }
 
 /// Runs a validator over files; whether they pass, and what it says.

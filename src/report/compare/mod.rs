@@ -2,8 +2,10 @@
 
 mod changes;
 mod json;
+mod junit;
 mod line;
 mod markdown;
+mod sarif;
 mod text;
 
 use std::sync::Arc;
@@ -15,8 +17,10 @@ use crate::review::compare::Comparison;
 use crate::source::Problem;
 
 pub use json::compare as json;
+pub use junit::compare as junit;
 pub use line::compare as line;
 pub use markdown::compare as markdown;
+pub use sarif::compare as sarif;
 pub use text::compare as text;
 
 /// A board beside what it was.

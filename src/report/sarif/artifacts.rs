@@ -25,10 +25,10 @@ pub(super) struct Artifacts {
 
 impl Artifacts {
     /// The files that some boards were read from or point into.
-    pub(super) fn of(boards: &[BoardResult], folders: &Folders) -> Self {
+    pub(super) fn of(boards: &[&BoardResult], folders: &Folders) -> Self {
         let targets: BTreeSet<&str> = boards.iter().map(|board| board.netlist.as_str()).collect();
         let sources: BTreeMap<&str, &Source> =
-            boards.iter().flat_map(sources).map(|source| (source.name(), source)).collect();
+            boards.iter().flat_map(|board| sources(board)).map(|source| (source.name(), source)).collect();
         let settings =
             boards.iter().flat_map(|board| board.house_file.iter().chain(&board.board_file)).map(String::as_str);
         let files: BTreeSet<&str> = targets

@@ -156,6 +156,8 @@ pub(super) struct ResultEntry {
     pub(super) rule_id: String,
     pub(super) rule_index: usize,
     pub(super) kind: &'static str,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub(super) baseline_state: Option<&'static str>,
     pub(super) level: &'static str,
     pub(super) message: Text,
     pub(super) locations: [Location; 1],

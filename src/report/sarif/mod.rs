@@ -20,6 +20,7 @@ use self::log::{Base, Driver, Invocation, Log, Run, Text, Tool};
 use self::rules::Rules;
 use super::board::BoardResult;
 use super::json_text;
+use crate::review::Reviewed;
 
 /// Most results of a run; hosts refuse more.
 const MOST_RESULTS: usize = 25_000;
@@ -39,13 +40,31 @@ const INFORMATION: &str = if env!("CARGO_PKG_HOMEPAGE").is_empty() {
 /// The result of some boards; files are named from the folders.
 #[must_use]
 pub fn check(boards: &[BoardResult], folders: &Folders) -> String {
-    json_text::text(&log(boards, folders))
+    let told = boards.iter().flat_map(|board| board.findings().map(move |found| Told { board, found, state: None }));
+    let told = told.collect();
+    written(&boards.iter().collect::<Vec<_>>(), told, folders)
 }
 
-fn log(boards: &[BoardResult], folders: &Folders) -> Log {
+/// A finding as a result.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Told<'a> {
+    /// Its board.
+    pub(super) board: &'a BoardResult,
+    /// The finding.
+    pub(super) found: &'a Reviewed,
+    /// What it is beside an earlier run, by the words of the standard; of all results of a run or of none.
+    pub(super) state: Option<&'static str>,
+}
+
+/// A run that judged some boards and tells some findings.
+pub(super) fn written(boards: &[&BoardResult], told: Vec<Told<'_>>, folders: &Folders) -> String {
+    json_text::text(&log(boards, told, folders))
+}
+
+fn log(boards: &[&BoardResult], told: Vec<Told<'_>>, folders: &Folders) -> Log {
     let artifacts = Artifacts::of(boards, folders);
     let rules = Rules::of(boards);
-    let (results, left_out) = results::results(boards, &artifacts, &rules, MOST_RESULTS);
+    let (results, left_out) = results::results(told, &artifacts, &rules, MOST_RESULTS);
     let driver = Driver {
         name: env!("CARGO_PKG_NAME"),
         version: env!("CARGO_PKG_VERSION"),
@@ -58,7 +77,7 @@ fn log(boards: &[BoardResult], folders: &Folders) -> Log {
     };
     let (configuration, execution) = notices::notices(boards, &artifacts, left_out);
     let invocation = Invocation {
-        execution_successful: boards.iter().all(BoardResult::is_complete),
+        execution_successful: boards.iter().all(|board| board.is_complete()),
         tool_configuration_notifications: configuration,
         tool_execution_notifications: execution,
     };

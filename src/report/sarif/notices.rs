@@ -73,7 +73,7 @@ type Told<'a> = (&'a str, Option<(&'a str, Span)>, Option<&'a str>);
 
 /// What is told of rules and board files, and what of the run itself; what boards share is told once.
 pub(super) fn notices(
-    boards: &[BoardResult],
+    boards: &[&BoardResult],
     artifacts: &Artifacts,
     left_out: usize,
 ) -> (Vec<Notification>, Vec<Notification>) {

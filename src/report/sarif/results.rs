@@ -3,6 +3,7 @@
 use std::cmp::Ordering;
 use std::collections::BTreeMap;
 
+use super::Told;
 use super::artifacts::Artifacts;
 use super::log::{
     Location, LogicalLocation, QuantityEntry, ResultEntry, ResultProperties, Slack, Suppression,
@@ -27,18 +28,18 @@ const MOST_RELATED: usize = 999;
 
 /// The worst findings, no more than `most`, by place; and how many are left out.
 pub(super) fn results(
-    boards: &[BoardResult],
+    told: Vec<Told<'_>>,
     artifacts: &Artifacts,
     rules: &Rules,
     most: usize,
 ) -> (Vec<ResultEntry>, usize) {
     let mut all = Vec::new();
-    for board in boards {
-        let sheets = sheets(board);
-        for found in board.findings() {
-            let entry = result(found, &sheets, artifacts, rules);
-            all.push((found.accepted.is_some(), found.finding.level, entry));
-        }
+    let mut last: Option<(&BoardResult, BTreeMap<&str, &str>)> = None;
+    for Told { board, found, state } in told {
+        let known = last.take().filter(|(one, _)| std::ptr::eq(*one, board));
+        let (_, sheets) = last.insert(known.unwrap_or_else(|| (board, sheets(board))));
+        let entry = ResultEntry { baseline_state: state, ..result(found, sheets, artifacts, rules) };
+        all.push((found.accepted.is_some(), found.finding.level, entry));
     }
     worst(all, most)
 }
@@ -82,6 +83,7 @@ fn result(found: &Reviewed, sheets: &BTreeMap<&str, &str>, artifacts: &Artifacts
         rule_index: rules.index(&found.finding.check),
         // What is unknown is one too: viewers are made for these, and its level says that it is a note.
         kind: "fail",
+        baseline_state: None,
         level: found.finding.level.name(),
         message: Text::new(message(found)),
         locations: [location],

@@ -19,7 +19,7 @@ pub(super) struct Rules(BTreeMap<String, Descriptor>);
 
 impl Rules {
     /// Every check that the boards were judged by, and those of the review.
-    pub(super) fn of(boards: &[BoardResult]) -> Self {
+    pub(super) fn of(boards: &[&BoardResult]) -> Self {
         let mut rules = BTreeMap::new();
         for check in boards.iter().flat_map(|board| board.checks.iter()) {
             rules.entry(check.name.clone()).or_insert_with(|| of_check(check));

@@ -12,7 +12,7 @@ use super::pairs::{Group, Pairs};
 use super::votes;
 use crate::checks::natural;
 use crate::circuit::{Circuit, DeviceKind};
-use crate::netlist::Netlist;
+use crate::netlist::{Component, Netlist};
 
 /// How many parts that look alike are tried against one.
 const MOST_TRIED: usize = 64;
@@ -296,9 +296,13 @@ fn sorted(mut lie: Lie) -> Lie {
     lie
 }
 
+fn component<'a>(graph: &Graph<'a>, at: usize) -> Option<&'a Component> {
+    graph.netlist.components.get(graph.device(at)?.component)
+}
+
 /// The unique ids of a part's symbols, in order; `None` where it has none.
 fn ids(graph: &Graph<'_>, at: usize) -> Option<Vec<String>> {
-    let component = graph.netlist.components.get(graph.device(at)?.component)?;
+    let component = component(graph, at)?;
     let mut ids: Vec<String> = component.ids.iter().map(|id| id.trim().to_ascii_lowercase()).collect();
     ids.retain(|id| !id.is_empty());
     ids.sort();

@@ -130,7 +130,7 @@ fn files(folder: &Path, end: &str) -> Vec<PathBuf> {
 fn the_schemas_in_the_rules_folder_are_those_that_the_program_prints() {
     let listed = run(root(), &["schema"]).out;
     let names: Vec<&str> = listed.lines().filter_map(|line| line.split_whitespace().next()).collect();
-    assert_eq!(names, ["board", "check", "part", "result", "rails"]);
+    assert_eq!(names, ["board", "check", "part", "result", "rails", "compare"]);
     for name in names {
         let path = root().join(format!("rules/schemas/{name}.schema.json"));
         let printed = run(root(), &["schema", name]).out;
@@ -201,7 +201,7 @@ fn the_schema_of_a_board_file_has_the_keys_of_the_reader() {
 
 #[test]
 fn what_the_program_writes_fits_its_schemas() {
-    let (result, rails) = (schema("result"), schema("rails"));
+    let (result, rails, compare) = (schema("result"), schema("rails"), schema("compare"));
     let folder = tempfile::tempdir().unwrap();
     let netlist = fs::read_to_string(root().join("examples/gauge-draft.net")).unwrap();
     fs::write(folder.path().join("damaged.net"), &netlist[..netlist.len() / 2]).unwrap();
@@ -217,6 +217,9 @@ fn what_the_program_writes_fits_its_schemas() {
         assert_eq!(fits(&result, &serde_json::from_str(&written).unwrap()), Vec::<String>::new(), "{board}");
         let written = run(place, &["rails", "--format", "json", board]).out;
         assert_eq!(fits(&rails, &serde_json::from_str(&written).unwrap()), Vec::<String>::new(), "{board}");
+        let released = root().join("examples/gauge-release.net");
+        let written = run(place, &["compare", released.to_str().unwrap(), board, "--format", "json"]).out;
+        assert_eq!(fits(&compare, &serde_json::from_str(&written).unwrap()), Vec::<String>::new(), "{board}");
     }
 }
 
@@ -234,7 +237,7 @@ fn an_independent_validator_takes_the_schemas() {
         return;
     };
     let schemas = files(&root().join("rules/schemas"), ".json");
-    assert_eq!(schemas.len(), 5);
+    assert_eq!(schemas.len(), 6);
     let meta = Command::new(&validator).arg("--check-metaschema").args(&schemas).output().unwrap();
     assert!(meta.status.success(), "{}", String::from_utf8_lossy(&meta.stdout));
     let board = root().join("rules/schemas/board.schema.json");

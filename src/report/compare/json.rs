@@ -14,7 +14,7 @@ use crate::review::Examination;
 use crate::review::compare::{Change, Compared, Comparison, Gone, Moved, RegulatorChange, Shown, State};
 
 /// The name of the layout.
-const SCHEMA: &str = "railworthy-compare/1";
+pub(in crate::report) const SCHEMA: &str = "railworthy-compare/1";
 
 #[derive(Debug, Serialize)]
 struct Result<'a> {

@@ -16,6 +16,7 @@ use crate::review::Reviewed;
 use crate::review::compare::Comparison;
 use crate::source::Problem;
 
+pub(super) use json::SCHEMA;
 pub use json::compare as json;
 pub use junit::compare as junit;
 pub use line::compare as line;

@@ -191,6 +191,7 @@ mod tests {
             rule_id: "headroom".to_owned(),
             rule_index: 0,
             kind: "fail",
+            baseline_state: None,
             level: level.name(),
             message: Text::new(String::new()),
             locations: [Location { physical_location, ..Location::default() }],

@@ -1,6 +1,7 @@
 //! JSON Schemas of the files that people write and of the results that programs read.
 
 mod board;
+mod compare;
 mod node;
 mod result;
 mod rules;
@@ -17,6 +18,7 @@ const ALL: &[Entry] = &[
     ("part", "part files", rules::part),
     ("result", "the result of `check` as JSON", result::check),
     ("rails", "the result of `rails` as JSON", result::rails),
+    ("compare", "the result of `compare` as JSON", compare::schema),
 ];
 
 /// The names of the schemas, each with what it is of.

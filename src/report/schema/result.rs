@@ -45,7 +45,7 @@ pub(super) fn rails() -> Value {
     result("railworthy rails", crate::report::json_rails::SCHEMA, table("A board", keys))
 }
 
-fn result(title: &str, layout: &str, board: Value) -> Value {
+pub(super) fn result(title: &str, layout: &str, board: Value) -> Value {
     let root = table(
         title,
         vec![
@@ -58,7 +58,7 @@ fn result(title: &str, layout: &str, board: Value) -> Value {
     document(title, with_pieces(root, pieces))
 }
 
-fn board_head() -> Vec<Key> {
+pub(super) fn board_head() -> Vec<Key> {
     let problem = table(
         "What was lost or odd",
         vec![
@@ -105,11 +105,11 @@ fn evidence() -> Value {
     )
 }
 
-fn grade() -> Value {
+pub(super) fn grade() -> Value {
     word("How well it is founded", Grade::ALL.iter().map(|grade| grade.name()))
 }
 
-fn bounds() -> Vec<Key> {
+pub(super) fn bounds() -> Vec<Key> {
     let mut keys: Vec<Key> =
         ["low", "nominal", "high"].map(|key| Key(key, or_null(number("Null: unknown or no bound")), Required)).into();
     keys.push(Key("unit", text("SI; °C for temperatures"), Required));
@@ -183,6 +183,10 @@ fn slack() -> Value {
 }
 
 fn finding() -> Value {
+    table("A finding", finding_keys())
+}
+
+pub(super) fn finding_keys() -> Vec<Key> {
     let verdicts = Verdict::ALL.iter().filter(|verdict| **verdict != Verdict::Holds).map(|verdict| verdict.name());
     let levels = [Level::Error, Level::Warning, Level::Note].map(Level::name);
     let mut quantity = vec![Key("name", text("As in the check language"), Required)];
@@ -198,29 +202,26 @@ fn finding() -> Value {
     );
     let reopened =
         table("", vec![Key("slack", slack(), Required), Key("position", or_null(reference("position")), Required)]);
-    table(
-        "A finding",
-        vec![
-            Key("check", text("Its check"), Required),
-            Key("verdict", word("", verdicts), Required),
-            Key("level", word("", levels), Required),
-            Key("subject", text("Part or net"), Required),
-            Key("sheet", text("Sheet path"), Required),
-            Key("parts", list("References", text("")), Required),
-            Key("nets", list("Names", text("")), Required),
-            Key("message", text("What is wrong"), Required),
-            Key("slack", or_null(slack()), Required),
-            Key("quantities", list("The figures that decide", table("", quantity)), Required),
-            Key("remedies", list("What to do", text("")), Required),
-            Key("settle", list("What would settle it", text("")), Required),
-            Key("declarations", list("The same for a board file", declaration()), Required),
-            Key("fingerprint", text("Survives renumbering"), Required),
-            Key("accepted", or_null(accepted), Required),
-            Key("reopened", or_null(reopened), Required),
-            Key("position", reference("position"), Required),
-            Key("schematic", or_null(reference("position")), Required),
-        ],
-    )
+    vec![
+        Key("check", text("Its check"), Required),
+        Key("verdict", word("", verdicts), Required),
+        Key("level", word("", levels), Required),
+        Key("subject", text("Part or net"), Required),
+        Key("sheet", text("Sheet path"), Required),
+        Key("parts", list("References", text("")), Required),
+        Key("nets", list("Names", text("")), Required),
+        Key("message", text("What is wrong"), Required),
+        Key("slack", or_null(slack()), Required),
+        Key("quantities", list("The figures that decide", table("", quantity)), Required),
+        Key("remedies", list("What to do", text("")), Required),
+        Key("settle", list("What would settle it", text("")), Required),
+        Key("declarations", list("The same for a board file", declaration()), Required),
+        Key("fingerprint", text("Survives renumbering"), Required),
+        Key("accepted", or_null(accepted), Required),
+        Key("reopened", or_null(reopened), Required),
+        Key("position", reference("position"), Required),
+        Key("schematic", or_null(reference("position")), Required),
+    ]
 }
 
 fn counts() -> Value {

@@ -73,6 +73,9 @@ pub enum Why {
 }
 
 impl Why {
+    /// Every reason.
+    pub const ALL: [Self; 4] = [Self::Removed, Self::Covered, Self::Holds, Self::NotAsked];
+
     /// Its name in results.
     #[must_use]
     pub fn name(self) -> &'static str {

@@ -246,7 +246,10 @@ impl Facts<'_> {
 
     /// A series regulator that no family knows: some capacitor at each side.
     fn unknown_minimum(&self, regulator: &Regulator, what: String) -> Value {
-        if regulator.kind != RegulatorKind::Series || self.families(regulator).next().is_some() {
+        if regulator.kind != RegulatorKind::Series
+            || regulator.is_built_up()
+            || self.families(regulator).next().is_some()
+        {
             return Value::inapplicable("no minimum is known");
         }
         let (low, nominal, high) = SOME_CERAMIC;

@@ -87,7 +87,9 @@ impl Facts<'_> {
 
     /// Why a figure is missing, in words that end in what to do.
     pub(super) fn no_sheet(&self, regulator: &Regulator) -> &'static str {
-        if self.families(regulator).next().is_none() {
+        if regulator.is_built_up() {
+            "built up from single parts, of which no sheet speaks"
+        } else if self.families(regulator).next().is_none() {
             "part not known: declare its family or draft a part file"
         } else {
             "its part file does not say"

@@ -3,6 +3,7 @@
 //! A figure is one [`Definition`] in the file that computes it, and that file one line in [`DEFINITIONS`].
 
 mod battery;
+mod built_up;
 mod bypass;
 mod capacitance;
 mod capacitor;
@@ -39,6 +40,7 @@ mod target;
 mod technology;
 mod tied;
 mod value;
+mod zener;
 
 pub use context::Facts;
 pub use definition::{Definition, ValueKind};

@@ -51,6 +51,7 @@ impl Facts<'_> {
             return declared.quantity(Dimension::VOLTAGE, self.about(regulator, "output voltage"));
         }
         let magnitude = match (regulator.mode, &regulator.nominal) {
+            (Mode::Fixed, _) if regulator.is_built_up() => self.followed_output(regulator),
             (Mode::Fixed, Some(_)) | (Mode::Adjustable, Some(_)) if regulator.divider.is_none() => {
                 self.fixed_output(regulator)
             }
@@ -100,6 +101,9 @@ impl Facts<'_> {
 
     /// The reference voltage's magnitude.
     pub(super) fn reference(&self, regulator: &Regulator) -> Option<Quantity> {
+        if let Some(built) = regulator.built_up.as_ref().filter(|built| !built.outboard) {
+            return self.built_up_reference(regulator, built);
+        }
         let ask = Ask {
             key: "reference",
             noun: "reference voltage",
@@ -123,7 +127,10 @@ impl Facts<'_> {
     /// Where the reference lies: as a family tells, else by the pins.
     pub(super) fn adjust_side(&self, regulator: &Regulator) -> AdjustSide {
         self.first_family(regulator, |family| family.adjust).map_or_else(
-            || if regulator.roles.ground.is_empty() { AdjustSide::Output } else { AdjustSide::Ground },
+            || {
+                let three_pins = regulator.roles.ground.is_empty() && !regulator.is_built_up();
+                if three_pins { AdjustSide::Output } else { AdjustSide::Ground }
+            },
             |(_, side)| side,
         )
     }

@@ -1,7 +1,6 @@
 //! What the board file overrides.
 
-use super::find::Overrides;
-use super::in_place::InPlace;
+use super::in_place::{InPlace, Overrides};
 use super::model::RegulatorKind;
 use crate::board::Board;
 

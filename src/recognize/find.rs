@@ -6,11 +6,12 @@ use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId, supply_name};
 use crate::knowledge::{Family, Knowledge, RoleName, Sign};
 use crate::quantity::Grade;
 
+use super::built_up;
 use super::divider::{self, Ends};
 use super::family_match::Matcher;
 use super::feed;
 use super::identity::{self, Known, Sources};
-use super::in_place::InPlace;
+use super::in_place::{InPlace, Overrides};
 use super::kind::{Candidate, regulates, worth_looking};
 use super::model::{Design, Divider, Mode, Nominal, NotJudged, Regulator, RegulatorKind, Roles};
 use super::nominal::{self, Told};
@@ -22,27 +23,11 @@ use super::roles::{self, Hints};
 use super::walk::SAMPLE;
 use super::words;
 
-/// What the board file says about single parts.
-pub trait Overrides {
-    /// The name of the family that a part is declared to be of.
-    fn family(&self, reference: &str) -> Option<&str>;
-    /// Whether a part is to be left out.
-    fn ignored(&self, reference: &str) -> bool;
-    /// The output voltage that is declared for a net, in volts.
-    fn output_voltage(&self, net: &str) -> Option<f64>;
-    /// What is declared of a part in place of a family; nothing where not overridden.
-    fn in_place(&self, reference: &str) -> InPlace<'_> {
-        let _ = reference;
-        InPlace::default()
-    }
-}
-
-/// Finds every packaged regulator and reference of a board, with its pins, nets, divider and feed.
+/// Finds every regulator and reference of a board, packaged or built up, with its pins, nets, divider and feed.
 #[must_use]
 pub fn recognize(circuit: Circuit, overrides: &dyn Overrides, knowledge: &Knowledge) -> Design {
     let matcher = Matcher::new(&knowledge.families);
-    let mut regulators = Vec::new();
-    let mut not_judged = Vec::new();
+    let mut found = Found::default();
     for id in circuit.devices() {
         let device = circuit.device(id);
         let in_place = overrides.in_place(&device.reference);
@@ -51,16 +36,27 @@ pub fn recognize(circuit: Circuit, overrides: &dyn Overrides, knowledge: &Knowle
             continue;
         }
         if overrides.ignored(&device.reference) {
-            not_judged.push(NotJudged { device: id, reason: "ignored by the board file".to_owned() });
+            found.not_judged.push(NotJudged { device: id, reason: "ignored by the board file".to_owned() });
             continue;
         }
         let finder = Finder { circuit: &circuit, id, device, overrides, in_place, knowledge };
-        finder.find(&matcher, &mut regulators, &mut not_judged);
+        finder.find(&matcher, &mut found);
     }
+    built_up::add(&circuit, &|part| overrides.ignored(part), &mut found);
+    let Found { mut regulators, mut not_judged, .. } = found;
     let order = |id: DeviceId| natural(&circuit.device(id).reference);
     regulators.sort_by_cached_key(|regulator: &Regulator| (order(regulator.device), regulator.output_index));
     not_judged.sort_by_cached_key(|each| order(each.device));
     Design { regulators, not_judged, circuit }
+}
+
+/// What has been found so far.
+#[derive(Debug, Default)]
+pub(super) struct Found {
+    pub(super) regulators: Vec<Regulator>,
+    pub(super) not_judged: Vec<NotJudged>,
+    /// Programmable shunts that do not hold what they sense; also listed as not judged.
+    pub(super) error_amplifiers: Vec<Regulator>,
 }
 
 struct Finder<'a> {
@@ -85,7 +81,7 @@ struct Part<'a> {
 }
 
 impl Finder<'_> {
-    fn find(&self, matcher: &Matcher<'_>, regulators: &mut Vec<Regulator>, not_judged: &mut Vec<NotJudged>) {
+    fn find(&self, matcher: &Matcher<'_>, found: &mut Found) {
         let device = self.device;
         // Most parts of a board have neither a known name nor pins of interest; their text need not be read.
         let names: Vec<PinName> = device.pins.iter().map(|pin| pin_name::read(&pin.name, &pin.number)).collect();
@@ -122,9 +118,9 @@ impl Finder<'_> {
             text_fixed: candidate.text.fixed,
         };
         if kind == RegulatorKind::Shunt {
-            self.shunt(&part, regulators, not_judged);
+            self.shunt(&part, found);
         } else {
-            self.series(&part, regulators, not_judged);
+            self.series(&part, found);
         }
     }
 
@@ -145,20 +141,20 @@ impl Finder<'_> {
         nets
     }
 
-    fn series(&self, part: &Part<'_>, regulators: &mut Vec<Regulator>, not_judged: &mut Vec<NotJudged>) {
+    fn series(&self, part: &Part<'_>, to: &mut Found) {
         let mut found = rails(self.device, part.names, part.roles, RoleName::Output);
         if found.is_empty() && part.kind == RegulatorKind::Switching {
             found.push(Rail { pins: Vec::new(), label: None, net: None });
         }
         if part.kind == RegulatorKind::Switching {
-            not_judged.push(NotJudged { device: self.id, reason: "switching converter".to_owned() });
+            to.not_judged.push(NotJudged { device: self.id, reason: "switching converter".to_owned() });
         }
         for (index, rail) in found.iter().enumerate() {
             let roles = roles_of(rail, &found, part.names, part.roles, RoleName::Output);
             if part.kind != RegulatorKind::Switching && roles.input.is_empty() && roles.adjust.is_empty() {
                 continue;
             }
-            regulators.push(self.series_output(part, index, found.len(), rail, roles));
+            to.regulators.push(self.series_output(part, index, found.len(), rail, roles));
         }
     }
 
@@ -192,6 +188,7 @@ impl Finder<'_> {
             divider: divider.filter(|_| mode == Mode::Adjustable),
             feed: None,
             roles,
+            built_up: None,
         }
     }
 
@@ -321,7 +318,7 @@ impl Finder<'_> {
         })
     }
 
-    fn shunt(&self, part: &Part<'_>, regulators: &mut Vec<Regulator>, not_judged: &mut Vec<NotJudged>) {
+    fn shunt(&self, part: &Part<'_>, to: &mut Found) {
         let cathodes = pins_of(part.roles, RoleName::Cathode);
         let anodes = pins_of(part.roles, RoleName::Anode);
         let (cathode, anode) = (self.nets(&cathodes).first().copied(), self.nets(&anodes).first().copied());
@@ -334,17 +331,14 @@ impl Finder<'_> {
         let roles = roles_of(&rail, &[], part.names, part.roles, output);
         let grounds: Vec<NetId> = ground_net.into_iter().collect();
         let divider = self.divider(&roles, output_net, &grounds);
-        if let Some(reason) = self.comparator(divider.as_ref(), output_net) {
-            not_judged.push(NotJudged { device: self.id, reason });
-            return;
-        }
+        let comparator = self.comparator(divider.as_ref(), output_net);
         let mode = self.mode(part, &roles, divider.as_ref());
         let sign = if negative { Sign::Negative } else { Sign::Positive };
         let mut apart = grounds;
         apart.extend(self.nets(&roles.adjust));
         let feed = output_net.and_then(|net| feed::read(self.circuit, net, &apart));
         let nominal = if mode == Mode::Fixed { self.nominal(part, 0, 1, sign, output_net) } else { None };
-        regulators.push(Regulator {
+        let shunt = Regulator {
             device: self.id,
             output_index: 0,
             identity: part.known.identity.clone(),
@@ -359,7 +353,14 @@ impl Finder<'_> {
             divider: divider.filter(|_| mode == Mode::Adjustable),
             feed,
             roles,
-        });
+            built_up: None,
+        };
+        if let Some(reason) = comparator {
+            to.not_judged.push(NotJudged { device: self.id, reason });
+            to.error_amplifiers.push(shunt);
+        } else {
+            to.regulators.push(shunt);
+        }
     }
 
     /// A programmable shunt whose divider senses another net than the one it holds is a comparator or an error

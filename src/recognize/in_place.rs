@@ -2,10 +2,24 @@
 
 use std::collections::BTreeMap;
 
-use super::find::Overrides;
 use super::model::RegulatorKind;
 use crate::circuit::Device;
 use crate::knowledge::{Pass, RoleName, Sign};
+
+/// What the board file says about single parts.
+pub trait Overrides {
+    /// The name of the family that a part is declared to be of.
+    fn family(&self, reference: &str) -> Option<&str>;
+    /// Whether a part is to be left out.
+    fn ignored(&self, reference: &str) -> bool;
+    /// The output voltage that is declared for a net, in volts.
+    fn output_voltage(&self, net: &str) -> Option<f64>;
+    /// What is declared of a part in place of a family; nothing where not overridden.
+    fn in_place(&self, reference: &str) -> InPlace<'_> {
+        let _ = reference;
+        InPlace::default()
+    }
+}
 
 /// What a board file says of a part itself: it wins over all that the schematic tells.
 #[derive(Debug, Clone, Copy, Default)]

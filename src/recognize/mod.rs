@@ -7,6 +7,7 @@
 //! parts stand in family files, never here.
 
 mod bank;
+mod built_up;
 mod declared;
 mod divider;
 mod drawn;
@@ -37,9 +38,10 @@ mod walk;
 mod words;
 
 pub use bank::{Side, bank, bank_to};
+pub use built_up::{Amplifier, AmplifierKind, BuiltUp, Duty, Reference, ReferenceFeed, ReferenceKind};
 pub use drawn::{DrawnPin, drawn_pins};
-pub use find::{Overrides, recognize};
-pub use in_place::InPlace;
+pub use find::recognize;
+pub use in_place::{InPlace, Overrides};
 pub use model::{
     Bank, Branch, Design, Divider, EnablePin, Feed, Identity, Mode, Nominal, NotJudged, Regulator, RegulatorId,
     RegulatorKind, Roles,

@@ -1,5 +1,6 @@
 //! What was found on the board.
 
+use super::built_up::BuiltUp;
 use crate::circuit::{Circuit, DeviceId, NetId};
 use crate::knowledge::{FamilyKind, Pass, Sign};
 use crate::quantity::Grade;
@@ -175,6 +176,16 @@ pub struct Regulator {
     pub divider: Option<Divider>,
     /// The feed of a shunt.
     pub feed: Option<Feed>,
+    /// How it is built up from transistors and amplifiers; of a packaged part, the transistor that takes over its current.
+    pub built_up: Option<Box<BuiltUp>>,
+}
+
+impl Regulator {
+    /// Whether it is built up from single parts: no data sheet speaks of it.
+    #[must_use]
+    pub fn is_built_up(&self) -> bool {
+        self.built_up.as_ref().is_some_and(|built| !built.outboard)
+    }
 }
 
 /// A part that was recognized and is not judged, with the reason.

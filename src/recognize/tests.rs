@@ -52,7 +52,7 @@ fn circuit(lines: &str) -> Circuit {
     Circuit::build(&netlist::read("board.net", text.as_bytes()).unwrap()).0
 }
 
-fn design(lines: &str) -> Design {
+pub(super) fn design(lines: &str) -> Design {
     recognize(circuit(lines), &(), &Knowledge::default())
 }
 

@@ -11,7 +11,7 @@ use crate::circuit::{Circuit, DeviceId, NetId};
 use crate::facts::{Facts, Subject};
 use crate::knowledge::{Knowledge, Pass, Sign};
 use crate::quantity::{Dimension, Settle};
-use crate::recognize::{Mode, Regulator};
+use crate::recognize::{Mode, ReferenceFeed, Regulator};
 use crate::review::{Examination, Reviewed};
 use crate::source::{Problem, Source, Span};
 
@@ -274,7 +274,7 @@ pub(super) fn regulator_entry<'a>(
         mode: if regulator.mode == Mode::Fixed { "fixed" } else { "adjustable" },
         pass: regulator.pass.map(Pass::name),
         // A packaged part's reference lies inside it; only built-up regulators have a feed that a schematic shows.
-        reference_feed: None,
+        reference_feed: regulator.built_up.as_ref().and_then(|built| built.feed).map(ReferenceFeed::name),
         pins: pins(circuit, regulator),
         input_net: net_name(circuit, regulator.input_net),
         output_net: net_name(circuit, regulator.output_net),

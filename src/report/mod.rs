@@ -2,6 +2,7 @@
 
 mod accept;
 mod board;
+mod built_up;
 pub mod catalog;
 mod catalog_part;
 mod caution;

@@ -123,7 +123,9 @@ fn block(facts: &Facts<'_>, subject: Subject, regulator: &Regulator, look: Look)
 pub(super) fn introduction(facts: &Facts<'_>, regulator: &Regulator, look: Look) -> String {
     let notes = notes(facts, regulator);
     let notes = notes.iter().map(|note| wrapped(note, "  note: ", "        ", look.width()));
-    wrapped(&title(facts, regulator), "", "  ", look.width()) + &notes.collect::<String>()
+    let parts = super::built_up::parts(facts, regulator);
+    let parts = parts.iter().map(|line| wrapped(line, "  ", "    ", look.width()));
+    wrapped(&title(facts, regulator), "", "  ", look.width()) + &parts.chain(notes).collect::<String>()
 }
 
 /// `U2 AMS1117-3.3 · series, fixed · 1117 / AMS1117 · +5V → +3V3 · sheet /Power/`
@@ -136,8 +138,9 @@ fn title(facts: &Facts<'_>, regulator: &Regulator) -> String {
     let mode = if regulator.mode == Mode::Fixed { "fixed" } else { "adjustable" };
     let negative = if regulator.polarity == crate::knowledge::Sign::Negative { ", negative" } else { "" };
     words.push(format!("{}, {mode}{negative}", regulator.kind.name()));
+    let unknown = if regulator.is_built_up() { "built up" } else { "no part family matches" };
     words.push(facts.families(regulator).next().map_or_else(
-        || "no part family matches".to_owned(),
+        || unknown.to_owned(),
         |family| format!("taken for {} ({})", inert(&family.name), inert(&regulator.identity.told_by)),
     ));
     words.push(format!("{} → {}", net(regulator.input_net), net(regulator.output_net)));
@@ -150,7 +153,7 @@ fn title(facts: &Facts<'_>, regulator: &Regulator) -> String {
 /// What was odd about the name of a part, and what to do about one that is not known.
 fn notes(facts: &Facts<'_>, regulator: &Regulator) -> Vec<String> {
     let mut notes: Vec<String> = regulator.identity.remarks.iter().map(|remark| inert(remark).into_owned()).collect();
-    let judged = regulator.kind != RegulatorKind::Switching;
+    let judged = regulator.kind != RegulatorKind::Switching && !regulator.is_built_up();
     if judged && facts.families(regulator).next().is_none() {
         let reference = inert(&facts.part_of(regulator).reference).into_owned();
         notes.push(format!(

@@ -5,6 +5,7 @@
 mod accept_command;
 mod accepted;
 mod archive;
+mod built_up_regulators;
 mod check_values;
 mod check_values_supply;
 mod circuit_corpus;

@@ -35,6 +35,7 @@ mod requirements;
 mod sarif;
 mod schema;
 mod settle;
+mod supply_tree;
 mod text;
 mod vet;
 

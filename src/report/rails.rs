@@ -1,16 +1,15 @@
 //! The supply tree and the figures of each regulator, unjudged, as text.
 
-use std::collections::{BTreeMap, BTreeSet};
-
 use super::board::BoardResult;
 use super::figures::{gist, range};
 use super::inert::inert;
 use super::layout::{table, wrapped};
 use super::look::Look;
 use super::problem::problems;
+use super::supply_tree::supply_tree;
 use super::text::{heading, unread};
 use crate::circuit::NetId;
-use crate::facts::{DEFINITIONS, Definition, Facts, RailOrigin, Subject, SubjectKind, Value};
+use crate::facts::{DEFINITIONS, Definition, Facts, Subject, SubjectKind, Value};
 use crate::recognize::{Mode, Regulator, RegulatorKind};
 
 /// The supply tree of a board, then each regulator with every figure known.
@@ -21,7 +20,7 @@ pub fn rails(board: &BoardResult, look: Look) -> String {
     text.push_str(&problems(board.all_problems(), look));
     let Some(examination) = &board.examination else { return super::guarded(&(text + &unread(look))) };
     let facts = Facts::new(&examination.design, &examination.board, &board.knowledge);
-    text.push_str(&tree(&facts, look));
+    text.push_str(&supply_tree(&facts, look));
     for (id, regulator) in facts.regulators() {
         text.push('\n');
         text.push_str(&block(&facts, Subject::Regulator(id), regulator, look));
@@ -32,67 +31,6 @@ pub fn rails(board: &BoardResult, look: Look) -> String {
     }
     text.push_str(&look.faint("\n`railworthy explain BOARD.net PART` shows all that a part's figures rest on.\n"));
     super::guarded(&text)
-}
-
-/// The supply nets, each under the one that feeds it.
-fn tree(facts: &Facts<'_>, look: Look) -> String {
-    let nets = facts.supply_nets();
-    let mut children: BTreeMap<Option<NetId>, Vec<NetId>> = BTreeMap::new();
-    for net in &nets {
-        let parent = feeder(facts, *net).filter(|parent| nets.contains(parent) && parent != net);
-        children.entry(parent).or_default().push(*net);
-    }
-    let mut rows = Vec::new();
-    let mut seen = BTreeSet::new();
-    // Nets that feed each other in a ring hang on no root: they begin a tree of their own.
-    let roots = children.get(&None).cloned().unwrap_or_default();
-    for root in roots.iter().chain(&nets) {
-        let mut stack = vec![(*root, 0)];
-        while let Some((net, depth)) = stack.pop() {
-            if !seen.insert(net) {
-                continue;
-            }
-            rows.push(row(facts, net, depth));
-            let below = children.get(&Some(net)).into_iter().flatten().rev();
-            stack.extend(below.map(|child| (*child, depth + 1)));
-        }
-    }
-    if rows.is_empty() {
-        return "No supply net is known.\n".to_owned();
-    }
-    format!("{}{}", look.bold("Supply nets\n"), table(&rows, "  ", look.width()))
-}
-
-/// The net that feeds another.
-fn feeder(facts: &Facts<'_>, net: NetId) -> Option<NetId> {
-    match facts.rail(net).origin {
-        RailOrigin::Regulator(id) => {
-            facts.regulator(Subject::Regulator(id)).and_then(|regulator| regulator.input_net)
-        }
-        RailOrigin::Through { from, .. } => Some(from),
-        _ => None,
-    }
-}
-
-fn row(facts: &Facts<'_>, net: NetId, depth: usize) -> Vec<String> {
-    let circuit = facts.circuit();
-    let rail = facts.rail(net);
-    let part = |device| {
-        let device = circuit.device(device);
-        format!("{} {}", inert(&device.reference), inert(&device.value)).trim_end().to_owned()
-    };
-    let from = match rail.origin {
-        RailOrigin::Regulator(id) => {
-            facts.regulator(Subject::Regulator(id)).map_or_else(String::new, |one| format!("by {}", part(one.device)))
-        }
-        RailOrigin::Through { device, .. } => format!("through {}", part(device)),
-        RailOrigin::Rectified(Some(device)) => format!("rectified by {}", part(device)),
-        _ => gist(&rail.voltage),
-    };
-    let load = facts.draw(net);
-    let load = if load.evidence().next().is_some() { format!("load {}", range(&load)) } else { String::new() };
-    let name = format!("{:blanks$}{}", "", inert(&circuit.net(net).name), blanks = depth * 2);
-    vec![name, range(&rail.voltage), from, load]
 }
 
 /// A regulator and its figures.

@@ -55,6 +55,7 @@ mod sheets;
 mod simulator;
 mod small_board;
 mod spoiled;
+mod supply_tree;
 mod sweeps;
 mod text_formats;
 mod user_checks;

@@ -132,6 +132,7 @@ impl PartEntry {
             heatsink: self.heatsink.or(below.heatsink),
             junction_to_ambient: self.junction_to_ambient.or(below.junction_to_ambient),
             power: self.power.or(below.power),
+            alternatives: self.alternatives.or(below.alternatives),
             family: self.family.or(below.family),
             ignore: self.ignore.or(below.ignore),
             kind: self.kind.or(below.kind),

@@ -203,6 +203,8 @@ pub struct PartEntry {
     pub power: Option<Declared<Range>>,
     /// Name of the part family that it is.
     pub family: Option<Declared<String>>,
+    /// Values or part numbers of other parts that may be fitted in its place.
+    pub alternatives: Option<Declared<Vec<String>>>,
     /// Whether the part is to be left out of all judgement (`role = "ignore"`).
     pub ignore: Option<Declared<bool>>,
     /// Series, shunt, reference or switching.
@@ -253,6 +255,7 @@ impl PartEntry {
             junction_to_ambient: None,
             power: None,
             family: None,
+            alternatives: None,
             ignore: None,
             kind: None,
             polarity: None,

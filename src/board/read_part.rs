@@ -71,6 +71,7 @@ impl<'a> Reader<'a> {
     /// What the part is.
     fn identity(self, table: &mut Table<'a>, part: &mut PartEntry) {
         part.family = self.name(table, "family");
+        part.alternatives = self.alternatives(table);
         part.ignore = self.word(table, "role", ROLES);
         part.kind = self.word(table, "kind", KINDS);
         part.polarity = self.word(table, "polarity", SIGNS);
@@ -88,6 +89,21 @@ impl<'a> Reader<'a> {
                 None
             }
         });
+    }
+
+    /// Other parts in its place, each named once and not empty.
+    fn alternatives(self, table: &mut Table<'a>) -> Option<Declared<Vec<String>>> {
+        let value = table.take("alternatives")?;
+        let mut names: Vec<String> = Vec::new();
+        for text in value.texts()? {
+            let name = text.as_str().trim();
+            if name.is_empty() {
+                text.refuse("an alternative needs a name", "empty", "name the part that may be fitted instead");
+            } else if !names.iter().any(|known| known == name) {
+                names.push(name.to_owned());
+            }
+        }
+        (!names.is_empty()).then(|| self.declared(names, value.span()))
     }
 
     /// `output` or `adjust or ground`.

@@ -10,6 +10,7 @@ use super::island::{Island, Kind, Place, Sink};
 use super::limits::{Limits, MAX_FIELDS};
 use super::model::{Component, Field, LibraryPart, NetEntry, NetNode, PartPin};
 use super::problems::Problems;
+use super::variants::variants;
 use crate::source::{Problem, Source, Span};
 
 const EXPORT_AGAIN: &str = "export the netlist again from the schematic editor";
@@ -181,6 +182,10 @@ impl<'a> Builder<'a> {
                 }
                 "tstamp" | "tstamps" => form.words_into(&mut component.ids),
                 "property" => self.field(&mut component.fields, form, place),
+                "variants" => match variants(form) {
+                    Ok(found) => component.variants.extend(found),
+                    Err(misshapen) => self.misshapen(&misshapen, place.whole),
+                },
                 "fields" => {
                     for field in form.lists().filter(|inner| inner.head == "field") {
                         self.field(&mut component.fields, field, place);

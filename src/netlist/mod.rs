@@ -17,12 +17,13 @@ mod refuse;
 mod scan;
 #[cfg(test)]
 mod tests;
+mod variants;
 mod verify;
 mod xml;
 mod xml_tree;
 
 #[doc(hidden)]
 pub use island::islands;
-pub use model::{Component, Field, Format, LibraryPart, NetEntry, NetNode, Netlist, PartPin};
+pub use model::{Component, ComponentVariant, Field, Format, LibraryPart, NetEntry, NetNode, Netlist, PartPin};
 pub use read::read;
 pub use refuse::{FIRST_BYTES, begins_export};

@@ -34,6 +34,15 @@ pub struct Field {
     pub value: String,
 }
 
+/// What an assembly variant changes on a component.
+#[derive(Debug, Clone, Default, PartialEq, Eq)]
+pub struct ComponentVariant {
+    /// The variant's name.
+    pub name: String,
+    /// Fields and attributes with the texts that they have in it; `dnp` is `1` or `0`.
+    pub changes: Vec<Field>,
+}
+
 /// One placed component.
 #[derive(Debug, Clone, Default, PartialEq, Eq)]
 pub struct Component {
@@ -54,6 +63,8 @@ pub struct Component {
     /// `fields` and `property` entries in order of the file, each name once (the first non-empty text wins).
     /// A property without a value (such as `dnp`) has an empty text.
     pub fields: Vec<Field>,
+    /// The assembly variants in which it is fitted otherwise; what changes nothing about the circuit is left out.
+    pub variants: Vec<ComponentVariant>,
     /// Human-readable sheet path, such as `/Power/`, or empty.
     pub sheet: String,
     /// Schematic file of its sheet as the export names it, or empty.

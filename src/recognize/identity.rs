@@ -30,6 +30,12 @@ pub(super) const NUMBER_FIELDS: &[&str] = &[
     "PART",
 ];
 
+/// Whether a field of this name holds a maker's part number.
+#[must_use]
+pub fn holds_part_number(field: &str) -> bool {
+    NUMBER_FIELDS.iter().any(|known| known.eq_ignore_ascii_case(field.trim()))
+}
+
 /// Where a name stands.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub(super) enum Place {

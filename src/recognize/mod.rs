@@ -41,6 +41,7 @@ pub use bank::{Side, bank, bank_to};
 pub use built_up::{Amplifier, AmplifierKind, BuiltUp, Duty, Reference, ReferenceFeed, ReferenceKind};
 pub use drawn::{DrawnPin, drawn_pins};
 pub use find::recognize;
+pub use identity::holds_part_number;
 pub use in_place::{InPlace, Overrides};
 pub use model::{
     Bank, Branch, Design, Divider, EnablePin, Feed, Identity, Mode, Nominal, NotJudged, Regulator, RegulatorId,

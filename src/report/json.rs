@@ -36,6 +36,7 @@ struct Board<'a> {
     size: Size,
     regulators: Vec<RegulatorEntry<'a>>,
     not_judged: Vec<NotJudged<'a>>,
+    assemblies: &'a [String],
     findings: Vec<FindingEntry<'a>>,
     counts: CountsEntry,
     declare_first: Vec<Declaration<'a>>,
@@ -110,6 +111,7 @@ pub(super) struct FindingEntry<'a> {
     sheet: &'a str,
     parts: &'a [String],
     nets: &'a [String],
+    variants: &'a [String],
     message: &'a str,
     slack: Option<Slack>,
     quantities: Vec<QuantityEntry<'a>>,
@@ -196,6 +198,7 @@ fn one(board: &BoardResult) -> Board<'_> {
         size: Size::default(),
         regulators: Vec::new(),
         not_judged: Vec::new(),
+        assemblies: &[],
         findings: Vec::new(),
         counts: CountsEntry::default(),
         declare_first: Vec::new(),
@@ -209,6 +212,7 @@ fn one(board: &BoardResult) -> Board<'_> {
         .map(|(id, regulator)| regulator_entry(examination, knowledge, &facts, Subject::Regulator(id), regulator))
         .collect();
     entry.not_judged = not_judged(examination);
+    entry.assemblies = &examination.assemblies;
     entry.findings = examination.findings.iter().map(finding).collect();
     entry.counts = counts(examination);
     entry.declare_first = examination
@@ -316,6 +320,7 @@ pub(super) fn finding(found: &Reviewed) -> FindingEntry<'_> {
         sheet: &found.sheet,
         parts: &found.parts,
         nets: &found.nets,
+        variants: &found.variants,
         message: &finding.message,
         slack: finding.slack.map(slack),
         quantities: finding

@@ -190,6 +190,10 @@ pub(super) fn accepted_of(accepted: &[&Reviewed], look: Look) -> String {
 fn summary(examination: &Examination, undeclared: bool, look: Look) -> String {
     let mut text = String::new();
     text.push_str(&wrapped(&counts(examination), "", "  ", look.width()));
+    if !examination.assemblies.is_empty() {
+        let ways: Vec<_> = examination.assemblies.iter().map(|way| inert(way)).collect();
+        text.push_str(&wrapped(&format!("Judged {}", ways.join(", ")), "", "  ", look.width()));
+    }
     if !examination.declare_first.is_empty() {
         let mut line = format!("Declare first: {}", declarations(&examination.declare_first));
         if undeclared {

@@ -3,6 +3,7 @@
 use std::collections::BTreeSet;
 
 use super::accept::{Accepted, Entries, Reopened};
+use super::assembly::{assemblies, merge};
 use super::concern;
 use super::fingerprint::fingerprints;
 use super::notice::{REVIEW_CHECKS, Round, notices, review_check};
@@ -33,6 +34,9 @@ pub struct Reviewed {
     pub accepted: Option<Accepted>,
     /// That it was accepted when it was better, where nothing accepts it now.
     pub reopened: Option<Reopened>,
+    /// The ways of fitting the board for which it stands, as `as drawn`, `in variant X` or `with U3 as Y`; empty where
+    /// it stands for all that were judged.
+    pub variants: Vec<String>,
     /// What the same missing figures leave unknown too, told by this finding.
     pub merged: Vec<Reviewed>,
     /// References of the parts concerned, the subject's first.
@@ -80,6 +84,8 @@ pub struct Examination {
     pub told: Vec<Told>,
     /// What was lost or odd while reading, in the order of reading.
     pub problems: Vec<Problem>,
+    /// The ways of fitting the board that were judged, `as drawn` first; empty where there is no other.
+    pub assemblies: Vec<String>,
     /// What to declare first.
     pub declare_first: Vec<Decisive>,
 }
@@ -120,17 +126,45 @@ pub fn examine_netlist(
 }
 
 /// Judges a netlist beside whose schematic sheets findings are to be placed; they change no verdict, but
-/// may show that the netlist is an old export.
+/// may show that the netlist is an old export. Assembly variants and second-source parts are judged too.
 #[must_use]
 pub fn examine_with_sheets(
-    mut netlist: Netlist,
+    netlist: Netlist,
     sheets: &Sheets,
     board: Board,
     knowledge: &Knowledge,
     checks: &Checks,
     today: &str,
 ) -> Examination {
-    let whole = netlist.is_complete();
+    let rules = Rules { sheets, knowledge, checks, whole: netlist.is_complete(), today };
+    let mut drawn = examine_fitted(netlist, board.clone(), rules);
+    let (others, problem) = assemblies(&drawn.netlist, &board, &drawn.design);
+    drawn.problems.extend(problem);
+    if !others.is_empty() {
+        let netlist = drawn.netlist.clone();
+        let each = others.iter().map(|one| {
+            let (netlist, board) = one.fit(&netlist, &board);
+            (one.label(), examine_fitted(netlist, board, rules))
+        });
+        merge(&mut drawn, each);
+    }
+    drawn
+}
+
+/// What a board is judged by, in whichever way it is fitted.
+#[derive(Debug, Clone, Copy)]
+struct Rules<'a> {
+    sheets: &'a Sheets,
+    knowledge: &'a Knowledge,
+    checks: &'a Checks,
+    /// Whether nothing of the netlist was lost.
+    whole: bool,
+    today: &'a str,
+}
+
+/// Judges a board as its netlist says that it is fitted.
+fn examine_fitted(mut netlist: Netlist, board: Board, rules: Rules<'_>) -> Examination {
+    let Rules { sheets, knowledge, checks, whole, today } = rules;
     let (mut circuit, found) = Circuit::build(&netlist);
     let mut problems = std::mem::take(&mut netlist.problems);
     problems.extend(found);
@@ -145,7 +179,21 @@ pub fn examine_with_sheets(
     let Judged { findings, counts, review, told, declare_first } =
         judged(&design, &board, knowledge, &checks, Given { netlist: &netlist, sheets, whole, today });
     let accepted = findings.iter().filter(|finding| finding.accepted.is_some()).count();
-    Examination { netlist, board, design, checks, findings, counts, accepted, review, told, problems, declare_first }
+    let assemblies = Vec::new();
+    Examination {
+        netlist,
+        board,
+        design,
+        checks,
+        findings,
+        counts,
+        accepted,
+        review,
+        told,
+        problems,
+        assemblies,
+        declare_first,
+    }
 }
 
 /// Adds what symbol fields declare and looks up the names that the board file uses.
@@ -269,6 +317,7 @@ fn reviewed(
         fingerprint,
         accepted: None,
         reopened: None,
+        variants: Vec::new(),
         merged: Vec::new(),
         parts,
         nets,
@@ -303,14 +352,19 @@ fn overrides(board: &Board) -> Vec<Override> {
 
 fn without_accepted(mut counts: Counts, findings: &[Reviewed]) -> Counts {
     for reviewed in findings.iter().filter(|reviewed| reviewed.accepted.is_some()) {
-        let count = match reviewed.finding.verdict {
-            Verdict::Fails => &mut counts.fails,
-            Verdict::Doubtful => &mut counts.doubtful,
-            Verdict::Tight => &mut counts.tight,
-            Verdict::Unknown => &mut counts.unknown,
-            Verdict::Holds => &mut counts.holds,
-        };
+        let count = slot(&mut counts, reviewed.finding.verdict);
         *count = count.saturating_sub(1);
     }
     counts
+}
+
+/// The count of a verdict.
+pub(super) fn slot(counts: &mut Counts, verdict: Verdict) -> &mut usize {
+    match verdict {
+        Verdict::Fails => &mut counts.fails,
+        Verdict::Doubtful => &mut counts.doubtful,
+        Verdict::Tight => &mut counts.tight,
+        Verdict::Unknown => &mut counts.unknown,
+        Verdict::Holds => &mut counts.holds,
+    }
 }

@@ -130,6 +130,7 @@ fn reviewed(check: &ReviewCheck, notice: Notice, fingerprint: String) -> Reviewe
         fingerprint,
         accepted: None,
         reopened: None,
+        variants: Vec::new(),
         merged: Vec::new(),
         parts: notice.parts,
         nets: notice.nets,

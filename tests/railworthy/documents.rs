@@ -198,6 +198,11 @@ fn limits() -> String {
         ("depth of folders below one that is named", "`cli::DEEPEST_FOLDER`", grouped(cli::DEEPEST_FOLDER)),
         ("files and folders below one that is named", "`cli::MOST_ENTRIES`", grouped(cli::MOST_ENTRIES)),
         ("boards below one that is named", "`cli::MOST_BOARDS`", grouped(cli::MOST_BOARDS)),
+        (
+            "variants and second sources judged",
+            "`review::MOST_ASSEMBLIES`",
+            grouped(railworthy::review::MOST_ASSEMBLIES),
+        ),
         ("characters of a comment in Markdown", "`report::LONGEST_PAGE`", grouped(report::LONGEST_PAGE)),
     ];
     let rows = rows.iter().map(|(what, name, most)| format!("| {what} | {most} | {name} |\n"));

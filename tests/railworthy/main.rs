@@ -59,4 +59,5 @@ mod supply_tree;
 mod sweeps;
 mod text_formats;
 mod user_checks;
+mod variants;
 mod wiring;

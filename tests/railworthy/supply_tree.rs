@@ -10,17 +10,19 @@ use crate::small_board::{Part, netlist};
 /// Pins as number, name, type and net.
 type Pins = Vec<(&'static str, &'static str, &'static str, &'static str)>;
 
-fn part(reference: &'static str, value: &str, symbol: (&'static str, &'static str, &'static str), pins: Pins) -> Part {
+fn part(
+    reference: &'static str,
+    value: &str,
+    symbol: (&'static str, &'static str, &'static str),
+    pins: Pins,
+) -> Part {
     Part { reference, value: value.to_owned(), symbol, pins }
 }
 
 fn regulator(reference: &'static str, value: &str, input: &'static str, output: &'static str) -> Part {
     let symbol = ("Regulator_Linear", "LM1117MP-3.3", "Linear regulator, 3.3V fixed output");
-    let pins = vec![
-        ("1", "GND", "power_in", "GND"),
-        ("2", "VO", "power_out", output),
-        ("3", "VI", "power_in", input),
-    ];
+    let pins =
+        vec![("1", "GND", "power_in", "GND"), ("2", "VO", "power_out", output), ("3", "VI", "power_in", input)];
     part(reference, value, symbol, pins)
 }
 
@@ -88,8 +90,7 @@ fn nets_in_a_circle_are_named_and_not_followed_forever() {
 fn the_tree_of_a_long_chain_stays_on_the_page() {
     let nets: Vec<&'static str> = (1..=30).map(|at| format!("LONG_NAME_OF_A_RAIL_{at}").leak() as &str).collect();
     let names: Vec<&'static str> = (1..30).map(|at| format!("D{at}").leak() as &str).collect();
-    let parts: Vec<Part> =
-        nets.windows(2).zip(&names).map(|(pair, name)| schottky(name, pair[0], pair[1])).collect();
+    let parts: Vec<Part> = nets.windows(2).zip(&names).map(|(pair, name)| schottky(name, pair[0], pair[1])).collect();
     let board = format!("[[supply]]\nnet = \"{}\"\nvoltage = \"40 .. 50 V\"\n", nets[0]);
     let text = tree(&parts, &board);
     for net in &nets {

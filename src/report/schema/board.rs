@@ -107,6 +107,11 @@ fn part() -> Value {
         Key("heatsink", figure("Heat sink to ambient", "3 °C/W"), Optional),
         Key("junction_to_ambient", figure("The whole way", "62 °C/W"), Optional),
         Key("family", figure("The part family that it is", "1117 / LM1117"), Optional),
+        Key(
+            "alternatives",
+            list("Second sources: each is judged in its place", text("A value or part number")),
+            Optional,
+        ),
         Key("role", word("Leaves the part out of all judgement", ["ignore"]), Optional),
         Key("kind", word("What it is", ["series", "shunt", "reference", "switching"]), Optional),
         Key("polarity", word("The sign of its output", ["positive", "negative"]), Optional),

@@ -15,6 +15,11 @@ pub(super) fn check() -> Value {
     keys.extend([
         Key("regulators", list("Every regulator and reference", table("", regulator())), Required),
         Key("not_judged", list("Recognized and not judged", not_judged()), Required),
+        Key(
+            "assemblies",
+            list("The ways of fitting the board that were judged; none: as drawn only", text("")),
+            Required,
+        ),
         Key("findings", list("Every verdict but `holds`", finding()), Required),
         Key("counts", counts(), Required),
         Key("declare_first", list("What to declare first", declaration()), Required),
@@ -210,6 +215,7 @@ pub(super) fn finding_keys() -> Vec<Key> {
         Key("sheet", text("Sheet path"), Required),
         Key("parts", list("References", text("")), Required),
         Key("nets", list("Names", text("")), Required),
+        Key("variants", list("The ways of fitting the board for which it stands; none: all", text("")), Required),
         Key("message", text("What is wrong"), Required),
         Key("slack", or_null(slack()), Required),
         Key("quantities", list("The figures that decide", table("", quantity)), Required),

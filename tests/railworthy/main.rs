@@ -14,6 +14,7 @@ mod compare;
 mod corpus_verdicts;
 mod declare;
 mod declared_parts;
+mod demo;
 mod demo_formats;
 mod devices_symbols;
 mod documents;

@@ -1,0 +1,42 @@
+//! The demo boards: they ask many checks, the draft breaks many of them, the release none.
+
+use std::collections::BTreeSet;
+
+use railworthy::review::{Examination, review_check};
+
+use crate::judge::Rules;
+use crate::program::examples;
+
+/// Checks that the release must be asked.
+const ASKED: usize = 20;
+/// Checks that must find something on the draft.
+const BROKEN: usize = 12;
+
+fn judged(board: &str) -> Examination {
+    let found = Rules::built_in().judge(&examples().join(board));
+    assert!(found.problems.is_empty(), "{:?}", found.problems);
+    found
+}
+
+#[test]
+fn the_release_is_asked_many_checks_and_holds_them_all_without_acceptances() {
+    let release = judged("gauge-release.net");
+    let asked: BTreeSet<&str> = release.told.iter().map(|told| told.check.as_str()).collect();
+    assert!(asked.len() >= ASKED, "{asked:?}");
+    let found: Vec<&str> = release.findings.iter().map(|found| found.finding.message.as_str()).collect();
+    assert!(found.is_empty(), "{found:?}");
+    assert_eq!((release.accepted, release.board.accepts.len()), (0, 0));
+    assert_eq!(release.counts.holds, release.counts.requirements);
+}
+
+#[test]
+fn the_draft_breaks_many_of_them() {
+    let draft = judged("gauge-draft.net");
+    let broken: BTreeSet<&str> = draft.findings.iter().map(|found| found.finding.check.as_str()).collect();
+    let broken: BTreeSet<&str> = broken.into_iter().filter(|check| review_check(check).is_none()).collect();
+    assert!(broken.len() >= BROKEN, "{broken:?}");
+    let release = judged("gauge-release.net");
+    for check in broken {
+        assert!(release.told.iter().any(|told| told.check == check), "{check} is not asked of the release");
+    }
+}

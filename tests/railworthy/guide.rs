@@ -119,7 +119,7 @@ fn the_guide_leads_from_nothing_to_a_board_that_is_checked_at_each_commit() {
             _ => panic!("the guide has a block of the kind `{kind}`"),
         }
     }
-    assert_eq!(edits, 1);
+    assert_eq!(edits, 2);
     let checks: Vec<bool> = lines
         .iter()
         .filter(|line| line.starts_with("railworthy check "))

@@ -322,6 +322,18 @@ fn sums_of_tolerances_agree_with_published_limits() {
 }
 
 #[test]
+fn spreads_of_a_product_combine_as_a_published_root_of_squares() {
+    // WCA-05: amosborne/worstcase, tests: 1 ± 2 times 2 ± 5: 2 + √(4² + 5²) = 8.403.
+    let spread = |nominal: f64, spread: f64, what: &str| {
+        fact(Dimension::ONE, Range::clamped(nominal - spread, nominal, nominal + spread), what)
+    };
+    let at = |a: f64, b: f64| spread(1.0, a, "a").times(&spread(2.0, b, "b"));
+    let nominal = at(0.0, 0.0).nominal().unwrap();
+    let (one, other) = (at(2.0, 0.0).worst().high() - nominal, at(0.0, 5.0).worst().high() - nominal);
+    close(nominal + one.hypot(other), 8.403_12, 1e-6);
+}
+
+#[test]
 fn a_current_sense_amplifier_agrees_with_a_published_worst_case_analysis() {
     // WCA-08: the same repository, readme: R1 0.1 ohm, R2 = R4 1.001 k, R3 = R5 50.5 k at 1 %, 150 uV of offset, 36 V, 1 A:
     // 5.045 V, 3.647 to 6.387 V by extreme values.

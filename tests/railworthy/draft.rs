@@ -76,7 +76,11 @@ fn a_draft_loads_as_it_stands_and_makes_the_part_known() {
     save(folder.path(), &draft(folder.path(), "U1").out);
     let vetted = run(folder.path(), &["vet", "house"]);
     assert_eq!(vetted.status, Some(0), "{}", vetted.out);
-    assert!(one_line(&vetted.out).contains("headroom: rated_current, tolerance, dropout"), "{}", vetted.out);
+    assert!(
+        one_line(&vetted.out).contains("headroom: rated_current, input_min, tolerance, dropout"),
+        "{}",
+        vetted.out
+    );
     let rails = run(folder.path(), &["rails", "--rules", "house", "a.net"]);
     assert!(rails.out.contains("taken for QX10 "), "{}", rails.out);
     let again = run(folder.path(), &["draft", "--rules", "house", "a.net", "U1"]);

@@ -93,9 +93,12 @@ fn vetting_tells_of_two_families_that_share_a_name() {
 fn vetting_lists_what_part_files_lack_by_check() {
     let run_own = vet(folder_of(&[("QX1", "\"QX1-{V}*\"")]).path());
     assert_eq!(run_own.status, Some(0), "what is lacking is no error: {}", run_own.out);
-    for text in
-        ["1 of 1 part files lack", "QX1  ", "headroom: tolerance, dropout", "output-capacitor: output_capacitor"]
-    {
+    for text in [
+        "1 of 1 part files lack",
+        "QX1  ",
+        "headroom: input_min, tolerance, dropout",
+        "output-capacitor: output_capacitor",
+    ] {
         let told = run_own.out.split_whitespace().collect::<Vec<_>>().join(" ");
         assert!(told.contains(text.trim_end()), "{text}: {}", run_own.out);
     }

@@ -39,6 +39,15 @@ fn a_part_drops_out_below_output_and_dropout_together() {
 }
 
 #[test]
+fn a_part_is_doubtful_below_the_least_input_of_its_sheet_though_its_dropout_is_small() {
+    let rest = "[[supply]]\nnet = \"VIN\"\nvoltage = \"@ V\"\n[[load]]\nnet = \"OUT\"\ncurrent = \"1 A\"\n";
+    let declared = declared_with("output_voltage = \"1.2 V\"\ninput_min = \"2.7 V\"\n", rest);
+    // 1.2 V + 1 V of dropout, then 2.7 V.
+    let edges = [(2.2, Doubtful), (2.7, Holds)];
+    Sweep::new(&board(Vec::new()), &declared, "headroom", "U1").turns(Fails, &edges);
+}
+
+#[test]
 fn behind_a_diode_the_guess_at_its_drop_makes_the_verdict_milder_step_by_step() {
     // At 1 A a silicon diode is taken to drop 0.85 V (0.75 to 1.3 times that), and certainly nothing less than 0 V.
     let drop = 0.85;

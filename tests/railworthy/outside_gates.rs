@@ -36,7 +36,7 @@ fn boards(folder: &Path) -> Vec<(&'static str, Vec<String>)> {
         ("damaged.net", cut),
         ("damaged.railworthy.toml", settings.replace("[[rail]]", "[[rali]]")),
         ("clean.net", release),
-        ("clean.railworthy.toml", settings),
+        ("clean.railworthy.toml", fs::read_to_string(examples().join("gauge-release.railworthy.toml")).unwrap()),
         ("mark and line ends.net", format!("\u{feff}{}", draft.replace('\n', "\r\n"))),
         ("[x](0) {1} #ä%.net", hostile_board()),
         ("no-netlist.net", "\u{feff}<html>\r\n".to_owned()),

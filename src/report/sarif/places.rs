@@ -32,6 +32,8 @@ impl Places {
             counts.push(count);
             count += characters(chunk);
         }
+        // The end of a text whose length is a multiple of the stride begins a block of its own.
+        counts.push(count);
         // What was no UTF-8 was replaced, so that bytes behind it lie elsewhere in the file.
         let is_exact = !text.contains('\u{fffd}');
         Self { source: source.clone(), lines, counts, is_exact }
@@ -119,6 +121,13 @@ mod tests {
     fn bytes_of_a_replaced_text_are_not_told() {
         let region = Places::of(&Source::new("x", "a\u{fffd}b")).region(Span::new(4, 5));
         assert_eq!((region.byte_offset, region.byte_length, region.char_offset), (None, None, 2));
+    }
+
+    #[test]
+    fn the_end_of_a_text_as_long_as_a_stride_is_a_place_like_others() {
+        let text = "a".repeat(STRIDE);
+        assert_eq!(numbers(&text, STRIDE, STRIDE), [1, STRIDE + 1, 1, STRIDE + 1, STRIDE, 0]);
+        assert_eq!(numbers(&text, 1, STRIDE), [1, 2, 1, STRIDE + 1, 1, STRIDE - 1]);
     }
 
     proptest! {

@@ -24,7 +24,7 @@ fn figure(parts: &[Part], board: &str, name: &str) -> Quantity {
     facts.figure(Subject::Regulator(RegulatorId::first()), name).unwrap()
 }
 
-fn close(value: f64, published: f64, relative: f64) {
+pub(crate) fn close(value: f64, published: f64, relative: f64) {
     assert!((value / published - 1.0).abs() <= relative, "{value} against {published}");
 }
 
@@ -140,7 +140,7 @@ fn the_zero_of_an_esr_lies_where_published_sheets_put_it() {
     close(figure(&parts, &board, "esr_zero").nominal().unwrap(), 2_500.0, 0.021);
 }
 
-fn fact(dimension: Dimension, range: Range, what: &str) -> Quantity {
+pub(crate) fn fact(dimension: Dimension, range: Range, what: &str) -> Quantity {
     Quantity::fact(dimension, range, Evidence::new(Grade::Declared, what, "worked example"))
 }
 
@@ -184,7 +184,7 @@ fn a_ceramic_whose_capacitance_falls_with_its_charge_fills_sooner() {
 }
 
 /// A divider by extreme values: every part at the end that is worst.
-fn divider(supply: Range, upper: f64, lower: f64, tolerance: f64) -> Quantity {
+pub(crate) fn divider(supply: Range, upper: f64, lower: f64, tolerance: f64) -> Quantity {
     let supply = fact(Dimension::VOLTAGE, supply, "supply");
     let upper = fact(Dimension::RESISTANCE, Range::with_tolerance(upper, tolerance), "upper");
     let lower = fact(Dimension::RESISTANCE, Range::with_tolerance(lower, tolerance), "lower");

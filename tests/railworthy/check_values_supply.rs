@@ -3,10 +3,11 @@
 
 use railworthy::board::{Board, Options};
 use railworthy::facts::{Facts, Reservoir, Subject};
-use railworthy::quantity::{Dimension, Evidence, Grade, Quantity, Range, Slope};
+use railworthy::quantity::{Dimension, Quantity, Range, Slope};
 use railworthy::recognize::RegulatorId;
 use railworthy::source::Source;
 
+use crate::check_values::{close, divider, fact};
 use crate::judge::{Rules, TODAY};
 use crate::small_board::{Part, netlist};
 
@@ -22,14 +23,6 @@ fn figures<const N: usize>(parts: &[Part], board: &str, names: [&str; N]) -> [Qu
     assert!(found.problems.is_empty(), "{:?}", found.problems);
     let facts = Facts::new(&found.design, &found.board, &rules.knowledge);
     names.map(|name| facts.figure(Subject::Regulator(RegulatorId::first()), name).unwrap())
-}
-
-fn close(value: f64, published: f64, relative: f64) {
-    assert!((value / published - 1.0).abs() <= relative, "{value} against {published}");
-}
-
-fn fact(dimension: Dimension, range: Range, what: &str) -> Quantity {
-    Quantity::fact(dimension, range, Evidence::new(Grade::Declared, what, "worked example"))
 }
 
 fn series(value: &str) -> Part {
@@ -226,15 +219,6 @@ fn a_series_resistor_feeds_a_zener_within_its_corners() {
     close(resistance(&volts(20.0, 7.2), 0.11), 116.36, 5e-5);
     close(volts(10.0, 6.8).nominal().unwrap() / 1e3 - 0.1e-3, 3.1e-3, 1e-9);
     close(resistance(&volts(10.0, 6.8), 6.8e-3 + 1e-3), 410.3, 2e-4);
-}
-
-/// A divider by extreme values: every part at the end that is worst.
-fn divider(supply: Range, upper: f64, lower: f64, tolerance: f64) -> Quantity {
-    let supply = fact(Dimension::VOLTAGE, supply, "supply");
-    let upper = fact(Dimension::RESISTANCE, Range::with_tolerance(upper, tolerance), "upper");
-    let lower = fact(Dimension::RESISTANCE, Range::with_tolerance(lower, tolerance), "lower");
-    let inputs = [(&supply, Slope::Rising), (&upper, Slope::Falling), (&lower, Slope::Rising)];
-    Quantity::monotone(Dimension::VOLTAGE, &inputs, |v| v[0] * v[2] / (v[1] + v[2]))
 }
 
 const SUPPLY: (f64, f64, f64) = (4.8, 5.0, 5.1);

@@ -9,8 +9,8 @@ use railworthy::source::Source;
 use crate::judge::{Rules, TODAY};
 use crate::small_board::{Part, netlist};
 
-/// A figure of the only regulator of a board.
-fn figure(parts: &[Part], board: &str, name: &str) -> Quantity {
+/// Figures of the only regulator of a board.
+pub(crate) fn figures<const N: usize>(parts: &[Part], board: &str, names: [&str; N]) -> [Quantity; N] {
     let rules = Rules::built_in();
     let (board, problems) = Board::read(&Source::new("small.railworthy.toml", board), Options::default());
     assert!(problems.is_empty(), "{problems:?}");
@@ -21,7 +21,13 @@ fn figure(parts: &[Part], board: &str, name: &str) -> Quantity {
     assert!(found.problems.is_empty(), "{:?}", found.problems);
     assert_eq!(found.design.regulators.len(), 1);
     let facts = Facts::new(&found.design, &found.board, &rules.knowledge);
-    facts.figure(Subject::Regulator(RegulatorId::first()), name).unwrap()
+    names.map(|name| facts.figure(Subject::Regulator(RegulatorId::first()), name).unwrap())
+}
+
+/// One of them.
+fn figure(parts: &[Part], board: &str, name: &str) -> Quantity {
+    let [figure] = figures(parts, board, [name]);
+    figure
 }
 
 pub(crate) fn close(value: f64, published: f64, relative: f64) {

@@ -1,29 +1,11 @@
 //! Published worked figures on supplies, heat, shunt references and worst cases: through the whole tool where a board can
 //! hold them, else through its arithmetic of ranges. The source stands beside each.
 
-use railworthy::board::{Board, Options};
-use railworthy::facts::{Facts, Reservoir, Subject};
+use railworthy::facts::Reservoir;
 use railworthy::quantity::{Dimension, Quantity, Range, Slope};
-use railworthy::recognize::RegulatorId;
-use railworthy::source::Source;
 
-use crate::check_values::{close, divider, fact};
-use crate::judge::{Rules, TODAY};
-use crate::small_board::{Part, netlist};
-
-/// Figures of the only regulator of a board.
-fn figures<const N: usize>(parts: &[Part], board: &str, names: [&str; N]) -> [Quantity; N] {
-    let rules = Rules::built_in();
-    let (board, problems) = Board::read(&Source::new("small.railworthy.toml", board), Options::default());
-    assert!(problems.is_empty(), "{problems:?}");
-    let text = netlist(parts);
-    let found =
-        railworthy::review::examine("small.net", text.as_bytes(), board, &rules.knowledge, &rules.checks, TODAY);
-    let found = found.unwrap();
-    assert!(found.problems.is_empty(), "{:?}", found.problems);
-    let facts = Facts::new(&found.design, &found.board, &rules.knowledge);
-    names.map(|name| facts.figure(Subject::Regulator(RegulatorId::first()), name).unwrap())
-}
+use crate::check_values::{close, divider, fact, figures};
+use crate::small_board::Part;
 
 fn series(value: &str) -> Part {
     let symbol = ("Regulator_Linear", "QZ1", "Linear regulator");

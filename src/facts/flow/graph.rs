@@ -1,6 +1,6 @@
 //! The structure of the supply: which net feeds which, through what.
 
-use std::collections::{HashMap, HashSet};
+use std::collections::HashMap;
 
 use petgraph::Direction;
 use petgraph::algo::kosaraju_scc;
@@ -175,19 +175,6 @@ impl Flow {
         circles.sort_unstable();
         let net = |node: NodeIndex| self.graph.node_weight(node).copied();
         circles.into_iter().map(|group| group.into_iter().filter_map(net).collect()).collect()
-    }
-
-    /// Every net that is fed, at any depth, by one.
-    #[must_use]
-    pub fn behind(&self, net: NetId) -> HashSet<NetId> {
-        let mut seen = HashSet::from([net]);
-        let mut stack = vec![net];
-        while let Some(at) = stack.pop() {
-            let next: Vec<NetId> = self.fed(at).map(|(_, to)| to).filter(|to| seen.insert(*to)).collect();
-            stack.extend(next);
-        }
-        seen.remove(&net);
-        seen
     }
 }
 

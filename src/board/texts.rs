@@ -61,6 +61,7 @@ fn example(dimension: Dimension) -> &'static str {
         (Dimension::FREQUENCY, "50 Hz"),
         (Dimension::TEMPERATURE, "-20 .. 55 °C"),
         (Dimension::THERMAL_RESISTANCE, "62 °C/W"),
+        (Dimension::ANGLE, "45°"),
         (Dimension::LENGTH, "1.5 m"),
     ];
     EXAMPLES.iter().find(|(known, _)| *known == dimension).map_or("1", |(_, example)| example)

@@ -2,19 +2,20 @@
 
 use std::fmt;
 
-/// A dimension as powers of volt, ampere, second and kelvin: enough for every unit of the trade, and closed under
-/// multiplication and division.
+/// A dimension as powers of volt, ampere, second, kelvin and degree of angle: enough for every unit of the trade, and
+/// closed under multiplication and division.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct Dimension {
     volt: i8,
     ampere: i8,
     second: i8,
     kelvin: i8,
+    angle: i8,
 }
 
 impl Dimension {
     const fn of(volt: i8, ampere: i8, second: i8, kelvin: i8) -> Self {
-        Self { volt, ampere, second, kelvin }
+        Self { volt, ampere, second, kelvin, angle: 0 }
     }
 
     /// A plain number.
@@ -39,7 +40,9 @@ impl Dimension {
     pub const TEMPERATURE: Self = Self::of(0, 0, 0, 1);
     /// Kelvins (degrees Celsius) per watt.
     pub const THERMAL_RESISTANCE: Self = Self::of(-1, -1, 0, 1);
-    /// Metres and degrees of angle count as plain numbers: nothing is computed with them across units.
+    /// Degrees of phase: a dimension of their own, so that no margin is compared with a plain number.
+    pub const ANGLE: Self = Self { angle: 1, ..Self::ONE };
+    /// Metres count as plain numbers: nothing is computed with them across units.
     pub const LENGTH: Self = Self::ONE;
 
     /// Every dimension whose unit has a name of its own, plain numbers first.
@@ -55,28 +58,31 @@ impl Dimension {
         Self::FREQUENCY,
         Self::TEMPERATURE,
         Self::THERMAL_RESISTANCE,
+        Self::ANGLE,
     ];
 
     /// The dimension of a product.
     #[must_use]
     pub const fn times(self, other: Self) -> Self {
-        Self::of(
-            self.volt.saturating_add(other.volt),
-            self.ampere.saturating_add(other.ampere),
-            self.second.saturating_add(other.second),
-            self.kelvin.saturating_add(other.kelvin),
-        )
+        Self {
+            volt: self.volt.saturating_add(other.volt),
+            ampere: self.ampere.saturating_add(other.ampere),
+            second: self.second.saturating_add(other.second),
+            kelvin: self.kelvin.saturating_add(other.kelvin),
+            angle: self.angle.saturating_add(other.angle),
+        }
     }
 
     /// The dimension of a quotient.
     #[must_use]
     pub const fn over(self, other: Self) -> Self {
-        Self::of(
-            self.volt.saturating_sub(other.volt),
-            self.ampere.saturating_sub(other.ampere),
-            self.second.saturating_sub(other.second),
-            self.kelvin.saturating_sub(other.kelvin),
-        )
+        Self {
+            volt: self.volt.saturating_sub(other.volt),
+            ampere: self.ampere.saturating_sub(other.ampere),
+            second: self.second.saturating_sub(other.second),
+            kelvin: self.kelvin.saturating_sub(other.kelvin),
+            angle: self.angle.saturating_sub(other.angle),
+        }
     }
 
     /// The unit's symbol where it has a name of its own, such as `V`, `Ω`, `F`; empty for a plain number.
@@ -94,8 +100,8 @@ impl Dimension {
             .map_or_else(|| format!("a figure in {self}"), |(_, _, noun)| (*noun).to_owned())
     }
 
-    /// The widest range that is physically possible: nothing below zero but voltages, currents, temperatures and
-    /// plain numbers.
+    /// The widest range that is physically possible: nothing below zero but voltages, currents, temperatures, angles
+    /// and plain numbers.
     #[must_use]
     pub fn is_never_negative(self) -> bool {
         [Self::RESISTANCE, Self::CAPACITANCE, Self::INDUCTANCE, Self::TIME, Self::FREQUENCY].contains(&self)
@@ -115,6 +121,7 @@ const NAMES: &[(Dimension, &str, &str)] = &[
     (Dimension::FREQUENCY, "Hz", "a frequency"),
     (Dimension::TEMPERATURE, "°C", "a temperature"),
     (Dimension::THERMAL_RESISTANCE, "°C/W", "a thermal resistance"),
+    (Dimension::ANGLE, "deg", "an angle"),
 ];
 
 impl fmt::Display for Dimension {
@@ -122,7 +129,8 @@ impl fmt::Display for Dimension {
         if let Some(symbol) = self.symbol() {
             return formatter.write_str(symbol);
         }
-        let powers = [("V", self.volt), ("A", self.ampere), ("s", self.second), ("K", self.kelvin)];
+        let powers =
+            [("V", self.volt), ("A", self.ampere), ("s", self.second), ("K", self.kelvin), ("deg", self.angle)];
         for (index, (symbol, power)) in powers.iter().filter(|(_, power)| *power != 0).enumerate() {
             let dot = if index > 0 { "·" } else { "" };
             match power {
@@ -151,5 +159,7 @@ mod tests {
         assert_eq!(Dimension::THERMAL_RESISTANCE.times(Dimension::POWER), Dimension::TEMPERATURE);
         assert_eq!(Dimension::INDUCTANCE.over(Dimension::TIME), Dimension::RESISTANCE);
         assert_eq!(Dimension::VOLTAGE.times(Dimension::VOLTAGE).to_string(), "V^2");
+        assert_eq!(Dimension::ANGLE.over(Dimension::ANGLE), Dimension::ONE);
+        assert_eq!(Dimension::ANGLE.times(Dimension::TIME).to_string(), "s·deg");
     }
 }

@@ -223,8 +223,8 @@ fn rule_folders_are_relative_to_their_file() {
 #[test]
 fn a_date_in_quotes_and_a_slack_of_any_unit_are_read() {
     for (slack, value, dimension) in [
-        ("-3°", -3.0, Dimension::ONE),
-        ("12 deg", 12.0, Dimension::ONE),
+        ("-3°", -3.0, Dimension::ANGLE),
+        ("12 deg", 12.0, Dimension::ANGLE),
         ("-20 mA", -0.02, Dimension::CURRENT),
         ("4 °C", 4.0, Dimension::TEMPERATURE),
         ("-2 uF", -2e-6, Dimension::CAPACITANCE),

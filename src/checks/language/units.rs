@@ -59,6 +59,8 @@ mod tests {
         same("2e-3 A", "2 mA");
         same("45 deg", "45°");
         same("3V3", "3.3 V");
+        assert_eq!(constant("45 deg").unwrap(), (45.0, Dimension::ANGLE));
+        assert_eq!(constant("45 °C").unwrap().1, Dimension::TEMPERATURE);
         assert_eq!(constant("2").unwrap().1, Dimension::ONE);
     }
 

@@ -51,6 +51,7 @@ pub(super) const NAMES: &[(SubjectKind, &str, ValueKind)] = &[
     (REGULATOR, "ceramic_allowed", ValueKind::Flag),
     (REGULATOR, "bulk_is_ceramic", ValueKind::Flag),
     (REGULATOR, "bulk_esr", OHM),
+    (REGULATOR, "phase_margin", ValueKind::Figure(Dimension::ANGLE)),
     (REGULATOR, "esr_low", OHM),
     (REGULATOR, "esr_high", OHM),
     (REGULATOR, "enable_open", ValueKind::Flag),

@@ -84,6 +84,13 @@ fn what_does_not_apply_is_left_out() {
 }
 
 #[test]
+fn a_margin_of_phase_is_set_against_degrees_alone() {
+    let board = Board::default().u1("phase_margin", fact(Dimension::ANGLE, 40.0, 70.0, "margin"));
+    assert_eq!(verdict(&board, "phase_margin >= 45 deg"), Some(Verdict::Fails));
+    assert_eq!(verdict(&board, "phase_margin >= 30°"), Some(Verdict::Holds));
+}
+
+#[test]
 fn the_worst_of_a_group_is_named() {
     let (one, other) = (regulator(7), regulator(8));
     let ohm = |high, what| fact(Dimension::RESISTANCE, 0.0, high, what);

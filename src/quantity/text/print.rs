@@ -14,7 +14,7 @@ const UNBOUNDED: f64 = 1e300;
 const NOTHING: f64 = 1e-18;
 
 /// Prints an amount with its unit and a prefix, to four digits where the first is a 1 and three otherwise: `3.3 V`,
-/// `4.7 µF`, `25.5 mΩ`, `1.24 kΩ`, `-12 V`, `0 A`, `∞`.
+/// `4.7 µF`, `25.5 mΩ`, `1.24 kΩ`, `-12 V`, `45°`, `0 A`, `∞`.
 #[must_use]
 pub fn print_amount(value: f64, dimension: Dimension) -> String {
     if value.is_nan() {
@@ -77,7 +77,7 @@ fn thousands(value: f64, dimension: Dimension) -> i32 {
 }
 
 fn has_prefixes(dimension: Dimension) -> bool {
-    ![Dimension::ONE, Dimension::TEMPERATURE, Dimension::THERMAL_RESISTANCE].contains(&dimension)
+    ![Dimension::ONE, Dimension::TEMPERATURE, Dimension::THERMAL_RESISTANCE, Dimension::ANGLE].contains(&dimension)
         && dimension.symbol().is_some()
 }
 
@@ -128,6 +128,7 @@ fn with_unit(digits: &str, thousands: i32, dimension: Dimension) -> String {
     let prefix = PREFIXES.iter().find(|(power, _)| *power == thousands).map_or("", |(_, prefix)| prefix);
     match dimension.symbol() {
         Some("") => digits.to_owned(),
+        Some(_) if dimension == Dimension::ANGLE => format!("{digits}°"),
         Some(symbol) => format!("{digits} {prefix}{symbol}"),
         None => format!("{digits} {dimension}"),
     }
@@ -166,6 +167,8 @@ mod tests {
             (25.0, Dimension::TEMPERATURE, "25 °C"),
             (0.5, Dimension::TEMPERATURE, "0.5 °C"),
             (62.0, Dimension::THERMAL_RESISTANCE, "62 °C/W"),
+            (45.0, Dimension::ANGLE, "45°"),
+            (-2.887, Dimension::ANGLE, "-2.89°"),
             (1800.0, Dimension::TIME, "1800 s"),
             (0.05, Dimension::ONE, "0.05"),
             (2.5e6, Dimension::FREQUENCY, "2.5 MHz"),
@@ -185,6 +188,7 @@ mod tests {
         assert_eq!(print_range(range(-14.0, -13.2), Dimension::VOLTAGE), "-14 .. -13.2 V");
         assert_eq!(print_range(range(0.0, 470e-6), Dimension::CAPACITANCE), "0 .. 470 µF");
         assert_eq!(print_range(range(300e-9, 1.0), Dimension::CURRENT), "300 nA .. 1 A");
+        assert_eq!(print_range(range(-2.887, 70.33), Dimension::ANGLE), "-2.89 .. 70.3°");
         assert_eq!(print_range(range(3.3, 3.3), Dimension::VOLTAGE), "3.3 V");
         assert_eq!(print_range(range(3.3, 3.3004), Dimension::VOLTAGE), "3.3 V");
         assert_eq!(print_range(Range::new(3.0, 3.0, f64::INFINITY).unwrap(), Dimension::VOLTAGE), "≥ 3 V");

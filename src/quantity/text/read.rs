@@ -37,7 +37,7 @@ impl fmt::Display for ReadError {
 
 impl std::error::Error for ReadError {}
 
-/// Reads one number with its unit: `180 mA`, `4.7uF`, `4u7`, `62 °C/W`, `1k5`, `5 %` (0.05), `1e-6 F`.
+/// Reads one number with its unit: `180 mA`, `4.7uF`, `4u7`, `62 °C/W`, `45°`, `1k5`, `5 %` (0.05), `1e-6 F`.
 ///
 /// The unit must be there, except for a plain number, and where a letter of the unit or a prefix stands for the decimal
 /// point or follows a resistance, capacitance or inductance (`4u7`, `3V3`, `10k`).
@@ -255,7 +255,8 @@ impl<'a> Reader<'a> {
     }
 
     fn has_prefixes(&self) -> bool {
-        ![Dimension::ONE, Dimension::TEMPERATURE, Dimension::THERMAL_RESISTANCE].contains(&self.dimension)
+        ![Dimension::ONE, Dimension::TEMPERATURE, Dimension::THERMAL_RESISTANCE, Dimension::ANGLE]
+            .contains(&self.dimension)
     }
 
     fn takes_a_bare_prefix(&self, prefix: &str) -> bool {

@@ -50,8 +50,8 @@ const UNITS: &[(&str, Dimension, f64)] = &[
     ("m", Dimension::LENGTH, 1.0),
     ("mm", Dimension::LENGTH, 1e-3),
     ("cm", Dimension::LENGTH, 1e-2),
-    ("deg", Dimension::ONE, 1.0),
-    ("°", Dimension::ONE, 1.0),
+    ("deg", Dimension::ANGLE, 1.0),
+    ("°", Dimension::ANGLE, 1.0),
 ];
 
 /// Prefixes; `K` for kilo and `u` for micro are what keyboards give.
@@ -75,7 +75,7 @@ pub(super) const PREFIXES: &[(&str, f64)] = &[
 
 /// Units that take no prefix.
 fn is_whole(symbol: &str, dimension: Dimension) -> bool {
-    dimension == Dimension::ONE || ["°C", "\u{2103}", "degC", "C", "hz"].contains(&symbol)
+    [Dimension::ONE, Dimension::ANGLE].contains(&dimension) || ["°C", "\u{2103}", "degC", "C", "hz"].contains(&symbol)
 }
 
 /// Reads a unit at the start of a text: one, or a product or quotient of several (`V/µs`, `K/W`). `wanted` decides

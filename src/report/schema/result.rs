@@ -117,7 +117,7 @@ pub(super) fn grade() -> Value {
 pub(super) fn bounds() -> Vec<Key> {
     let mut keys: Vec<Key> =
         ["low", "nominal", "high"].map(|key| Key(key, or_null(number("Null: unknown or no bound")), Required)).into();
-    keys.push(Key("unit", text("SI; °C for temperatures"), Required));
+    keys.push(Key("unit", text("SI; °C for temperatures, deg for angles"), Required));
     keys
 }
 

@@ -28,8 +28,10 @@ fn amounts_are_read_as_engineers_type_them() {
         ("-20 C", Dimension::TEMPERATURE, -20.0),
         ("55 °C", Dimension::TEMPERATURE, 55.0),
         ("1.5 m", Dimension::LENGTH, 1.5),
-        ("45 deg", Dimension::ONE, 45.0),
-        ("45°", Dimension::ONE, 45.0),
+        ("45 deg", Dimension::ANGLE, 45.0),
+        ("45°", Dimension::ANGLE, 45.0),
+        ("45 °C", Dimension::TEMPERATURE, 45.0),
+        ("45°C", Dimension::TEMPERATURE, 45.0),
         ("3V3", Dimension::VOLTAGE, 3.3),
         (" 0,5 V ", Dimension::VOLTAGE, 0.5),
         ("\u{2212}12 V", Dimension::VOLTAGE, -12.0),
@@ -61,6 +63,12 @@ fn what_is_wrong_is_said_at_its_place() {
         wrong("3 mA", Dimension::VOLTAGE),
         ("expected a voltage, but `mA` is the unit of a current".to_owned(), 2..4)
     );
+    let angle = "expected a plain number, but `°` is the unit of an angle".to_owned();
+    assert_eq!(wrong("45°", Dimension::ONE), (angle, 2..4));
+    assert_eq!(wrong("45", Dimension::ANGLE), ("expected an angle: the unit `deg` is missing".to_owned(), 2..2));
+    let angle = "expected a temperature, but `°` is the unit of an angle".to_owned();
+    assert_eq!(wrong("45°", Dimension::TEMPERATURE), (angle, 2..4));
+    assert!(read_amount("45 mdeg", Dimension::ANGLE).is_err());
     assert_eq!(wrong("3.3", Dimension::VOLTAGE), ("expected a voltage: the unit `V` is missing".to_owned(), 3..3));
     assert_eq!(wrong("", Dimension::CURRENT), ("expected a current".to_owned(), 0..0));
     assert_eq!(wrong("five V", Dimension::VOLTAGE), ("expected a voltage".to_owned(), 0..6));
@@ -96,6 +104,8 @@ fn ranges_are_read_in_every_form() {
         ("60 / 62 / 65 K/W", Dimension::THERMAL_RESISTANCE, (60.0, 62.0, 65.0)),
         ("-14 .. -13.2 V", Dimension::VOLTAGE, (-14.0, -13.6, -13.2)),
         ("-12 V ± 5 %", Dimension::VOLTAGE, (-12.6, -12.0, -11.4)),
+        ("30 .. 60°", Dimension::ANGLE, (30.0, 45.0, 60.0)),
+        ("45 deg ± 5 deg", Dimension::ANGLE, (40.0, 45.0, 50.0)),
         ("-20 .. 55 °C", Dimension::TEMPERATURE, (-20.0, 17.5, 55.0)),
         ("0 .. 470 uF", Dimension::CAPACITANCE, (0.0, 235e-6, 470e-6)),
         ("5 V", Dimension::VOLTAGE, (5.0, 5.0, 5.0)),

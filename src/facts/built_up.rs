@@ -4,7 +4,7 @@ use super::Facts;
 use super::zener::zener_volts;
 use crate::circuit::{DeviceId, DeviceKind};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
-use crate::recognize::{AmplifierKind, BuiltUp, ReferenceKind, Regulator};
+use crate::recognize::{AmplifierKind, BuiltUp, Junction, Reference, ReferenceKind, Regulator};
 
 /// A base-emitter drop over temperature and current, volts (common practice: 0.65 V, −2 mV/K).
 const BASE_EMITTER: (f64, f64, f64) = (0.5, 0.68, 0.9);
@@ -55,12 +55,43 @@ impl Facts<'_> {
         Quantity::given(Dimension::VOLTAGE, range, Pair::NOT_NEGATIVE, evidence)
     }
 
-    /// The magnitude of the reference, where the whole of it is compared.
+    /// The magnitude that the sensed voltage is held at, where the whole reference or a divided part is compared.
     pub(super) fn built_up_reference(&self, regulator: &Regulator, built: &BuiltUp) -> Option<Quantity> {
-        let reference = &built.reference;
-        if !reference.whole {
-            return None;
+        let held = self.compared_part(&built.reference, self.held_reference(regulator, built)?)?;
+        let junction = built.amplifier.as_ref().map_or(Junction::None, |amplifier| amplifier.junction);
+        let drop = || self.junction(regulator, "base-emitter drop", BASE_EMITTER, 1);
+        Some(match junction {
+            Junction::None => held,
+            Junction::Adds => held.plus(&drop()),
+            Junction::Takes => {
+                let drop = drop();
+                let inputs = [(&held, Slope::Rising), (&drop, Slope::Falling)];
+                Quantity::monotone(Dimension::VOLTAGE, &inputs, |v| match v {
+                    [held, drop] => (held - drop).max(0.0),
+                    _ => f64::NAN,
+                })
+            }
+        })
+    }
+
+    /// What resistors leave of a reference: `V R2 / (R1 + R2)`, R1 from the reference, R2 to ground.
+    fn compared_part(&self, reference: &Reference, held: Quantity) -> Option<Quantity> {
+        if reference.whole {
+            return Some(held);
         }
+        let divider = reference.divider.as_ref().filter(|divider| !divider.trimmed)?;
+        let upper = self.network(&divider.upper, &divider.upper_parallel)?;
+        let lower = self.network(&divider.lower, &divider.lower_parallel)?;
+        let inputs = [(&held, Slope::Rising), (&upper, Slope::Falling), (&lower, Slope::Rising)];
+        Some(Quantity::monotone(Dimension::VOLTAGE, &inputs, |v| match v {
+            [held, upper, lower] => held * lower / (upper + lower),
+            _ => f64::NAN,
+        }))
+    }
+
+    /// The magnitude that the reference itself holds.
+    fn held_reference(&self, regulator: &Regulator, built: &BuiltUp) -> Option<Quantity> {
+        let reference = &built.reference;
         match reference.kind {
             ReferenceKind::BaseEmitter => Some(self.junction(regulator, "base-emitter drop", BASE_EMITTER, 1)),
             ReferenceKind::Zener | ReferenceKind::Diodes => {

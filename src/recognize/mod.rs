@@ -38,7 +38,10 @@ mod walk;
 mod words;
 
 pub use bank::{Side, bank, bank_to};
-pub use built_up::{Amplifier, AmplifierKind, BuiltUp, Duty, Reference, ReferenceFeed, ReferenceKind};
+pub use built_up::{
+    Amplifier, AmplifierKind, BuiltUp, Duty, Junction, Reference, ReferenceFeed, ReferenceKind, Transistor,
+    transistors,
+};
 pub use drawn::{DrawnPin, drawn_pins};
 pub use find::recognize;
 pub use identity::holds_part_number;

@@ -40,7 +40,7 @@ fn told(design: &Design) -> Vec<String> {
         .collect()
 }
 
-fn told_of(folder: &Path, name: &str, knowledge: &Knowledge) -> Vec<String> {
+pub(crate) fn told_of(folder: &Path, name: &str, knowledge: &Knowledge) -> Vec<String> {
     told(&design(&folder.join(name), knowledge))
 }
 

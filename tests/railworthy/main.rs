@@ -5,6 +5,7 @@
 mod accept_command;
 mod accepted;
 mod archive;
+mod built_up_figures;
 mod built_up_regulators;
 mod check_values;
 mod check_values_supply;
@@ -43,6 +44,7 @@ mod part_files;
 mod parts_page;
 mod program;
 mod project;
+mod rails_figures;
 mod recognition_corpus;
 mod recognition_symbols;
 mod reference_tokens;

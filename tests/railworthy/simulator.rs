@@ -11,7 +11,7 @@ use crate::oracle_solver::{deck_text, loops};
 use crate::shared::shared_folder;
 
 /// Whether the simulator is installed; without it, says that a test skips.
-fn is_installed() -> bool {
+pub(crate) fn is_installed() -> bool {
     let found = Command::new("ngspice").arg("--version").stdout(Stdio::null()).stderr(Stdio::null()).status().is_ok();
     if !found {
         #[allow(clippy::print_stderr, reason = "a test that skips says so")]
@@ -22,18 +22,23 @@ fn is_installed() -> bool {
     found
 }
 
-/// Runs a deck in a folder of its own, which holds what it wrote.
 fn run(shared: &Path, deck: &str) -> tempfile::TempDir {
+    run_deck(&shared.join(format!("oracle/decks/{deck}.cir")))
+}
+
+/// Runs a deck in a folder of its own, which holds what it wrote.
+pub(crate) fn run_deck(deck: &Path) -> tempfile::TempDir {
     let folder = tempfile::tempdir().unwrap();
     std::fs::create_dir(folder.path().join("out")).unwrap();
     let mut command = Command::new("ngspice");
-    command.arg("-b").arg(shared.join(format!("oracle/decks/{deck}.cir"))).current_dir(folder.path());
+    command.arg("-b").arg(deck).current_dir(folder.path());
     let status = command.stdout(Stdio::null()).stderr(Stdio::null()).status().unwrap();
-    assert!(status.success(), "{deck}: {status}");
+    assert!(status.success(), "{}: {status}", deck.display());
     folder
 }
 
-fn table(folder: &tempfile::TempDir, name: &str) -> Vec<Vec<f64>> {
+/// The rows of numbers that a deck wrote under a name.
+pub(crate) fn table(folder: &tempfile::TempDir, name: &str) -> Vec<Vec<f64>> {
     let text = std::fs::read_to_string(folder.path().join("out").join(name)).unwrap();
     text.lines().map(|line| line.split_whitespace().map(|word| word.parse().unwrap()).collect()).collect()
 }

@@ -4,7 +4,7 @@ use crate::circuit::{Circuit, DeviceId, DeviceKind, NetId};
 
 use super::super::model::Regulator;
 use super::super::walk::SAMPLE;
-use super::model::{Amplifier, AmplifierKind, Reference, ReferenceKind};
+use super::model::{Amplifier, AmplifierKind, Junction, Reference, ReferenceKind};
 use super::network::Network;
 use super::pass::Stage;
 use super::reference::{holding, rail};
@@ -125,7 +125,7 @@ fn amplified(network: &Network<'_>, stage: &Stage, ends: &Ends, step: &Step) -> 
         let net = shunt.output_net?;
         let sensing = shunt.roles.adjust.first().and_then(|pin| network.circuit.net_of(shunt.device, *pin))?;
         let devices = vec![shunt.device];
-        let reference = Reference { kind: ReferenceKind::Shunt, devices, net, whole: true, in_sense: false };
+        let reference = Reference::held(ReferenceKind::Shunt, devices, net);
         let compared = Comparison { sensing, sensed, reference, rising: false };
         Some((AmplifierKind::Shunt, vec![shunt.device], compared))
     });
@@ -137,9 +137,10 @@ fn amplified(network: &Network<'_>, stage: &Stage, ends: &Ends, step: &Step) -> 
     let counteracts = |compared: &Comparison| compared.rising ^ step.inverted ^ !stage.follower;
     let mut found = by_op_amps.chain(by_shunts).chain(by_transistors).filter(|(_, _, c)| !counteracts(c));
     let (kind, devices, compared) = found.next()?;
+    let junction = junction(network, kind, step, ends, &compared);
     let own = |one: &&Regulator| kind == AmplifierKind::Shunt && devices.contains(&one.device);
     let shunt = network.error_amplifiers(step.net).iter().find(own).map(|one| Box::new(one.clone()));
-    let amplifier = Amplifier { kind, devices, output: step.net, sensing: compared.sensing, shunt };
+    let amplifier = Amplifier { kind, devices, output: step.net, sensing: compared.sensing, junction, shunt };
     Some(Drive {
         amplifier: Some(amplifier),
         sensed: Some(compared.sensed),
@@ -147,6 +148,19 @@ fn amplified(network: &Network<'_>, stage: &Stage, ends: &Ends, step: &Step) -> 
         drivers: step.drivers.clone(),
         path: step.path.clone(),
     })
+}
+
+/// What the junction of a single transistor does to its reference: where the base senses the output, an NPN transistor
+/// conducts from a drop above what its emitter lies at.
+fn junction(network: &Network<'_>, kind: AmplifierKind, step: &Step, ends: &Ends, compared: &Comparison) -> Junction {
+    let own = compared.reference.kind == ReferenceKind::BaseEmitter || compared.reference.in_sense;
+    let senses = |one: &&Transistor| one.control == compared.sensing || one.emitter == compared.sensing;
+    let single = network.collectors(step.net).find(senses).filter(|_| kind == AmplifierKind::Transistor && !own);
+    match single {
+        Some(one) if (one.n == (one.control == compared.sensing)) == ends.positive => Junction::Adds,
+        Some(_) => Junction::Takes,
+        None => Junction::None,
+    }
 }
 
 /// What a transistor compares whose collector drives the net: its base against that of another with the same emitter
@@ -164,7 +178,9 @@ fn compared_by(
     if !is_rail(network.circuit, one.emitter) {
         for other in network.emitters(one.emitter).filter(paired).take(MOST_NETS) {
             if let Some(compared) = compare(input(one.control), input(other.control)) {
-                return Some((AmplifierKind::Pair, vec![one.device, other.device], compared));
+                let mut devices = vec![one.device, other.device];
+                devices.dedup();
+                return Some((AmplifierKind::Pair, devices, compared));
             }
         }
         let compared = compare(input(one.control), input(one.emitter))?;

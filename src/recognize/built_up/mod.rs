@@ -22,4 +22,5 @@ mod transistor;
 mod tests;
 
 pub(super) use find::add;
-pub use model::{Amplifier, AmplifierKind, BuiltUp, Duty, Reference, ReferenceFeed, ReferenceKind};
+pub use model::{Amplifier, AmplifierKind, BuiltUp, Duty, Junction, Reference, ReferenceFeed, ReferenceKind};
+pub use transistor::{Transistor, transistors};

@@ -35,14 +35,27 @@ impl AmplifierKind {
 pub struct Amplifier {
     /// What it is.
     pub kind: AmplifierKind,
-    /// Its parts: one, or the two of a pair.
+    /// Its parts: one, or the two of a pair that lies in two packages.
     pub devices: Vec<DeviceId>,
     /// The net that it drives.
     pub output: NetId,
     /// The input that senses the output.
     pub sensing: NetId,
+    /// What a single transistor's own junction does to the reference.
+    pub junction: Junction,
     /// A programmable shunt, with its pins and family.
     pub shunt: Option<Box<Regulator>>,
+}
+
+/// What the base-emitter drop of a single transistor does to the reference that it compares with.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub enum Junction {
+    /// Nothing: two inputs of one kind are compared, or the drop is the reference itself.
+    None,
+    /// What is sensed settles a drop above the reference.
+    Adds,
+    /// What is sensed settles a drop below it.
+    Takes,
 }
 
 /// What the output is compared with.
@@ -91,6 +104,9 @@ pub struct Reference {
     pub net: NetId,
     /// Whether the whole of it is compared: no resistors take a part of it.
     pub whole: bool,
+    /// The resistors that take a part of it, from its net to the amplifier's input and from there to ground; `None` where
+    /// the whole of it is compared or more than a divider lies between.
+    pub divider: Option<Divider>,
     /// Whether it lies between the output and the sensing input, in place of the upper divider resistor.
     pub in_sense: bool,
 }
@@ -185,6 +201,13 @@ pub struct BuiltUp {
     pub cut_out: Vec<(DeviceId, Duty)>,
     /// The nets at which it is cut out, in order of the file: supplies and grounds.
     pub boundary: Vec<NetId>,
+}
+
+impl Reference {
+    /// A reference whose whole voltage is compared.
+    pub(super) fn held(kind: ReferenceKind, devices: Vec<DeviceId>, net: NetId) -> Self {
+        Self { kind, devices, net, whole: true, divider: None, in_sense: false }
+    }
 }
 
 impl BuiltUp {

@@ -29,7 +29,7 @@ pub(super) fn outboard(network: &Network<'_>, regulator: &Regulator) -> Option<B
         return None;
     }
     let devices = vec![regulator.device];
-    let reference = Reference { kind: ReferenceKind::Packaged, devices, net: output, whole: true, in_sense: false };
+    let reference = Reference::held(ReferenceKind::Packaged, devices, output);
     let drive = Drive { amplifier: None, sensed: None, reference, drivers: Vec::new(), path: vec![input] };
     let (cut_out, boundary) = cut_out(network.circuit, &stage, &drive, &ends);
     Some(BuiltUp {

@@ -65,7 +65,7 @@ pub(super) fn holding(network: &Network<'_>, net: NetId, above: bool) -> Option<
     });
     if let Some(told) = told {
         let kind = if told.kind == RegulatorKind::Shunt { ReferenceKind::Shunt } else { ReferenceKind::Series };
-        return Some(Reference { kind, devices: vec![told.device], net, whole: true, in_sense: false });
+        return Some(Reference::held(kind, vec![told.device], net));
     }
     // What clamps a rail is no reference.
     if is_rail(circuit, net) || circuit.pin_count(net) > MOST_PINS {
@@ -73,7 +73,7 @@ pub(super) fn holding(network: &Network<'_>, net: NetId, above: bool) -> Option<
     }
     let devices = string(circuit, net, above, &[])?;
     let kind = string_kind(circuit, &devices);
-    Some(Reference { kind, devices, net, whole: true, in_sense: false })
+    Some(Reference::held(kind, devices, net))
 }
 
 /// The rail that a regulator other than this one holds, as a reference.
@@ -82,8 +82,7 @@ pub(super) fn rail(network: &Network<'_>, net: NetId, above: bool, ends: &Ends) 
         (one.polarity == crate::knowledge::Sign::Positive) == above && one.kind == RegulatorKind::Series
     })?;
     let apart = !ends.input.contains(&net) && !ends.output.contains(&net);
-    let (kind, devices) = (ReferenceKind::Rail, vec![told.device]);
-    apart.then_some(Reference { kind, devices, net, whole: true, in_sense: false })
+    apart.then(|| Reference::held(ReferenceKind::Rail, vec![told.device], net))
 }
 
 /// What feeds a reference.

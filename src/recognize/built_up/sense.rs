@@ -4,7 +4,7 @@ use crate::circuit::{Circuit, DeviceKind, NetId};
 
 use super::super::divider;
 use super::super::model::Divider;
-use super::super::walk::SAMPLE;
+use super::super::walk::{SAMPLE, chains};
 use super::model::{Reference, ReferenceFeed, ReferenceKind};
 use super::network::Network;
 use super::reference::{holding, rail, string, string_kind};
@@ -103,17 +103,19 @@ fn referenced(network: &Network<'_>, net: NetId, ends: &Ends, above: bool, block
             continue;
         }
         if let Some(reference) = holding(network, at, above).or_else(|| rail(network, at, above, ends)) {
-            return Some(Reference { whole, ..reference });
+            let divider = if whole { None } else { part_of(circuit, net, at) };
+            return Some(Reference { whole, divider, ..reference });
         }
         if ends.cuts(circuit, at) || circuit.pin_count(at) > MOST_PINS {
             continue;
         }
+        let away = |end: NetId| circuit.net(end).ground || ends.output.contains(&end);
+        whole &= !chains(circuit, at, &ends.output).iter().any(|chain| away(chain.end));
         for device in circuit.devices_on(at).take(SAMPLE).filter(|device| circuit.device(*device).is_fitted()) {
             if !matches!(circuit.device(device).kind, DeviceKind::Resistor | DeviceKind::Potentiometer) {
                 continue;
             }
             for far in circuit.device(device).pins.iter().filter_map(|pin| pin.net) {
-                whole &= !circuit.net(far).ground && !ends.output.contains(&far);
                 let apart = !circuit.net(far).ground && !blocked.contains(&far) && !nets.contains(&far);
                 if apart && nets.len() < MOST_NETS {
                     nets.push(far);
@@ -122,6 +124,16 @@ fn referenced(network: &Network<'_>, net: NetId, ends: &Ends, above: bool, block
         }
     }
     None
+}
+
+/// The divider that gives an input a part of a reference, where nothing else leads to that input.
+fn part_of(circuit: &Circuit, input: NetId, held: NetId) -> Option<Divider> {
+    let known = |end: NetId| end == held || circuit.net(end).ground;
+    if chains(circuit, input, &[held]).iter().any(|chain| !known(chain.end)) {
+        return None;
+    }
+    let divider = divider::read(circuit, input, divider::Ends { output: Some(held), grounds: &[], has_ground: true });
+    (!divider.upper.is_empty() && !divider.lower.is_empty()).then_some(divider)
 }
 
 /// What an amplifier compares.
@@ -145,10 +157,10 @@ pub(super) fn compare(minus: Input, plus: Input) -> Option<Comparison> {
             Some(comparison(net, sensed, reference, true))
         }
         (Input { net, sensed: Some(sensed), opposite: Some(reference), .. }, Input { grounded: true, .. }) => {
-            Some(comparison(net, sensed, Reference { whole: false, ..reference }, false))
+            Some(comparison(net, sensed, Reference { whole: false, divider: None, ..reference }, false))
         }
         (Input { grounded: true, .. }, Input { net, sensed: Some(sensed), opposite: Some(reference), .. }) => {
-            Some(comparison(net, sensed, Reference { whole: false, ..reference }, true))
+            Some(comparison(net, sensed, Reference { whole: false, divider: None, ..reference }, true))
         }
         _ => None,
     }
@@ -167,12 +179,11 @@ pub(super) fn grounded_emitter(network: &Network<'_>, base: NetId, ends: &Ends) 
         let last = devices.first().and_then(|device| circuit.ends(*device)).into_iter().flatten();
         let net = last.into_iter().find(|net| ends.output.contains(net))?;
         let kind = string_kind(circuit, &devices);
-        let reference = Reference { kind, devices, net, whole: true, in_sense: true };
+        let reference = Reference { in_sense: true, ..Reference::held(kind, devices, net) };
         return Some(Comparison { sensing: base, sensed: Sensed { net, divider: None }, reference, rising: false });
     }
     let sensed = sensed(circuit, base, ends)?;
     let divided = sensed.divider.as_ref().is_some_and(|divider| !divider.lower.is_empty());
-    let reference =
-        Reference { kind: ReferenceKind::BaseEmitter, devices: Vec::new(), net: base, whole: true, in_sense: false };
+    let reference = Reference::held(ReferenceKind::BaseEmitter, Vec::new(), base);
     divided.then_some(Comparison { sensing: base, sensed, reference, rising: false })
 }

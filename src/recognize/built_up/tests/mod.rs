@@ -7,6 +7,8 @@ use super::super::tests::design;
 use super::*;
 use crate::circuit::DeviceId;
 
+mod variants;
+
 /// A supply and a load, so that the nets at both ends are supplies.
 const ENDS: &str = "J1 in Conn 1:A=VIN 2:B=GND
     J2 out Conn 1:A=OUT 2:B=GND

@@ -8,8 +8,8 @@ use crate::quantity::{Dimension, Range, read_amount};
 use crate::source::Problem;
 
 use super::declared::{Declared, Place};
-use super::device_model::Allowed::{Any, NotNegative, Positive};
-use super::fault::TextFault;
+use crate::knowledge::Allowed::{Any, NotNegative, Positive};
+use crate::source::TextFault;
 use super::model::{Board, Esr, PartEntry};
 use super::read_entries::peak_is_nominal;
 use super::simulation::read_simulation;

@@ -5,8 +5,6 @@
 //! `resolve` and `check` functions look up the names that they use. Every value is a [`Declared`] and knows its place.
 
 mod declared;
-mod device_model;
-mod fault;
 mod fields;
 mod files;
 mod merge;
@@ -23,8 +21,8 @@ mod tests;
 mod texts;
 
 pub use declared::{Declared, Place};
-pub use device_model::{Allowed, DeviceModel, ModelKind};
-pub use fault::TextFault;
+pub use crate::knowledge::{Allowed, DeviceModel, ModelKind};
+pub use crate::source::TextFault;
 pub use files::{FileError, HOUSE_FILE, LARGEST_FILE, Links, find, find_house, find_own, own_file, read_source};
 pub(crate) use files::{exists, parent};
 pub use model::{

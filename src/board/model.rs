@@ -8,7 +8,7 @@ use crate::quantity::{Dimension, Range};
 use crate::source::Source;
 
 use super::declared::Declared;
-use super::device_model::DeviceModel;
+use crate::knowledge::DeviceModel;
 use super::texts::read_slack;
 use crate::source::toml::Date;
 

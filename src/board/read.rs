@@ -8,7 +8,7 @@ use crate::source::toml::{Date, Document, Spanned, Table, Value};
 use crate::source::{Problem, Source};
 
 use super::declared::{Declared, Place};
-use super::device_model::Allowed::Any;
+use crate::knowledge::Allowed::Any;
 use super::files::{Links, find, find_house, read_source};
 use super::model::{Accept, Board, SettingValue};
 use super::reader::Reader;

@@ -4,7 +4,7 @@ use crate::quantity::{Dimension, Range};
 use crate::source::toml::Table;
 
 use super::declared::{Declared, Place};
-use super::device_model::Allowed::{Any, NotNegative, Positive};
+use crate::knowledge::Allowed::{Any, NotNegative, Positive};
 use super::model::{LoadEntry, LoadKind, RailEntry, Standard, SupplyEntry, SupplyNodes};
 use super::reader::{Reader, span_of};
 

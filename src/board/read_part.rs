@@ -5,9 +5,9 @@ use crate::quantity::{Dimension, Range};
 use crate::source::toml::{Table, Text, Value, nearest};
 
 use super::declared::Declared;
-use super::device_model::Allowed::{Any, NotNegative, Positive};
-use super::device_model::DeviceModel;
-use super::fault::TextFault;
+use crate::knowledge::Allowed::{Any, NotNegative, Positive};
+use crate::knowledge::DeviceModel;
+use crate::source::TextFault;
 use super::model::{Esr, PartEntry};
 use super::reader::{Reader, span_of};
 use super::texts::{is_single, plain_words, read_dropout, read_esr_window, read_part_figure, read_tolerance};

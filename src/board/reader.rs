@@ -5,7 +5,7 @@ use crate::source::Span;
 use crate::source::toml::{Document, Spanned, Table, Text, nearest};
 
 use super::declared::{Declared, Place};
-use super::device_model::Allowed;
+use crate::knowledge::Allowed;
 use super::texts::read_figure;
 
 /// The file that is being read.

@@ -3,8 +3,8 @@
 use crate::circuit::{Device, DeviceKind};
 use crate::quantity::Range;
 
-use super::device_model::{DeviceModel, ModelKind, SetError};
-use super::fault::TextFault;
+use crate::knowledge::{DeviceModel, ModelKind, SetError, model_words};
+use crate::source::TextFault;
 use super::fields::field;
 
 /// The model that `Sim.Device`, `Sim.Type` and `Sim.Params` carry; `None` where there is none, or one of a device or
@@ -16,7 +16,7 @@ pub(super) fn read_simulation(device: &Device) -> Result<Option<DeviceModel>, Te
     let mut model = DeviceModel::new(kind);
     let (mut width, mut length) = (None, None);
     let mut found = false;
-    for (at, word) in super::device_model::words(text) {
+    for (at, word) in model_words(text) {
         let Some((name, value)) = word.split_once('=') else { continue };
         let modelled = kind.parameters().iter().any(|(own, _)| own.eq_ignore_ascii_case(name));
         let size = matches!(name.to_ascii_lowercase().as_str(), "w" | "l");

@@ -18,6 +18,7 @@ pub(super) fn run(typed: &Catalog, terminal: Terminal, to: &mut Streams<'_>) -> 
             Shelf::Parts => catalog::parts(&rules.knowledge, look),
             Shelf::Supplies => catalog::supplies(&rules.knowledge, look),
             Shelf::Technologies => catalog::technologies(&rules.knowledge, look),
+            Shelf::Devices => catalog::devices(&rules.knowledge, look),
             Shelf::Quantities => catalog::quantities(look),
         };
         return to.result(&text).max(status);
@@ -27,6 +28,7 @@ pub(super) fn run(typed: &Catalog, terminal: Terminal, to: &mut Streams<'_>) -> 
         Shelf::Parts => catalog::part(&rules.knowledge, &rules.checks, name, look),
         Shelf::Supplies => catalog::supply(&rules.knowledge, name, look),
         Shelf::Technologies => catalog::technology(&rules.knowledge, name, look),
+        Shelf::Devices => catalog::device(&rules.knowledge, name, look),
         Shelf::Quantities => catalog::quantity(name, look),
     };
     match found {
@@ -48,6 +50,7 @@ fn names(shelf: Shelf, rules: &Rules) -> Vec<String> {
         Shelf::Parts => knowledge.families.iter().map(|family| family.name.clone()).collect(),
         Shelf::Supplies => knowledge.supplies.iter().map(|supply| supply.name.clone()).collect(),
         Shelf::Technologies => knowledge.technologies.iter().map(|technology| technology.name.clone()).collect(),
+        Shelf::Devices => knowledge.devices.iter().map(|device| device.name.clone()).collect(),
         Shelf::Quantities => {
             DEFINITIONS.iter().flat_map(|file| file.iter()).map(|definition| definition.name.to_owned()).collect()
         }

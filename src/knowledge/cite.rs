@@ -93,11 +93,15 @@ impl<'s> Cite<'s> {
 
     /// A figure under a key with what it rests on.
     pub(super) fn cite<T>(&self, key: &str, value: T) -> Cited<T> {
-        let marked = match &self.recalled {
+        self.cite_as(value, self.marks(key))
+    }
+
+    /// Whether the table itself says that the figure under a key is recalled, whatever its source.
+    fn marks(&self, key: &str) -> bool {
+        match &self.recalled {
             Recalled::All => true,
             Recalled::Keys(keys) => keys.contains(key),
-        };
-        self.cite_as(value, marked)
+        }
     }
 
     fn cite_as<T>(&self, value: T, marked: bool) -> Cited<T> {
@@ -118,8 +122,7 @@ impl<'s> Cite<'s> {
         let inner = self.within(&mut table);
         let range = table.require("value").and_then(|value| read_range(&value.text()?, dimension));
         table.finish();
-        let marked = matches!(self.cite(value.key(), ()), Cited { recalled: true, .. });
-        Some(inner.cite_as(range?, marked || matches!(inner.recalled, Recalled::All)))
+        Some(inner.cite_as(range?, self.marks(value.key()) || matches!(inner.recalled, Recalled::All)))
     }
 
     /// A figure of one value: the high end of a range where typical and maximum are given.

@@ -13,6 +13,7 @@ use crate::source::{Problem, Source};
 static PARTS: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/parts");
 static TECHNOLOGIES: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/technologies");
 static SUPPLIES: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/supplies");
+static DEVICES: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/devices");
 static CHECKS: Dir<'static> = include_dir!("$CARGO_MANIFEST_DIR/rules/checks");
 
 /// The kind of a knowledge file.
@@ -21,14 +22,16 @@ pub(super) enum Shelf {
     Parts,
     Technologies,
     Supplies,
+    Devices,
 }
 
 impl Shelf {
     /// Each with its folder and the key that only its files have.
-    pub(super) const ALL: [(Self, &'static str, &'static str); 3] = [
+    pub(super) const ALL: [(Self, &'static str, &'static str); 4] = [
         (Self::Parts, "parts", "family"),
         (Self::Technologies, "technologies", "technology"),
         (Self::Supplies, "supplies", "supply"),
+        (Self::Devices, "devices", "device"),
     ];
 
     fn built_in(self) -> &'static Dir<'static> {
@@ -36,6 +39,7 @@ impl Shelf {
             Self::Parts => &PARTS,
             Self::Technologies => &TECHNOLOGIES,
             Self::Supplies => &SUPPLIES,
+            Self::Devices => &DEVICES,
         }
     }
 
@@ -96,8 +100,8 @@ impl Files {
         files
     }
 
-    /// Adds the files of a folder from the disk. The folder has `parts/`, `technologies/`, `supplies/` and `checks/`, any
-    /// of them; or it holds such files, or check folders, itself; or it is a check folder.
+    /// Adds the files of a folder from the disk. The folder has `parts/`, `technologies/`, `supplies/`, `devices/` and
+    /// `checks/`, any of them; or it holds such files, or check folders, itself; or it is a check folder.
     pub(super) fn add_folder(&mut self, folder: &Path, problems: &mut Vec<Problem>) {
         if !folder.is_dir() {
             let message = format!("the rules folder `{}` cannot be read", folder.display());
@@ -149,7 +153,7 @@ impl Files {
             let message = format!("the rules folder `{}` holds no rules", folder.display());
             problems.push(Problem::warning(message).help(
                 "put part files into `parts/`, checks into folders of `checks/`, supplies into `supplies/`, \
-                 technologies into `technologies/`",
+                 technologies into `technologies/`, device models into `devices/`",
             ));
         }
     }

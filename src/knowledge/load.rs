@@ -5,6 +5,7 @@ use std::path::PathBuf;
 use std::sync::OnceLock;
 
 use super::Knowledge;
+use super::devices::device_of;
 use super::family::family_of;
 use super::files::{Files, Shelf};
 use super::supply::supply_of;
@@ -55,17 +56,26 @@ fn read_all(files: Files, problems: &mut Vec<Problem>) -> Knowledge {
             Shelf::Supplies => {
                 supply_of(source, &format!("supplies/{name}")).map(|supply| knowledge.supplies.push(supply))
             }
+            Shelf::Devices => {
+                device_of(source, &format!("devices/{name}")).map(|device| knowledge.devices.push(device))
+            }
+        };
+        let folder = match shelf {
+            Shelf::Parts => "parts",
+            Shelf::Devices => "devices",
+            Shelf::Technologies | Shelf::Supplies => "",
         };
         match result {
-            Ok(()) if *shelf == Shelf::Parts => {
+            Ok(()) if !folder.is_empty() => {
                 let extra = files.extra.contains(&(*shelf, name.clone()));
-                sources.insert(format!("parts/{name}"), (extra, source));
+                sources.insert(format!("{folder}/{name}"), (extra, source));
             }
             Ok(()) => {}
             Err(found) => problems.extend(found),
         }
     }
     check_families(&mut knowledge, &sources, problems);
+    check_devices(&mut knowledge, &sources, problems);
     for (name, check) in files.checks {
         knowledge.check_paths.insert(name.clone(), check.path);
         knowledge.checks.insert(name, check.files);
@@ -105,6 +115,34 @@ fn check_families(
         refused.push(family.file.clone());
     }
     knowledge.families.retain(|family| !refused.contains(&family.file));
+}
+
+/// Refuses devices of the same name, and a second one that stands for the same unknown parts.
+fn check_devices(knowledge: &mut Knowledge, sources: &BTreeMap<String, (bool, &Source)>, problems: &mut Vec<Problem>) {
+    let is_extra = |file: &str| sources.get(file).is_some_and(|(extra, _)| *extra);
+    let mut devices: Vec<_> = knowledge.devices.iter().collect();
+    devices.sort_by_key(|device| is_extra(&device.file));
+    let (mut named, mut standing) = (BTreeMap::new(), BTreeMap::new());
+    let mut refused = Vec::new();
+    for device in devices {
+        let first = named.entry(device.name.clone()).or_insert_with(|| device.file.clone());
+        if *first != device.file {
+            let message = format!("two devices are called `{}`", device.name);
+            let help = format!("give it a name of its own; the first is in `{first}`");
+            problems.push(at_key(sources, &device.file, "device", message, "the second").help(help));
+            refused.push(device.file.clone());
+            continue;
+        }
+        let Some(of) = device.stands_for else { continue };
+        let first = standing.entry((device.kind, of)).or_insert_with(|| device.file.clone());
+        if *first != device.file {
+            let message = format!("two devices stand for `{}` parts of kind `{}`", of.name(), device.kind.name());
+            let help = format!("name the file as the first, `{first}`, to take its place");
+            problems.push(at_key(sources, &device.file, "stands_for", message, "the second").help(help));
+            refused.push(device.file.clone());
+        }
+    }
+    knowledge.devices.retain(|device| !refused.contains(&device.file));
 }
 
 /// A problem at the value of a key of a file that was read before.

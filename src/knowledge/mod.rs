@@ -3,6 +3,7 @@
 mod amount;
 mod cite;
 mod demand;
+mod devices;
 mod disk;
 mod family;
 mod files;
@@ -16,6 +17,8 @@ mod technology;
 #[cfg(test)]
 mod tests;
 
+pub use devices::{Allowed, DeviceFamily, DeviceModel, ModelKind, StandsFor, parameter_dimension};
+pub(crate) use devices::{SetError, model_words};
 pub use disk::{LARGEST_RULE_FILE, LARGEST_RULES, MOST_RULE_FILES};
 pub use files::built_in_part;
 pub use keys::{FigureKey, is_relative};

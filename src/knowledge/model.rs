@@ -2,6 +2,7 @@
 
 use std::collections::BTreeMap;
 
+use super::devices::DeviceFamily;
 use crate::quantity::Range;
 
 /// A source: what was read, or recalled.
@@ -401,6 +402,8 @@ pub struct Knowledge {
     pub technologies: Vec<Technology>,
     /// Supplies in order of their file names.
     pub supplies: Vec<Supply>,
+    /// Models of single parts in order of their file names.
+    pub devices: Vec<DeviceFamily>,
     /// Check folders as text: folder name to file name to text; typed later.
     pub checks: BTreeMap<String, BTreeMap<String, String>>,
     /// Where each check folder is, for messages.

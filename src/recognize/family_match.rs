@@ -136,6 +136,17 @@ pub(super) fn spellings(volts: f64, rounded: bool) -> Vec<String> {
     found
 }
 
+/// How many letters and digits of its own a pattern without a voltage code has, where it fits a reduced name; `None` where
+/// it does not.
+pub(super) fn fit(pattern: &str, name: &str) -> Option<usize> {
+    let pattern = compile(0, pattern);
+    let fits = |start: usize| {
+        let rest: Vec<char> = name.get(start..).unwrap_or("").chars().collect();
+        begins(&pattern, &rest) && walk(&pattern, &rest, &[]).is_some()
+    };
+    starts(name).any(fits).then_some(pattern.literal)
+}
+
 fn codes_of(family: &Family) -> Vec<(String, Code)> {
     let mut codes: Vec<(String, Code)> =
         family.codes.iter().map(|(text, volts)| (text.to_ascii_uppercase(), Code::Volts(*volts))).collect();

@@ -9,6 +9,7 @@
 mod bank;
 mod built_up;
 mod declared;
+mod device_match;
 mod divider;
 mod drawn;
 mod family_match;
@@ -36,12 +37,14 @@ mod tests;
 mod voltage_code;
 mod walk;
 mod words;
+mod zener;
 
 pub use bank::{Side, bank, bank_to};
 pub use built_up::{
     Amplifier, AmplifierKind, BuiltUp, Duty, Junction, Reference, ReferenceFeed, ReferenceKind, Transistor,
     transistors,
 };
+pub use device_match::{DeviceMatch, device_match, device_match_as, kinds_of};
 pub use drawn::{DrawnPin, drawn_pins};
 pub use find::recognize;
 pub use identity::holds_part_number;
@@ -55,3 +58,4 @@ pub use package::{family_package, package_of};
 pub use programming::programming_pins;
 pub use rectifier::{Rectified, anode, rectified};
 pub use sketch::{NoSketch, Sketch, sketch};
+pub use zener::zener_volts;

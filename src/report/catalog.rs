@@ -2,6 +2,7 @@
 
 use std::collections::BTreeMap;
 
+pub use super::catalog_device::{device, devices};
 pub use super::catalog_part::{lacking_figures, part, parts};
 use super::figures::title;
 use super::inert::inert;

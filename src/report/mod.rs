@@ -4,6 +4,7 @@ mod accept;
 mod board;
 mod built_up;
 pub mod catalog;
+mod catalog_device;
 mod catalog_part;
 mod caution;
 mod chain;

@@ -350,6 +350,7 @@ fn checks_are_explained_and_known_things_listed() {
         ("parts", "317 / LM317"),
         ("supplies", "9 V block"),
         ("technologies", "tantalum"),
+        ("devices", "LM358"),
         ("quantities", "dropout"),
     ] {
         let list = text(&["catalog", what]);

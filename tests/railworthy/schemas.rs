@@ -144,7 +144,7 @@ fn the_schemas_in_the_rules_folder_are_those_that_the_program_prints() {
 
 #[test]
 fn every_file_of_the_rules_and_every_board_file_fits_its_schema() {
-    let (board, check, part) = (schema("board"), schema("check"), schema("part"));
+    let (board, check, part, device) = (schema("board"), schema("check"), schema("part"), schema("device"));
     let mut wrong = Vec::new();
     let mut held = 0;
     let mut hold = |schema: &Value, path: &Path| {
@@ -154,6 +154,9 @@ fn every_file_of_the_rules_and_every_board_file_fits_its_schema() {
     };
     for path in files(&root().join("rules/parts"), ".toml") {
         hold(&part, &path);
+    }
+    for path in files(&root().join("rules/devices"), ".toml") {
+        hold(&device, &path);
     }
     for folder in files(&root().join("rules/checks"), "") {
         hold(&check, &folder.join("check.toml"));

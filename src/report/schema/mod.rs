@@ -16,6 +16,7 @@ const ALL: &[Entry] = &[
     ("board", "board files", board::schema),
     ("check", "checks", rules::check),
     ("part", "part files", rules::part),
+    ("device", "device files", rules::device),
     ("result", "the result of `check` as JSON", result::check),
     ("rails", "the result of `rails` as JSON", result::rails),
     ("compare", "the result of `compare` as JSON", compare::schema),

@@ -1,4 +1,4 @@
-//! The schemas of a check and of a part file.
+//! The schemas of a check, of a part file and of a device file.
 
 use serde_json::{Value, json};
 
@@ -6,7 +6,7 @@ use super::node::{
     Key, Optional, Required, document, either, figure, flag, list, number, table, table_of, text, word,
 };
 use crate::facts::SubjectKind;
-use crate::knowledge::{Family, FamilyKind, Pass};
+use crate::knowledge::{Family, FamilyKind, ModelKind, Pass, StandsFor, parameter_dimension};
 
 pub(super) fn check() -> Value {
     let subjects = SubjectKind::ALL.iter().map(|(_, name)| *name);
@@ -133,6 +133,33 @@ pub(super) fn part() -> Value {
         Key(key, part_figure(meaning, dimension.symbol().unwrap_or("no unit")), Optional)
     }));
     document("railworthy part file", table("A part family", cited(keys)))
+}
+
+pub(super) fn device() -> Value {
+    let mut keys = vec![
+        Key("device", text("Unique"), Required),
+        Key("kind", word("What it is", ModelKind::ALL.iter().map(|(_, name)| *name)), Required),
+        Key("names", list("Patterns: ? *", text("")), Optional),
+        Key(
+            "stands_for",
+            word("The parts of unknown number that it stands for", StandsFor::ALL.iter().map(|(_, name)| *name)),
+            Optional,
+        ),
+        Key("tolerance", part_figure("Tolerance of the voltage of a zener diode", "%"), Optional),
+        Key("note", text("What a reader of the file should know"), Optional),
+        Key("sources", list("What was read", source()), Required),
+    ];
+    let mut known: Vec<&str> = Vec::new();
+    for (name, _) in ModelKind::ALL.iter().flat_map(|(kind, _)| kind.parameters()) {
+        if !known.contains(name) {
+            known.push(name);
+            let kinds = ModelKind::ALL.iter().filter(|(kind, _)| kind.parameters().iter().any(|(own, _)| own == name));
+            let kinds: Vec<&str> = kinds.map(|(_, name)| *name).collect();
+            let unit = parameter_dimension(name).to_string();
+            keys.push(Key(name, part_figure(&format!("Parameter of {}", kinds.join(", ")), &unit), Optional));
+        }
+    }
+    document("railworthy device file", table("Single parts that share a model", cited(keys)))
 }
 
 fn pass() -> Value {

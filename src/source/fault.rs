@@ -16,7 +16,7 @@ pub struct TextFault {
 }
 
 impl TextFault {
-    pub(super) fn new(
+    pub(crate) fn new(
         place: Bytes<usize>,
         message: impl Into<String>,
         label: impl Into<String>,
@@ -27,7 +27,7 @@ impl TextFault {
 
     /// The same fault of a text that holds this one from `offset` on.
     #[must_use]
-    pub(super) fn shifted(mut self, offset: usize) -> Self {
+    pub(crate) fn shifted(mut self, offset: usize) -> Self {
         self.place = self.place.start + offset..self.place.end + offset;
         self
     }

@@ -4,10 +4,9 @@ use std::collections::BTreeMap;
 use std::fmt;
 use std::ops::Range as Bytes;
 
-use crate::quantity::Range;
+use crate::quantity::{Dimension, Range};
+use crate::source::TextFault;
 use crate::source::toml::nearest;
-
-use super::fault::TextFault;
 
 /// What a model stands for.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
@@ -109,6 +108,23 @@ impl ModelKind {
     }
 }
 
+/// What a parameter of a device model measures; of one name in all kinds. `LAMBDA` counts as a plain number per volt, and
+/// so do the gains and emission coefficients.
+#[must_use]
+pub fn parameter_dimension(name: &str) -> Dimension {
+    match name {
+        "IS" | "IKF" | "ISE" | "IBV" => Dimension::CURRENT,
+        "VAF" | "VTO" | "BV" | "VOS" | "TOP" | "BOTTOM" => Dimension::VOLTAGE,
+        "RB" | "RC" | "RE" | "RD" | "RS" | "RO" => Dimension::RESISTANCE,
+        "CJE" | "CJC" | "CGS" | "CGD" | "CDS" | "CJO" => Dimension::CAPACITANCE,
+        "TF" | "TR" | "TT" => Dimension::TIME,
+        "KP" => Dimension::CURRENT.over(Dimension::VOLTAGE).over(Dimension::VOLTAGE),
+        "GBW" => Dimension::FREQUENCY,
+        "SR" => Dimension::VOLTAGE.over(Dimension::TIME),
+        _ => Dimension::ONE,
+    }
+}
+
 /// Which values a parameter may have.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Allowed {
@@ -131,7 +147,7 @@ impl Allowed {
         }
     }
 
-    pub(super) fn words(self) -> &'static str {
+    pub(crate) fn words(self) -> &'static str {
         match self {
             Self::Any => "any number",
             Self::NotNegative => "zero or more",
@@ -160,7 +176,7 @@ impl DeviceModel {
     /// # Errors
     /// Every unknown kind or name, number that cannot be read, range out of order and value that cannot be.
     pub fn read(text: &str) -> Result<Self, Vec<TextFault>> {
-        let mut words = words(text);
+        let mut words = model_words(text);
         let Some((at, word)) = words.next() else {
             return Err(vec![fault(0..text.len(), "the model is empty", "nothing stands here", &kinds_help(""))]);
         };
@@ -203,7 +219,7 @@ impl DeviceModel {
     }
 
     /// Sets a parameter.
-    pub(super) fn set(&mut self, name: &str, range: Range) -> Result<(), SetError> {
+    pub(crate) fn set(&mut self, name: &str, range: Range) -> Result<(), SetError> {
         let known = self.kind.parameters();
         let Some((own, allowed)) = known.iter().find(|(own, _)| own.eq_ignore_ascii_case(name)) else {
             let names: Vec<&str> = known.iter().map(|(own, _)| *own).collect();
@@ -222,8 +238,15 @@ impl DeviceModel {
         }
     }
 
+    /// Sets a parameter that was checked before, or gives it another value; one that the kind lacks is passed over.
+    pub(crate) fn put(&mut self, name: &str, range: Range) {
+        if let Some((own, _)) = self.kind.parameters().iter().find(|(own, _)| *own == name) {
+            self.parameters.insert(own, range);
+        }
+    }
+
     /// Gives a parameter that is there another value.
-    pub(super) fn replace(&mut self, name: &str, range: Range) {
+    pub(crate) fn replace(&mut self, name: &str, range: Range) {
         if let Some(known) = self.parameters.get_mut(name) {
             *known = range;
         }
@@ -262,7 +285,7 @@ impl fmt::Display for DeviceModel {
 
 /// Why a parameter cannot be set.
 #[derive(Debug)]
-pub(super) enum SetError {
+pub(crate) enum SetError {
     Unknown(String),
     Twice,
     Refused(Allowed),
@@ -287,7 +310,7 @@ fn article(kind: ModelKind) -> String {
 }
 
 /// The words of a text with the byte at which each begins.
-pub(super) fn words(text: &str) -> impl Iterator<Item = (usize, &str)> {
+pub(crate) fn model_words(text: &str) -> impl Iterator<Item = (usize, &str)> {
     // A word's address less the text's is its place.
     text.split_whitespace().map(|word| (word.as_ptr() as usize - text.as_ptr() as usize, word))
 }

@@ -8,12 +8,12 @@ use crate::quantity::{Dimension, Range, read_amount};
 use crate::source::Problem;
 
 use super::declared::{Declared, Place};
-use crate::knowledge::Allowed::{Any, NotNegative, Positive};
-use crate::source::TextFault;
 use super::model::{Board, Esr, PartEntry};
 use super::read_entries::peak_is_nominal;
 use super::simulation::read_simulation;
 use super::texts::{is_single, plain_words, read_figure, read_tolerance};
+use crate::knowledge::Allowed::{Any, NotNegative, Positive};
+use crate::source::TextFault;
 
 impl Board {
     /// Adds what the fields on the board's symbols tell; the board file wins, fact by fact. Field names are read in

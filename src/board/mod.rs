@@ -20,9 +20,9 @@ mod simulation;
 mod tests;
 mod texts;
 
-pub use declared::{Declared, Place};
 pub use crate::knowledge::{Allowed, DeviceModel, ModelKind};
 pub use crate::source::TextFault;
+pub use declared::{Declared, Place};
 pub use files::{FileError, HOUSE_FILE, LARGEST_FILE, Links, find, find_house, find_own, own_file, read_source};
 pub(crate) use files::{exists, parent};
 pub use model::{

@@ -8,8 +8,8 @@ use crate::quantity::{Dimension, Range};
 use crate::source::Source;
 
 use super::declared::Declared;
-use crate::knowledge::DeviceModel;
 use super::texts::read_slack;
+use crate::knowledge::DeviceModel;
 use crate::source::toml::Date;
 
 /// What is declared about a board: the house file, the board's own file and the fields on its symbols, merged.

@@ -8,11 +8,11 @@ use crate::source::toml::{Date, Document, Spanned, Table, Value};
 use crate::source::{Problem, Source};
 
 use super::declared::{Declared, Place};
-use crate::knowledge::Allowed::Any;
 use super::files::{Links, find, find_house, read_source};
 use super::model::{Accept, Board, SettingValue};
 use super::reader::Reader;
 use super::texts::read_slack;
+use crate::knowledge::Allowed::Any;
 
 /// What a board file may hold, by what it is for.
 #[derive(Debug, Clone, Copy, Default, PartialEq, Eq)]

@@ -4,9 +4,9 @@ use crate::quantity::{Dimension, Range};
 use crate::source::toml::Table;
 
 use super::declared::{Declared, Place};
-use crate::knowledge::Allowed::{Any, NotNegative, Positive};
 use super::model::{LoadEntry, LoadKind, RailEntry, Standard, SupplyEntry, SupplyNodes};
 use super::reader::{Reader, span_of};
+use crate::knowledge::Allowed::{Any, NotNegative, Positive};
 
 impl<'a> Reader<'a> {
     /// Every `[[supply]]` whose nets can be read.

@@ -5,12 +5,12 @@ use crate::quantity::{Dimension, Range};
 use crate::source::toml::{Table, Text, Value, nearest};
 
 use super::declared::Declared;
-use crate::knowledge::Allowed::{Any, NotNegative, Positive};
-use crate::knowledge::DeviceModel;
-use crate::source::TextFault;
 use super::model::{Esr, PartEntry};
 use super::reader::{Reader, span_of};
 use super::texts::{is_single, plain_words, read_dropout, read_esr_window, read_part_figure, read_tolerance};
+use crate::knowledge::Allowed::{Any, NotNegative, Positive};
+use crate::knowledge::DeviceModel;
+use crate::source::TextFault;
 
 const KINDS: &[(FamilyKind, &str)] = &[
     (FamilyKind::Series, "series"),

@@ -5,8 +5,8 @@ use crate::source::Span;
 use crate::source::toml::{Document, Spanned, Table, Text, nearest};
 
 use super::declared::{Declared, Place};
-use crate::knowledge::Allowed;
 use super::texts::read_figure;
+use crate::knowledge::Allowed;
 
 /// The file that is being read.
 #[derive(Debug, Clone, Copy)]

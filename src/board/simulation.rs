@@ -3,9 +3,9 @@
 use crate::circuit::{Device, DeviceKind};
 use crate::quantity::Range;
 
+use super::fields::field;
 use crate::knowledge::{DeviceModel, ModelKind, SetError, model_words};
 use crate::source::TextFault;
-use super::fields::field;
 
 /// The model that `Sim.Device`, `Sim.Type` and `Sim.Params` carry; `None` where there is none, or one of a device or
 /// type that is not modelled. Parameters that the models here do not have are passed over: a full SPICE model has

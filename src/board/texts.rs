@@ -3,9 +3,9 @@
 use crate::knowledge::{DropoutPoint, EsrWindow};
 use crate::quantity::{Dimension, Range, ReadError, read_amount, read_range, read_typical_maximum};
 
+use super::model::Slack;
 use crate::knowledge::Allowed;
 use crate::source::TextFault;
-use super::model::Slack;
 
 /// A figure with its unit, as engineers write it: `3.3 V ± 5 %`, `50 .. 200 mΩ`.
 pub(super) fn read_figure(text: &str, dimension: Dimension, allowed: Allowed) -> Result<Range, TextFault> {

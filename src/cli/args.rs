@@ -37,7 +37,7 @@ pub(super) enum Command {
     Accept(Accept),
     /// Begin or continue a board file: what is not declared and decides most comes first
     Declare(Declare),
-    /// List what is known: checks, part families, supplies, technologies, device models, quantities
+    /// List what is known: checks, parts, supplies, technologies, devices, quantities
     Catalog(Catalog),
     /// Begin a part file for a part that is not known, from what its symbol tells
     Draft(Draft),

@@ -118,7 +118,11 @@ fn check_families(
 }
 
 /// Refuses devices of the same name, and a second one that stands for the same unknown parts.
-fn check_devices(knowledge: &mut Knowledge, sources: &BTreeMap<String, (bool, &Source)>, problems: &mut Vec<Problem>) {
+fn check_devices(
+    knowledge: &mut Knowledge,
+    sources: &BTreeMap<String, (bool, &Source)>,
+    problems: &mut Vec<Problem>,
+) {
     let is_extra = |file: &str| sources.get(file).is_some_and(|(extra, _)| *extra);
     let mut devices: Vec<_> = knowledge.devices.iter().collect();
     devices.sort_by_key(|device| is_extra(&device.file));

@@ -17,7 +17,7 @@ mod technology;
 #[cfg(test)]
 mod tests;
 
-pub use devices::{Allowed, DeviceFamily, DeviceModel, ModelKind, StandsFor, parameter_dimension};
+pub use devices::{Allowed, DeviceFamily, DeviceModel, ModelKind, StandsFor, parameter_dimension, parameter_unit};
 pub(crate) use devices::{SetError, model_words};
 pub use disk::{LARGEST_RULE_FILE, LARGEST_RULES, MOST_RULE_FILES};
 pub use files::built_in_part;

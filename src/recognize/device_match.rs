@@ -107,9 +107,8 @@ fn named<'k>(knowledge: &'k Knowledge, device: &Device, kind: ModelKind) -> Opti
 
 /// What is usual of parts of this kind; where the package does not tell the size, over both.
 fn usual<'k>(knowledge: &'k Knowledge, device: &Device, kind: ModelKind) -> Option<DeviceMatch<'k>> {
-    let standing = |of: StandsFor| {
-        knowledge.devices.iter().find(|family| family.kind == kind && family.stands_for == Some(of))
-    };
+    let standing =
+        |of: StandsFor| knowledge.devices.iter().find(|family| family.kind == kind && family.stands_for == Some(of));
     let one = |of: StandsFor| standing(of).map(|family| matched(family, family.model(volts(device, kind)), None));
     match kind {
         ModelKind::Npn | ModelKind::Pnp if is_darlington(device) => one(StandsFor::Darlington),

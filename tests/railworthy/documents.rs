@@ -9,7 +9,7 @@ use railworthy::board::{self, Board, ModelKind, Options};
 use railworthy::checks::{Checks, DefinedNames};
 use railworthy::cli;
 use railworthy::facts::{DEFINITIONS, SubjectKind, ValueKind};
-use railworthy::knowledge::{self, Family, FigureKey, Knowledge, Pass, RoleName, Supply, Technology};
+use railworthy::knowledge::{self, Family, FigureKey, Knowledge, Pass, RoleName, Supply, Technology, parameter_unit};
 use railworthy::netlist::limits as netlist;
 use railworthy::quantity::Dimension;
 use railworthy::report;
@@ -123,6 +123,7 @@ fn the_tables_for_developers_are_those_of_the_code() {
             ("other-figures", others),
             ("figures", figures()),
             ("models", models()),
+            ("model-units", model_units()),
             ("limits", limits()),
         ],
     );
@@ -226,6 +227,22 @@ fn models() -> String {
     table
 }
 
+/// The units in which device files state the parameters.
+fn model_units() -> String {
+    let mut by_unit: BTreeMap<&str, Vec<&str>> = BTreeMap::new();
+    for (name, _) in ModelKind::ALL.iter().flat_map(|(kind, _)| kind.parameters()) {
+        let names = by_unit.entry(parameter_unit(name)).or_default();
+        if !names.contains(name) {
+            names.push(name);
+        }
+    }
+    let rows = by_unit.iter().map(|(unit, names)| {
+        let unit = if unit.is_empty() { "–" } else { unit };
+        format!("| {unit} | `{}` |\n", names.join(" "))
+    });
+    format!("| unit | parameters |\n| --- | --- |\n{}", rows.collect::<String>())
+}
+
 #[test]
 fn the_map_lists_every_room_in_the_order_of_the_flow() {
     let developers = text("DEVELOPERS.md");
@@ -254,13 +271,19 @@ fn messages(problems: &[Problem]) -> Vec<String> {
     problems.iter().map(|problem| problem.message().to_owned()).collect()
 }
 
-/// Writes a check or a part file into a rules folder, where the README has it.
+/// Writes a check, a part file or a device file into a rules folder, where the README has it.
 fn save(folder: &Path, block: &str) -> Option<String> {
     let top = || block.lines().take_while(|line| !line.starts_with('['));
     let value = |key: &str| {
         let is_key = |line: &&str| line.strip_prefix(key).is_some_and(|rest| rest.trim_start().starts_with('='));
         top().find(is_key)?.split('"').nth(1)
     };
+    if let Some(device) = value("device") {
+        let path = folder.join("devices/one.toml");
+        fs::create_dir_all(path.parent().unwrap()).unwrap();
+        fs::write(path, block).unwrap();
+        return Some(device.to_owned());
+    }
     let (file, name) = match (value("family"), value("holds")) {
         (Some(family), None) => ("parts/one.toml".to_owned(), family),
         (None, Some(_)) => (format!("checks/{}/check.toml", value("name")?), value("name")?),
@@ -282,7 +305,8 @@ fn every_file_that_the_documents_print_is_read_without_a_problem() {
             assert_eq!(messages(&problems), Vec::<String>::new(), "{name}");
             let (checks, problems) = Checks::load(&knowledge.checks, &DefinedNames);
             assert_eq!(messages(&problems), Vec::<String>::new(), "{name}");
-            assert!(checks.get(&name).is_some() || knowledge.family(&name).is_some(), "{name}");
+            let device = knowledge.devices.iter().any(|device| device.name == name);
+            assert!(checks.get(&name).is_some() || knowledge.family(&name).is_some() || device, "{name}");
             *kinds.entry("rule").or_default() += 1;
         } else {
             let (mut board, problems) = Board::read(&Source::new("board.toml", block.as_str()), Options::default());
@@ -291,7 +315,7 @@ fn every_file_that_the_documents_print_is_read_without_a_problem() {
             *kinds.entry("board").or_default() += 1;
         }
     }
-    assert!(kinds["rule"] >= 3 && kinds["board"] >= 1, "{kinds:?}");
+    assert!(kinds["rule"] >= 4 && kinds["board"] >= 1, "{kinds:?}");
 }
 
 #[test]
@@ -358,6 +382,7 @@ fn every_key_of_a_file_that_users_write_is_documented() {
     let rules = [
         "src/knowledge/cite.rs",
         "src/knowledge/demand.rs",
+        "src/knowledge/devices/read.rs",
         "src/knowledge/family.rs",
         "src/knowledge/supply.rs",
         "src/knowledge/technology.rs",

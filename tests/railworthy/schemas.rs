@@ -130,7 +130,7 @@ fn files(folder: &Path, end: &str) -> Vec<PathBuf> {
 fn the_schemas_in_the_rules_folder_are_those_that_the_program_prints() {
     let listed = run(root(), &["schema"]).out;
     let names: Vec<&str> = listed.lines().filter_map(|line| line.split_whitespace().next()).collect();
-    assert_eq!(names, ["board", "check", "part", "result", "rails", "compare"]);
+    assert_eq!(names, ["board", "check", "part", "device", "result", "rails", "compare"]);
     for name in names {
         let path = root().join(format!("rules/schemas/{name}.schema.json"));
         let printed = run(root(), &["schema", name]).out;

@@ -5,6 +5,6 @@ mod model;
 mod read;
 
 pub use family::{DeviceFamily, StandsFor};
-pub use model::{Allowed, DeviceModel, ModelKind, parameter_dimension};
+pub use model::{Allowed, DeviceModel, ModelKind, parameter_dimension, parameter_unit};
 pub(crate) use model::{SetError, model_words};
 pub(super) use read::device_of;

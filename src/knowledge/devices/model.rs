@@ -125,6 +125,16 @@ pub fn parameter_dimension(name: &str) -> Dimension {
     }
 }
 
+/// The unit in which device files state a parameter, as it is written there; empty for a plain number.
+#[must_use]
+pub fn parameter_unit(name: &str) -> &'static str {
+    match name {
+        "KP" => "A/V/V",
+        "SR" => "V/us",
+        _ => parameter_dimension(name).symbol().unwrap_or(""),
+    }
+}
+
 /// Which values a parameter may have.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Allowed {

@@ -73,11 +73,7 @@ fn read_names(root: &mut Table<'_>, nameless: bool) -> Vec<String> {
         return Vec::new();
     };
     if nameless {
-        value.refuse(
-            "what stands for unknown parts has no names",
-            "beside `stands_for`",
-            "leave one of the two out",
-        );
+        value.refuse("what stands for unknown parts has no names", "beside `stands_for`", "leave one of the two out");
     }
     let mut names = Vec::new();
     for name in value.texts().unwrap_or_default() {
@@ -140,7 +136,11 @@ fn check(value: Value<'_>, kind: ModelKind, name: &'static str, range: Range) {
     match DeviceModel::new(kind).set(name, range) {
         Ok(()) if finite => {}
         Err(SetError::Refused(allowed)) => {
-            value.refuse(format!("`{name}` cannot be this"), "not possible", format!("it must be {}", allowed.words()));
+            value.refuse(
+                format!("`{name}` cannot be this"),
+                "not possible",
+                format!("it must be {}", allowed.words()),
+            );
         }
         _ => value.refuse(format!("`{name}` has no bound"), "not finite", "write both ends of the range"),
     }

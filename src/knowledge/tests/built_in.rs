@@ -17,6 +17,7 @@ fn every_built_in_file_loads_without_a_problem() {
     assert_eq!(problems.iter().map(told).collect::<Vec<_>>(), Vec::<String>::new());
     assert!(knowledge.families.len() >= 150);
     assert!(knowledge.technologies.len() == 6 && knowledge.supplies.len() >= 25);
+    assert!(knowledge.devices.len() >= 100);
     assert_eq!(knowledge.families.len(), Knowledge::built_in().families.len());
 }
 

@@ -77,7 +77,7 @@ fn a_folder_that_is_missing_or_empty_is_told() {
     let (_, problems) = Knowledge::load(&[missing, folder.path().to_owned()]);
     insta::assert_snapshot!(messages(folder.path(), &problems).join("\n"), @r#"
     the rules folder `DIR/nowhere` cannot be read (); name a folder that exists
-    the rules folder `DIR` holds no rules (); put part files into `parts/`, checks into folders of `checks/`, supplies into `supplies/`, technologies into `technologies/`
+    the rules folder `DIR` holds no rules (); put part files into `parts/`, checks into folders of `checks/`, supplies into `supplies/`, technologies into `technologies/`, device models into `devices/`
     "#);
 }
 

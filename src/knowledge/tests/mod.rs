@@ -2,6 +2,7 @@
 
 mod built_in;
 mod damaged;
+mod devices;
 mod folders;
 
 use crate::source::Problem;

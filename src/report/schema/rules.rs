@@ -6,7 +6,7 @@ use super::node::{
     Key, Optional, Required, document, either, figure, flag, list, number, table, table_of, text, word,
 };
 use crate::facts::SubjectKind;
-use crate::knowledge::{Family, FamilyKind, ModelKind, Pass, StandsFor, parameter_dimension};
+use crate::knowledge::{Family, FamilyKind, ModelKind, Pass, StandsFor, parameter_unit};
 
 pub(super) fn check() -> Value {
     let subjects = SubjectKind::ALL.iter().map(|(_, name)| *name);
@@ -153,10 +153,11 @@ pub(super) fn device() -> Value {
     for (name, _) in ModelKind::ALL.iter().flat_map(|(kind, _)| kind.parameters()) {
         if !known.contains(name) {
             known.push(name);
-            let kinds = ModelKind::ALL.iter().filter(|(kind, _)| kind.parameters().iter().any(|(own, _)| own == name));
+            let kinds =
+                ModelKind::ALL.iter().filter(|(kind, _)| kind.parameters().iter().any(|(own, _)| own == name));
             let kinds: Vec<&str> = kinds.map(|(_, name)| *name).collect();
-            let unit = parameter_dimension(name).to_string();
-            keys.push(Key(name, part_figure(&format!("Parameter of {}", kinds.join(", ")), &unit), Optional));
+            let unit = if parameter_unit(name).is_empty() { "no unit" } else { parameter_unit(name) };
+            keys.push(Key(name, part_figure(&format!("Parameter of {}", kinds.join(", ")), unit), Optional));
         }
     }
     document("railworthy device file", table("Single parts that share a model", cited(keys)))

@@ -4,7 +4,7 @@ use super::Facts;
 use super::zener::zener_volts;
 use crate::circuit::{DeviceId, DeviceKind};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
-use crate::recognize::{AmplifierKind, BuiltUp, Junction, Reference, ReferenceKind, Regulator};
+use crate::recognize::{AmplifierKind, BuiltUp, Divider, Junction, Reference, ReferenceKind, Regulator};
 
 /// A base-emitter drop over temperature and current, volts (common practice: 0.65 V, −2 mV/K).
 const BASE_EMITTER: (f64, f64, f64) = (0.5, 0.68, 0.9);
@@ -72,6 +72,21 @@ impl Facts<'_> {
                 })
             }
         })
+    }
+
+    /// What an inverting amplifier makes of a reference of the other sign: `V R1 / R2`, R1 from the output, R2 from the
+    /// reference.
+    pub(super) fn weighed_output(&self, regulator: &Regulator, divider: &Divider) -> Option<Quantity> {
+        let built = regulator.built_up.as_ref().filter(|built| !built.reference.whole)?;
+        let feed = built.reference.divider.as_ref().filter(|feed| feed.lower.is_empty() && !feed.trimmed)?;
+        let held = self.held_reference(regulator, built)?.magnitude();
+        let upper = self.network(&divider.upper, &divider.upper_parallel)?;
+        let from_reference = self.network(&feed.upper, &feed.upper_parallel)?;
+        let inputs = [(&held, Slope::Rising), (&upper, Slope::Rising), (&from_reference, Slope::Falling)];
+        Some(Quantity::monotone(Dimension::VOLTAGE, &inputs, |v| match v {
+            [held, upper, from_reference] => held * upper / from_reference,
+            _ => f64::NAN,
+        }))
     }
 
     /// What resistors leave of a reference: `V R2 / (R1 + R2)`, R1 from the reference, R2 to ground.

@@ -144,6 +144,9 @@ impl Facts<'_> {
         if divider.trimmed {
             return self.trimmed_output(regulator);
         }
+        if let Some(weighed) = self.weighed_output(regulator, divider) {
+            return Some(weighed);
+        }
         let lower = self.network(&divider.lower, &divider.lower_parallel);
         let upper = self.network(&divider.upper, &divider.upper_parallel);
         match self.adjust_side(regulator) {

@@ -104,8 +104,9 @@ pub struct Reference {
     pub net: NetId,
     /// Whether the whole of it is compared: no resistors take a part of it.
     pub whole: bool,
-    /// The resistors that take a part of it, from its net to the amplifier's input and from there to ground; `None` where
-    /// the whole of it is compared or more than a divider lies between.
+    /// The resistors that take a part of it, from its net to the amplifier's input and from there to ground; without those to
+    /// ground an inverting amplifier weighs it against the output. `None` where the whole of it is compared or more lies
+    /// between than a divider and followers.
     pub divider: Option<Divider>,
     /// Whether it lies between the output and the sensing input, in place of the upper divider resistor.
     pub in_sense: bool,

@@ -7,6 +7,7 @@ use super::super::model::Divider;
 use super::super::walk::{SAMPLE, chains};
 use super::model::{Reference, ReferenceFeed, ReferenceKind};
 use super::network::Network;
+use super::opamp::OpAmp;
 use super::reference::{holding, rail, string, string_kind};
 use super::supply::is_rail;
 
@@ -73,6 +74,7 @@ pub(super) fn read(network: &Network<'_>, net: NetId, ends: &Ends, blocked: &[Ne
     let held = reference.as_ref().is_some_and(|reference| reference.net == net);
     let sensed = if held { None } else { sensed(circuit, net, ends) };
     let opposite = referenced(network, net, ends, !ends.positive, blocked);
+    let opposite = opposite.map(|reference| weighed(circuit, net, reference));
     Input { net, sensed, reference, opposite, grounded: false }
 }
 
@@ -91,26 +93,35 @@ fn sensed(circuit: &Circuit, net: NetId, ends: &Ends) -> Option<Sensed> {
     })
 }
 
-/// The reference at a net or behind resistors from it.
+/// The reference at a net, or behind resistors and followers from it.
 fn referenced(network: &Network<'_>, net: NetId, ends: &Ends, above: bool, blocked: &[NetId]) -> Option<Reference> {
     let circuit = network.circuit;
     let mut nets = vec![net];
     let mut next = 0;
-    let mut whole = true;
+    let mut share = Share { from: net, whole: true, divider: None, lost: false };
     while let Some(at) = nets.get(next).copied() {
         next += 1;
         if ends.input.contains(&at) || ends.output.contains(&at) {
             continue;
         }
         if let Some(reference) = holding(network, at, above).or_else(|| rail(network, at, above, ends)) {
-            let divider = if whole { None } else { part_of(circuit, net, at) };
-            return Some(Reference { whole, divider, ..reference });
+            share.close(circuit, at, at);
+            let whole = share.divider.is_none() && !share.lost;
+            return Some(Reference { whole, divider: share.divider.filter(|_| !share.lost), ..reference });
         }
         if ends.cuts(circuit, at) || circuit.pin_count(at) > MOST_PINS {
             continue;
         }
+        // A follower gives what its input has, whatever resistors lie behind its output.
+        let follows = |one: &&OpAmp| one.minus == at && !blocked.contains(&one.plus) && !nets.contains(&one.plus);
+        if let Some(follower) = network.op_amps(at).iter().find(follows) {
+            share.close(circuit, at, follower.plus);
+            nets.truncate(next);
+            nets.push(follower.plus);
+            continue;
+        }
         let away = |end: NetId| circuit.net(end).ground || ends.output.contains(&end);
-        whole &= !chains(circuit, at, &ends.output).iter().any(|chain| away(chain.end));
+        share.whole &= !chains(circuit, at, &ends.output).iter().any(|chain| away(chain.end));
         for device in circuit.devices_on(at).take(SAMPLE).filter(|device| circuit.device(*device).is_fitted()) {
             if !matches!(circuit.device(device).kind, DeviceKind::Resistor | DeviceKind::Potentiometer) {
                 continue;
@@ -124,6 +135,40 @@ fn referenced(network: &Network<'_>, net: NetId, ends: &Ends, above: bool, block
         }
     }
     None
+}
+
+/// A reference of the other sign with the resistors through which it is weighed against the output; a resistor from there
+/// to ground has no voltage across it.
+fn weighed(circuit: &Circuit, input: NetId, reference: Reference) -> Reference {
+    let ends = divider::Ends { output: Some(reference.net), grounds: &[], has_ground: true };
+    let read = divider::read(circuit, input, ends);
+    let through = read.senses == Some(reference.net) && !read.upper.is_empty();
+    let divider = through.then(|| Divider { lower: Vec::new(), lower_parallel: Vec::new(), returns: None, ..read });
+    Reference { whole: false, divider, ..reference }
+}
+
+/// How much of a reference reaches an input, on the way back from it.
+struct Share {
+    /// The input, or that of the last follower.
+    from: NetId,
+    /// Whether no resistors have taken a part since.
+    whole: bool,
+    /// The divider that takes a part.
+    divider: Option<Divider>,
+    /// Whether more than one divider takes a part, or something other than one.
+    lost: bool,
+}
+
+impl Share {
+    /// Ends at a net that is held what began at `from`, and begins at another net.
+    fn close(&mut self, circuit: &Circuit, held: NetId, next: NetId) {
+        if !self.whole {
+            let divider = part_of(circuit, self.from, held);
+            self.lost |= divider.is_none() || self.divider.is_some();
+            self.divider = divider;
+        }
+        (self.from, self.whole) = (next, true);
+    }
 }
 
 /// The divider that gives an input a part of a reference, where nothing else leads to that input.
@@ -157,10 +202,10 @@ pub(super) fn compare(minus: Input, plus: Input) -> Option<Comparison> {
             Some(comparison(net, sensed, reference, true))
         }
         (Input { net, sensed: Some(sensed), opposite: Some(reference), .. }, Input { grounded: true, .. }) => {
-            Some(comparison(net, sensed, Reference { whole: false, divider: None, ..reference }, false))
+            Some(comparison(net, sensed, reference, false))
         }
         (Input { grounded: true, .. }, Input { net, sensed: Some(sensed), opposite: Some(reference), .. }) => {
-            Some(comparison(net, sensed, Reference { whole: false, divider: None, ..reference }, true))
+            Some(comparison(net, sensed, reference, true))
         }
         _ => None,
     }

@@ -177,6 +177,13 @@ CIRCUITS = {
             r("R2", "100", "DRV", "B"), r("R3", "39k", "-9V", "FB"), r("R4", "15k", "FB", "GND"),
             c("C1", "100n", "REF", "GND"), bulk("C2", "22u", 0.35, "GND", "-9V"),
         ], supply=NEG, nominal=-18.0, broken=("U1", "4", "drives")),
+    "neg_weigh": circuit(
+        "Probe bridges, -12 V, weighed against a positive reference", "-12V", 12.0, 0.15, [
+            q("Q1", "PNP", "medium_pnp", "B", NEG, "-12V"), op("U1", "op_split", "GND", "FB", "DRV", "+18V", NEG),
+            d("D1", "SHUNT50", "LM4040DBZ-5", "shunt50", "REF", "GND"), r("R1", "3k3", "+18V", "REF"),
+            r("R2", "220", "DRV", "B"), r("R3", "24k", "-12V", "FB"), r("R4", "10k", "REF", "FB"),
+            c("C1", "100n", "REF", "GND"), bulk("C2", "10u", 0.6, "GND", "-12V"),
+        ], supply=NEG, nominal=-18.0, others=[("+18V", 18.0)], broken=("U1", "4", "drives")),
     "neg_pair": circuit(
         "Probe bias, -10 V, transistor pair", "-10V", 10.0, 0.1, [
             q("Q1", "NPN4", "medium_npn", "DRV", "-10V", NEG), q("Q2", "BC857", "small_pnp", "REF", "DRV", "TAIL"),
@@ -184,6 +191,16 @@ CIRCUITS = {
             r("R1", "2k2", NEG, "REF"), r("R2", "1k", NEG, "DRV"), r("R3", "4k7", "-10V", "FB"), r("R4", "4k99", "FB", "GND"),
             r("R5", "1k5", "TAIL", "GND"), c("C1", "100n", "REF", "GND"), bulk("C2", "100u", 0.3, "GND", "-10V"),
         ], supply=NEG, nominal=-18.0, broken=("Q1", "B", "receives")),
+    "buffer_op": circuit(
+        "Light sensors, 5 V, buffered and divided reference", "+5V", 5.0, 0.15, [
+            q("Q1", "NPN4", "medium_npn", "B", RAW, "+5V"),
+            ("U1", "DUAL", "LM358", "op_wide", {"3": "PART", "2": "FB", "1": "DRV", "V+": RAW, "V-": "GND",
+                                                "5": "REF", "6": "BUF", "7": "BUF"}),
+            d("D1", "SHUNT25", "LM4040DBZ-2.5", "shunt25", "REF", "GND"), r("R1", "8k2", RAW, "REF"),
+            r("R2", "150", "DRV", "B"), r("R3", "30k", "+5V", "FB"), r("R4", "10k", "FB", "GND"),
+            r("R5", "10k", "BUF", "PART"), r("R6", "10k", "PART", "GND"), c("C1", "10n", "REF", "GND"),
+            c("C3", "100n", "PART", "GND"), bulk("C2", "10u", 0.5, "+5V", "GND"),
+        ], broken=("U1", "1", "drives")),
     "shunt_npn": circuit(
         "Valve coils, 12 V, programmable shunt", "+12V", 12.0, 0.2, [
             q("Q1", "NPN", "power_npn", "DRV", RAW, "+12V"),

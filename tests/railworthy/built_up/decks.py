@@ -78,6 +78,8 @@ def part_lines(circuit, part):
         plus = at("+", "3")
         lines = [f"V{ref} {ref.lower()}p {plus} DC 0",
                  f"X{ref} {ref.lower()}p {at('-', '2')} {at('V+')} {at('V-')} {at('4', '1')} {model}"]
+        if on.get("5", "GND") != "GND":
+            lines.append(f"X{ref}B {at('5')} {at('6')} {at('V+')} {at('V-')} {at('7')} {model}")
         return lines
     if kind.endswith("mos"):
         own = parameters(model)

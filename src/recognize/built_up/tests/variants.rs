@@ -94,6 +94,22 @@ fn resistors_that_take_a_part_of_the_reference_are_told() {
 }
 
 #[test]
+fn followers_pass_a_reference_on_and_dividers_behind_them_count() {
+    let buffer = "U2 OPA OPAMP 1:OUT:output=f 2:V-:power_in=GND 3:+:input=q 4:-:input=f 5:V+:power_in=VIN\n";
+    let rest = format!("{OP_AMP}{buffer}Q1 Q Q_NPN_BCE 1:B=o 2:C=VIN 3:E=OUT\n{SENSE}R1 3k3 R 1=VIN 2=q\n");
+    let reference = |lines: &str| {
+        let (design, told) = built(&format!("{rest}{lines}"));
+        assert_eq!(told, ["Q1: npn-follower + VIN>OUT, op-amp U1, zener diode D1 input divider R3/R4"]);
+        let reference = design.regulators[0].built_up.as_ref().unwrap().reference.clone();
+        (reference.whole, reference.divider.is_some())
+    };
+    // The load at the follower's output takes nothing of what it gives.
+    let held = "D1 2V5 D_Zener 1:K=q 2:A=GND\nR6 1k R 1=f 2=GND\n";
+    assert_eq!(reference(&format!("{held}R5 10k R 1=f 2=P")), (true, false));
+    assert_eq!(reference(&format!("{held}R5 10k R 1=f 2=P\nR7 10k R 1=P 2=GND")), (false, true));
+}
+
+#[test]
 fn the_junction_of_a_single_transistor_adds_to_its_reference_or_takes_from_it() {
     let junction = |lines: &str| {
         let (design, told) = built(lines);

@@ -145,6 +145,7 @@ impl PartEntry {
             minimum_output_capacitance: self.minimum_output_capacitance.or(below.minimum_output_capacitance),
             minimum_input_capacitance: self.minimum_input_capacitance.or(below.minimum_input_capacitance),
             minimum_basis: self.minimum_basis.or(below.minimum_basis),
+            published_loop: self.published_loop.or(below.published_loop),
             figures,
             model: self.model.or(below.model),
             load_current: self.load_current.or(below.load_current),

@@ -3,7 +3,7 @@
 use std::collections::BTreeMap;
 use std::path::PathBuf;
 
-use crate::knowledge::{Basis, DropoutPoint, EsrWindow, FamilyKind, Pass, RoleName, Sign};
+use crate::knowledge::{Basis, DropoutPoint, EsrWindow, FamilyKind, Pass, PublishedLoop, RoleName, Sign};
 use crate::quantity::{Dimension, Range};
 use crate::source::Source;
 
@@ -229,6 +229,8 @@ pub struct PartEntry {
     pub minimum_basis: Option<Declared<Basis>>,
     /// Plain figures by their key in a part file, SI units.
     pub figures: BTreeMap<String, Declared<Range>>,
+    /// The loop as its maker publishes it.
+    pub published_loop: Option<Declared<PublishedLoop<Declared<Range>>>>,
     /// A device model.
     pub model: Option<Declared<DeviceModel>>,
     /// Amperes that the part draws, idle to peak, the nominal being the peak; told by symbol fields only.
@@ -268,6 +270,7 @@ impl PartEntry {
             minimum_input_capacitance: None,
             minimum_basis: None,
             figures: BTreeMap::new(),
+            published_loop: None,
             model: None,
             load_current: None,
             supply_voltage: None,

@@ -1,6 +1,6 @@
 //! Reading `[[part]]`.
 
-use crate::knowledge::{Basis, DropoutPoint, Family, FamilyKind, Pass, RoleName, Sign};
+use crate::knowledge::{Basis, DropoutPoint, Family, FamilyKind, Pass, PublishedLoop, RoleName, Sign};
 use crate::quantity::{Dimension, Range};
 use crate::source::toml::{Table, Text, Value, nearest};
 
@@ -138,6 +138,12 @@ impl<'a> Reader<'a> {
         part.minimum_output_capacitance = minimum(table, "minimum_output_capacitance");
         part.minimum_input_capacitance = minimum(table, "minimum_input_capacitance");
         part.minimum_basis = self.word(table, "minimum_basis", BASES);
+        part.published_loop = table.table("loop").and_then(|mut table| {
+            let span = table.span();
+            let found = PublishedLoop::read(&mut table, |_, text, range| self.declared(range, text.span()));
+            table.finish();
+            found.map(|found| self.declared(found, span))
+        });
         for (key, dimension, _) in Family::FIGURES {
             // A part's tolerance has a key of its own, read with the passive facts.
             if *key == "tolerance" {

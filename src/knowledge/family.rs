@@ -4,6 +4,7 @@ use std::collections::BTreeMap;
 
 use super::cite::{Cite, read_range, read_sources, word};
 use super::names::check_pattern;
+use super::published_loop::read_loop;
 use super::{AdjustSide, Cited, Family, FamilyKind, Pass, Sign, demand};
 use crate::quantity::{Dimension, Range};
 use crate::source::Source;
@@ -29,6 +30,7 @@ pub(super) fn read_family(document: &Document, file: &str) -> Option<Family> {
     family.input_capacitor = demand::read_capacitor(&mut root, "input_capacitor", &cite);
     family.bypass_capacitor = demand::read_capacitor(&mut root, "bypass_capacitor", &cite);
     family.enable = demand::read_enable(&mut root, &cite);
+    family.published_loop = read_loop(&mut root, &cite);
     family.packages = demand::read_packages(&mut root, &cite);
     let mut keys: Vec<&str> = Family::FIGURES.iter().map(|(key, ..)| *key).collect();
     keys.push("pass");
@@ -65,6 +67,7 @@ impl Family {
             output_capacitor: None,
             bypass_capacitor: None,
             enable: None,
+            published_loop: None,
             packages: BTreeMap::new(),
             note: None,
             sources: Vec::new(),

@@ -12,6 +12,7 @@ mod load;
 mod lookup;
 mod model;
 mod names;
+mod published_loop;
 mod supply;
 mod technology;
 #[cfg(test)]
@@ -28,4 +29,5 @@ pub use model::{
     FamilyKind, Knowledge, MinimumKind, OpenEnable, Package, Pass, RoleName, Sign, SourceNote, Supply, Technology,
 };
 pub use names::VOLTAGE_CODE;
+pub use published_loop::{MOST_CORNERS, PublishedLoop};
 pub use technology::TECHNOLOGIES;

@@ -3,6 +3,7 @@
 use std::collections::BTreeMap;
 
 use super::devices::DeviceFamily;
+use super::PublishedLoop;
 use crate::quantity::Range;
 
 /// A source: what was read, or recalled.
@@ -347,6 +348,8 @@ pub struct Family {
     pub bypass_capacitor: Option<CapacitorDemand>,
     /// Enable input.
     pub enable: Option<EnableSpec>,
+    /// The loop, where the maker publishes it.
+    pub published_loop: Option<PublishedLoop<Cited<Range>>>,
     /// Packages by name.
     pub packages: BTreeMap<String, Package>,
     /// What a reader should know that no figure holds.

@@ -141,7 +141,7 @@ impl Quantity {
         self
     }
 
-    fn inherit(&mut self, other: &Quantity) {
+    pub(super) fn inherit(&mut self, other: &Quantity) {
         // Copies of one fact are one allocation; where they are not, the later one counts, as for any other.
         self.evidence.take_over(&other.evidence, Arc::ptr_eq);
         self.ranged_facts.take_over(&other.ranged_facts, |(), ()| true);
@@ -150,7 +150,7 @@ impl Quantity {
 
     /// Takes over the guesses of an input which, moved over its whole range, moves this figure by `swing`. Facts take
     /// their part of that range: a guess gets no more of the swing than it moves of the input.
-    fn inherit_guesses(&mut self, input: &Quantity, swing: f64) {
+    pub(super) fn inherit_guesses(&mut self, input: &Quantity, swing: f64) {
         let total: f64 = input.guesses.values().map(|guess| guess.moves).sum();
         let whole = total.max(input.worst.width());
         let shared = input.guesses.map(|guess| {
@@ -240,7 +240,7 @@ impl Quantity {
 }
 
 /// How far a formula moves when one input goes over its worst bounds and the others stay at nominal.
-fn swing(formula: impl Fn(&[f64]) -> f64, nominals: &mut [f64], index: usize, bounds: Pair) -> f64 {
+pub(super) fn swing(formula: impl Fn(&[f64]) -> f64, nominals: &mut [f64], index: usize, bounds: Pair) -> f64 {
     let mut at = |end: f64| {
         let nominal = nominals.get_mut(index).map(|value| std::mem::replace(value, end));
         let moved = formula(nominals);

@@ -9,6 +9,7 @@ mod figure;
 mod ledger;
 mod pair;
 mod range;
+mod searched;
 mod text;
 
 pub use dimension::Dimension;
@@ -17,6 +18,6 @@ pub use figure::{Guess, Quantity, Slope};
 pub use pair::Pair;
 pub use range::{Range, RangeError};
 pub use text::{
-    ComponentKind, ComponentText, ReadError, print_amount, print_range, read_amount, read_component, read_range,
-    read_typical_maximum,
+    ComponentKind, ComponentText, ReadError, print_amount, print_range, read_amount, read_component, read_gain,
+    read_range, read_typical_maximum,
 };

@@ -16,6 +16,10 @@ pub struct ReadError {
 }
 
 impl ReadError {
+    pub(super) fn new(message: &str, span: Span) -> Self {
+        Self { message: message.to_owned(), span }
+    }
+
     /// What is wrong and what was expected, in one line.
     #[must_use]
     pub fn message(&self) -> &str {

@@ -29,6 +29,7 @@ mod output;
 mod pins;
 mod programmed;
 mod protection;
+mod published_loop;
 mod ratings;
 mod reference_load;
 mod sequence;
@@ -45,6 +46,7 @@ mod zener;
 pub use context::Facts;
 pub use definition::{Definition, ValueKind};
 pub use flow::{Flow, Link, Rail, RailOrigin, Reservoir};
+pub use published_loop::{Edge, PublishedMargin};
 pub use ratings::overshoot;
 pub use sheet::{SHEET, SheetFigure, lacking};
 pub use value::{Flag, Subject, SubjectKind, Value, Word};
@@ -60,6 +62,7 @@ pub const DEFINITIONS: &[&[Definition]] = &[
     capacitance::DEFINITIONS,
     demand::DEFINITIONS,
     esr::DEFINITIONS,
+    published_loop::DEFINITIONS,
     impedance::DEFINITIONS,
     capacitor::DEFINITIONS,
     stress::DEFINITIONS,

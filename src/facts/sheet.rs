@@ -83,6 +83,13 @@ pub const SHEET: &[SheetFigure] = &[
         about: About::Series,
     },
     SheetFigure {
+        key: "loop",
+        unit: "dB, Hz, Ω",
+        meaning: "gain, poles and zeros inside the part, output resistance, where the maker publishes them",
+        used_by: &["has_published_loop", "computed_esr_low", "computed_esr_high"],
+        about: About::Series,
+    },
+    SheetFigure {
         key: "input_capacitor",
         unit: "F",
         meaning: "least capacitance at the input",
@@ -182,6 +189,7 @@ impl SheetFigure {
             "dropout" => family.dropout.is_some(),
             "output_capacitor" => output.is_some(),
             "output_capacitor.esr" => output.is_some_and(|demand| demand.esr.is_some() || demand.ceramic_allowed),
+            "loop" => family.published_loop.is_some(),
             "input_capacitor" => family.input_capacitor.is_some(),
             "enable.on" => enable.is_some_and(|enable| enable.on.is_some()),
             "enable.off" => enable.is_some_and(|enable| enable.off.is_some()),

@@ -66,6 +66,26 @@ impl<F> PublishedLoop<F> {
         Some(Self { gain: gain?, poles, zeros, output_resistance })
     }
 
+    /// The same loop with something made of each figure, its key and its place in the list under it.
+    #[must_use]
+    pub fn map<G>(&self, make: impl Fn(&'static str, usize, &F) -> G) -> PublishedLoop<G> {
+        let each = |key: &'static str, list: &[F]| {
+            list.iter().enumerate().map(|(number, figure)| make(key, number, figure)).collect()
+        };
+        PublishedLoop {
+            gain: make("gain", 0, &self.gain),
+            poles: each("poles", &self.poles),
+            zeros: each("zeros", &self.zeros),
+            output_resistance: self.output_resistance.as_ref().map(|figure| make("output_resistance", 0, figure)),
+        }
+    }
+
+    /// Its figures in this order: gain, poles, zeros, output resistance.
+    pub fn into_figures(self) -> impl Iterator<Item = F> {
+        let lists = self.poles.into_iter().chain(self.zeros);
+        std::iter::once(self.gain).chain(lists).chain(self.output_resistance)
+    }
+
     /// Each figure with its key and its place in the list under it.
     pub fn figures(&self) -> impl Iterator<Item = (&'static str, usize, &F)> {
         let under = |key| move |(index, figure)| (key, index, figure);

@@ -45,6 +45,7 @@ mod part_files;
 mod parts_page;
 mod program;
 mod project;
+mod published_loop;
 mod rails_figures;
 mod recognition_corpus;
 mod recognition_symbols;

@@ -48,18 +48,19 @@ impl<F> PublishedLoop<F> {
             texts.into_iter().filter_map(corner).collect::<Vec<F>>()
         };
         let listed = table.require("poles");
-        let poles = corners("poles", listed.and_then(|value| value.texts()).unwrap_or_default());
+        let poles = listed.and_then(|value| value.texts()).unwrap_or_default();
         let zeros = table.texts("zeros");
-        let zeros = corners("zeros", zeros);
+        let count = (poles.len(), zeros.len());
+        let (poles, zeros) = (corners("poles", poles), corners("zeros", zeros));
         let resistance = table.text("output_resistance");
         let output_resistance = resistance
             .and_then(|text| Some(keep("output_resistance", text, bounded(text, Dimension::RESISTANCE, OHMS)?)));
         if let Some(listed) = listed
-            && zeros.len() >= poles.len()
+            && count.1 >= count.0
         {
             listed.refuse(
                 "a loop needs more poles than zeros",
-                format!("{} poles and {} zeros", poles.len(), zeros.len()),
+                format!("poles: {}, zeros: {}", count.0, count.1),
                 "name the poles inside the part; that of the output is computed",
             );
         }

@@ -22,6 +22,7 @@ pub fn draft(sketch: &Sketch, netlist: &str, reference: &str, checks: &Checks) -
     text.push_str(&plain_figures(family, checks));
     text.push_str(&dropout(family, checks));
     text.push_str(&capacitors(family, checks));
+    text.push_str(&published_loop(family, checks));
     text.push_str(&enable(family));
     text.push_str(&packages(sketch));
     let _ = write!(
@@ -192,6 +193,17 @@ fn capacitors(family: &Family, checks: &Checks) -> String {
         purpose("output_capacitor", checks),
         purpose("output_capacitor.esr", checks),
         purpose("input_capacitor", checks)
+    )
+}
+
+fn published_loop(family: &Family, checks: &Checks) -> String {
+    if !concerns(family, "loop") {
+        return String::new();
+    }
+    format!(
+        "\n# {}\n# [loop]\n# gain = \"? dB\" # at low frequencies\n# poles = [\"? Hz\"] # inside the part: that of the \
+         output is computed\n# zeros = []\n# output_resistance = \"? ohm\"\n",
+        purpose("loop", checks)
     )
 }
 

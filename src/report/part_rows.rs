@@ -2,7 +2,7 @@
 
 use crate::knowledge::{
     Active, AdjustSide, Basis, CapacitorDemand, Cited, Dropout, EnableSpec, EsrWindow, Family, MinimumKind,
-    OpenEnable, Package, Pass, is_relative,
+    OpenEnable, Package, Pass, PublishedLoop, is_relative,
 };
 use crate::quantity::{Dimension, Range, print_amount, print_range};
 
@@ -54,6 +54,7 @@ pub fn part_rows(family: &Family) -> Vec<PartRow> {
     ] {
         rows.extend(demand.iter().flat_map(|demand| capacitor(what, demand)));
     }
+    rows.extend(family.published_loop.iter().flat_map(published_loop));
     rows.extend(family.enable.iter().flat_map(enable));
     rows.extend(family.packages.iter().flat_map(|(name, found)| package(name, found)));
     rows
@@ -193,6 +194,26 @@ fn enable(enable: &EnableSpec) -> Vec<PartRow> {
     };
     rows.push(PartRow::new("enable, open", open, &enable.open));
     rows
+}
+
+fn published_loop(published: &PublishedLoop<Cited<Range>>) -> Vec<PartRow> {
+    let row = |(key, number, cited): (&'static str, usize, &Cited<Range>)| match key {
+        "gain" => PartRow::new("loop gain", decibels(cited.value), cited),
+        "output_resistance" => {
+            PartRow::new("output resistance", print_range(cited.value, Dimension::RESISTANCE), cited)
+        }
+        key => {
+            let what = format!("loop, {} {}", if key == "zeros" { "zero" } else { "pole" }, number + 1);
+            PartRow::new(what, print_range(cited.value, Dimension::FREQUENCY), cited)
+        }
+    };
+    published.figures().map(row).collect()
+}
+
+fn decibels(gain: Range) -> String {
+    let of = |ratio: f64| 20.0 * ratio.log10();
+    let range = Range::clamped(of(gain.low()), of(gain.nominal()), of(gain.high()));
+    format!("{} dB", print_range(range, Dimension::ONE))
 }
 
 fn package(name: &str, package: &Package) -> Vec<PartRow> {

@@ -200,10 +200,10 @@ fn the_best_esr_within_a_range_is_found_between_its_ends() {
 }
 
 /// The phase margin by arctangents alone, at the one frequency where the gain is one: `R` beside one capacitor.
-fn by_hand(gain: f64, resistance: f64, farads: f64, esr: f64) -> f64 {
+fn by_hand(gain: f64, poles: [f64; 2], resistance: f64, (farads, esr): (f64, f64)) -> f64 {
     let corners = |hertz: f64| {
         let at = |ohms: f64| hertz * std::f64::consts::TAU * ohms * farads;
-        ([at(esr)], [at(resistance + esr), hertz / 1e3, hertz / 500e3])
+        ([at(esr)], [at(resistance + esr), hertz / poles[0], hertz / poles[1]])
     };
     let size = |hertz: f64| {
         let (zeros, poles) = corners(hertz);
@@ -224,8 +224,10 @@ fn by_hand(gain: f64, resistance: f64, farads: f64, esr: f64) -> f64 {
 fn the_margin_is_the_least_over_a_tenth_half_and_all_of_a_resistive_load() {
     let knowledge = rules(&format!("{FAMILY}{LOOP}"));
     for esr in [0.0, 0.2, 1.0, 8.0, 30.0] {
-        let wanted =
-            [0.1, 0.5, 1.0].map(|share| by_hand(1e4, 100.0 / share, 10e-6, esr)).into_iter().fold(180.0, f64::min);
+        let wanted = [0.1, 0.5, 1.0]
+            .map(|share| by_hand(1e4, [1e3, 500e3], 100.0 / share, (10e-6, esr)))
+            .into_iter()
+            .fold(180.0, f64::min);
         let found = asked(&knowledge, &bulk(esr), (100.0, ""), |facts, subject| {
             margin(facts, subject, PublishedMargin::Phase)
         });
@@ -267,4 +269,31 @@ fn a_recalled_loop_is_a_guess_and_a_part_without_one_has_no_margin() {
         assert!(facts.published_margin(regulator, PublishedMargin::Phase).is_none());
         assert!(facts.figure(subject, "computed_esr_low").is_none());
     });
+}
+
+#[test]
+fn the_bounds_over_all_ranges_are_those_of_a_dense_search_by_hand() {
+    let text = "[loop]\ngain = \"74 / 80 / 86 dB\"\npoles = [\"0.5 / 1 / 2 kHz\", \"300 / 500 / 800 kHz\"]\n";
+    let capacitors = [("C1", "10uF", "8 .. 12 uF".to_owned(), "0.1 .. 10 ohm".to_owned())];
+    let found = asked(&rules(&format!("{FAMILY}{text}")), &capacitors, (100.0, ""), |facts, subject| {
+        margin(facts, subject, PublishedMargin::Phase)
+    });
+    let ends = |low: f64, high: f64| [low, (low * high).sqrt(), high];
+    let (mut least, mut most) = (180.0_f64, -180.0_f64);
+    for gain in ends(10_f64.powf(3.7), 10_f64.powf(4.3)) {
+        for pole in ends(500.0, 2e3) {
+            for power in ends(300e3, 800e3) {
+                for farads in ends(8e-6, 12e-6) {
+                    for step in 0..=40 {
+                        let bank = (farads, 0.1 * 100_f64.powf(f64::from(step) / 40.0));
+                        let of = |share: f64| by_hand(gain, [pole, power], 100.0 / share, bank);
+                        let worst = of(0.1).min(of(0.5)).min(of(1.0));
+                        (least, most) = (least.min(worst), most.max(worst));
+                    }
+                }
+            }
+        }
+    }
+    assert!((found.worst().low() - least).abs() < 0.1, "{found:?} against {least}");
+    assert!((found.worst().high() - most).abs() < 0.3, "{found:?} against {most}");
 }

@@ -82,6 +82,7 @@ input_max     = "20 V"
 minimum_load  = "5 mA"
 tolerance_initial = "±1 %"
 pins = { 1 = "adjust or ground", 2 = "output", 3 = "input", tab = "output" }
+loop = { gain = "60 / 80 / 90 dB", poles = ["1 kHz", "400 .. 600 kHz"], zeros = ["2 MHz"], output_resistance = "20 ohm" }
 
 [[part]]
 ref  = "U9"
@@ -193,6 +194,17 @@ fn figures_in_place_are_read() {
     let pins = &part.pins.as_ref().unwrap().value;
     assert_eq!(pins["1"], [RoleName::Adjust, RoleName::Ground]);
     assert_eq!(pins["tab"], [RoleName::Output]);
+    let found: Vec<(&str, usize, [f64; 3])> = part
+        .published_loop
+        .iter()
+        .flat_map(|published| published.value.figures())
+        .map(|(key, number, range)| (key, number, [range.value.low(), range.value.nominal(), range.value.high()]))
+        .collect();
+    let gain = found[0].2;
+    assert!((gain[0] - 1e3).abs() < 1e-6 && (gain[1] - 1e4).abs() < 1e-6, "{gain:?}");
+    let poles = [("poles", 0, [1e3; 3]), ("poles", 1, [400e3, 500e3, 600e3])];
+    assert_eq!(found[1..3], poles);
+    assert_eq!(found[3..], [("zeros", 0, [2e6; 3]), ("output_resistance", 0, [20.0; 3])]);
 }
 
 #[test]

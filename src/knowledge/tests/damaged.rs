@@ -117,6 +117,22 @@ fn a_pin_without_a_role_is_told() {
 }
 
 #[test]
+fn what_is_wrong_with_a_loop_is_told_at_its_place() {
+    let told = |text: &str| of_part("[output_capacitor]", &format!("[loop]\n{text}\n[output_capacitor]"));
+    let all = [
+        "gain = \"80 dB\"\npoles = [\"1 kHz\", \"500 kHz\"]\nzeros = [\"2 MHz\"]\noutput_resistance = \"9 ohm\"",
+        "poles = [\"1 kHz\"]",
+        "gain = \"80 dV\"\npoles = [\"1 kHz\"]",
+        "gain = \"80 dB\"\npoles = [\"1 k\", \"0 Hz\"]",
+        "gain = \"80 dB\"\npoles = [\"1 kHz\"]\nzeros = [\"2 kHz\"]",
+        "gain = \"80 dB\"\npoles = [\"1 kHz\"]\nresistance = \"9 ohm\"",
+        "gain = \"80 dB\"\npoles = [\"1 kHz\"]\nrecalled = [\"pole\"]",
+        "gain = \">= 80 dB\"\npoles = [\"1 kHz\"]",
+    ];
+    insta::assert_snapshot!(all.map(told).join("\n\n"));
+}
+
+#[test]
 fn several_problems_are_told_in_one_reading() {
     let text =
         GOOD.replace("maker", "makr").replace("\"0.5 A\"", "\"half\"").replace("kind = \"series\"", "kind = 1");

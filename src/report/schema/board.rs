@@ -3,7 +3,8 @@
 use serde_json::{Value, json};
 
 use super::node::{
-    Key, Optional, Required, document, either, figure, flag, list, number, table, table_of, text, word,
+    Key, Optional, Required, document, either, figure, flag, list, number, published_loop, table, table_of, text,
+    word,
 };
 use crate::board::ModelKind;
 use crate::knowledge::{Family, Pass, RoleName, TECHNOLOGIES};
@@ -123,6 +124,7 @@ fn part() -> Value {
         Key("minimum_output_capacitance", figure("Least output capacitance", "1 uF"), Optional),
         Key("minimum_input_capacitance", figure("Least input capacitance", "1 uF"), Optional),
         Key("minimum_basis", word("What the minima speak of", ["nominal", "effective"]), Optional),
+        Key("loop", published_loop(Vec::new()), Optional),
         Key("model", figure(&model, "pmos VTO=-2.4..-1.2 KP=2"), Optional),
     ];
     let plain = Family::FIGURES.iter().filter(|(key, ..)| *key != "tolerance");

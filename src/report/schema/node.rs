@@ -61,6 +61,19 @@ pub(super) fn figure(about: &str, example: &str) -> Value {
     json!({ "type": "string", "description": about, "examples": [example] })
 }
 
+/// The loop that a maker publishes.
+pub(super) fn published_loop(mut more: Vec<Key>) -> Value {
+    let corner = |about: &str| list(about, figure("", "1 kHz"));
+    let mut keys = vec![
+        Key("gain", figure("At low frequencies, a ratio or in dB", "75 / 80 / 85 dB"), Required),
+        Key("poles", corner("Inside the part, without that of the output"), Required),
+        Key("zeros", corner("Inside the part, without that of the ESR; fewer than the poles"), Optional),
+        Key("output_resistance", figure("Of the output, without the loop", "20 ohm"), Optional),
+    ];
+    keys.append(&mut more);
+    table("The loop, where its maker publishes it", keys)
+}
+
 /// True or false.
 pub(super) fn flag(about: &str) -> Value {
     json!({ "type": "boolean", "description": about })

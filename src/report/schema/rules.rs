@@ -3,7 +3,8 @@
 use serde_json::{Value, json};
 
 use super::node::{
-    Key, Optional, Required, document, either, figure, flag, list, number, table, table_of, text, word,
+    Key, Optional, Required, document, either, figure, flag, list, number, published_loop, table, table_of, text,
+    word,
 };
 use crate::facts::SubjectKind;
 use crate::knowledge::{Family, FamilyKind, ModelKind, Pass, StandsFor, parameter_unit};
@@ -125,6 +126,7 @@ pub(super) fn part() -> Value {
         Key("input_capacitor", capacitor("What the input asks for"), Optional),
         Key("bypass_capacitor", capacitor("What the bypass pin asks for"), Optional),
         Key("enable", enable(), Optional),
+        Key("loop", published_loop(cited(Vec::new())), Optional),
         Key("packages", table_of("By package", package()), Optional),
         Key("sources", list("What was read", source()), Required),
     ];

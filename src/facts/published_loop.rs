@@ -19,6 +19,8 @@ use shape::{Layout, NO_EDGE, Shape, edges, phase};
 const WINDOW_GOAL: f64 = 45.0;
 /// Any phase margin, in degrees.
 const ANY_PHASE: (f64, f64) = (-180.0, 180.0);
+/// Capacitors that differ, the largest first: the smaller ones beyond these are left out.
+const MOST_CAPACITORS: usize = 8;
 /// The least full load that is looked at where it is a guess, as a part of the largest.
 const LEAST_LOAD: f64 = 0.1;
 
@@ -228,6 +230,7 @@ impl Facts<'_> {
         }
         // As for the bulk capacitor's ESR, the value that is drawn tells which one it is.
         found.sort_by(|one, other| other.drawn.total_cmp(&one.drawn));
+        found.truncate(MOST_CAPACITORS);
         let joined = |alike: Alike| (alike.farads.scaled(alike.count), alike.ohms.scaled(1.0 / alike.count));
         found.into_iter().map(joined).collect()
     }

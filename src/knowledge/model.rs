@@ -2,8 +2,8 @@
 
 use std::collections::BTreeMap;
 
-use super::devices::DeviceFamily;
 use super::PublishedLoop;
+use super::devices::DeviceFamily;
 use crate::quantity::Range;
 
 /// A source: what was read, or recalled.

@@ -5,6 +5,10 @@ use super::{Dimension, Pair, Quantity};
 
 /// Inputs whose ends are taken in every combination: those that move the formula most.
 const MOST_CORNERS: usize = 4;
+/// Inputs along which the search goes; the others stand at the end that is worse for each alone.
+const MOST_SEARCHED: usize = 8;
+/// How often it goes through them.
+const MOST_ROUNDS: usize = 8;
 /// The first and the last step of the search from the best corner, as shares of an input's range.
 const STEPS: (f64, f64) = (0.25, 0.03);
 
@@ -74,9 +78,13 @@ impl<F: Fn(&[f64]) -> f64> Search<'_, F> {
         let ranged = self.ranged(&value);
         let mut best = self.inside(self.nominals);
         let mut least = value(&best);
+        let mut start = best.clone();
+        for (index, end, _) in ranged.iter().skip(MOST_SEARCHED) {
+            self.put(&mut start, *index, *end);
+        }
         for corner in 0..1_u32 << ranged.len().min(MOST_CORNERS) {
-            let mut point = self.inside(self.nominals);
-            for (bit, index) in ranged.iter().take(MOST_CORNERS).enumerate() {
+            let mut point = start.clone();
+            for (bit, (index, ..)) in ranged.iter().take(MOST_CORNERS).enumerate() {
                 self.put(&mut point, *index, if corner >> bit & 1 == 1 { 1.0 } else { 0.0 });
             }
             let found = value(&point);
@@ -85,9 +93,9 @@ impl<F: Fn(&[f64]) -> f64> Search<'_, F> {
             }
         }
         let mut step = STEPS.0;
-        while step > STEPS.1 {
+        for _ in 0..MOST_ROUNDS {
             let mut moved = false;
-            for index in &ranged {
+            for (index, ..) in ranged.iter().take(MOST_SEARCHED) {
                 for by in [-step, step] {
                     let mut point = best.clone();
                     let share = self.share(&point, *index);
@@ -101,25 +109,30 @@ impl<F: Fn(&[f64]) -> f64> Search<'_, F> {
             if !moved {
                 step /= 2.0;
             }
+            if step < STEPS.1 {
+                break;
+            }
         }
         least.is_finite().then_some(sign * least)
     }
 
-    /// The inputs that have a range, the one that moves the formula most first.
-    fn ranged(&self, value: &impl Fn(&[f64]) -> f64) -> Vec<usize> {
+    /// The inputs that have a range, the one that moves the formula most first: which of its ends, as a share, has the
+    /// lower value, and how far it moves it.
+    fn ranged(&self, value: &impl Fn(&[f64]) -> f64) -> Vec<(usize, f64, f64)> {
         let moves = |index: usize| {
             let at = |share: f64| {
                 let mut point = self.inside(self.nominals);
                 self.put(&mut point, index, share);
                 value(&point)
             };
-            let moved = (at(1.0) - at(0.0)).abs();
-            if moved.is_nan() { f64::INFINITY } else { moved }
+            let (low, high) = (at(0.0), at(1.0));
+            let moved = (high - low).abs();
+            (index, if high < low { 1.0 } else { 0.0 }, if moved.is_nan() { f64::INFINITY } else { moved })
         };
         let wide = self.ranges.iter().enumerate().filter(|(_, range)| range.width() > 0.0);
-        let mut found: Vec<(usize, f64)> = wide.map(|(index, _)| (index, moves(index))).collect();
-        found.sort_by(|one, other| other.1.total_cmp(&one.1));
-        found.into_iter().map(|(index, _)| index).collect()
+        let mut found: Vec<(usize, f64, f64)> = wide.map(|(index, _)| moves(index)).collect();
+        found.sort_by(|one, other| other.2.total_cmp(&one.2));
+        found
     }
 
     fn inside(&self, point: &[f64]) -> Vec<f64> {
@@ -200,9 +213,9 @@ mod tests {
     #[test]
     fn many_inputs_are_searched_beyond_the_corners() {
         let all: Vec<Quantity> =
-            (0..7).map(|n| figure(Grade::Declared, (1.0, 2.0, 3.0), &format!("input {n}"))).collect();
+            (0..11).map(|n| figure(Grade::Declared, (1.0, 2.0, 3.0), &format!("input {n}"))).collect();
         let inputs: Vec<&Quantity> = all.iter().collect();
         let found = Quantity::searched(Dimension::ONE, &inputs, Pair::ANY, |v| v.iter().sum());
-        assert!((found.worst().low() - 7.0).abs() < 1e-9 && (found.worst().high() - 21.0).abs() < 1e-9);
+        assert!((found.worst().low() - 11.0).abs() < 1e-9 && (found.worst().high() - 33.0).abs() < 1e-9);
     }
 }

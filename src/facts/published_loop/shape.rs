@@ -75,7 +75,7 @@ impl Shape {
                 .iter()
                 .zip(&admittances)
                 .map(|((hertz, over, under), admittance)| (*hertz, *over, under * (1.0 + ohms * admittance)));
-            let last = gains.clone().last();
+            let last = gains.clone().next_back();
             worst.worse(crossed(margins(gains), last))
         })
     }

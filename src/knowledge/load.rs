@@ -4,12 +4,12 @@ use std::collections::BTreeMap;
 use std::path::PathBuf;
 use std::sync::OnceLock;
 
-use super::Knowledge;
 use super::devices::device_of;
 use super::family::family_of;
 use super::files::{Files, Shelf};
 use super::supply::supply_of;
 use super::technology::technology_of;
+use super::{DeviceFamily, Knowledge};
 use crate::source::toml::{Document, nearest};
 use crate::source::{Problem, Source};
 
@@ -57,7 +57,9 @@ fn read_all(files: Files, problems: &mut Vec<Problem>) -> Knowledge {
                 supply_of(source, &format!("supplies/{name}")).map(|supply| knowledge.supplies.push(supply))
             }
             Shelf::Devices => {
-                device_of(source, &format!("devices/{name}")).map(|device| knowledge.devices.push(device))
+                let of_user = files.extra.contains(&(*shelf, name.clone()));
+                device_of(source, &format!("devices/{name}"))
+                    .map(|device| knowledge.devices.push(DeviceFamily { of_user, ..device }))
             }
         };
         let folder = match shelf {

@@ -5,7 +5,7 @@ use crate::knowledge::{DeviceFamily, DeviceModel, Knowledge, ModelKind, StandsFo
 use crate::quantity::Range;
 
 use super::family_match::{fit, reduced};
-use super::identity::NUMBER_FIELDS;
+use super::identity::{NUMBER_FIELDS, names_part, same_part};
 use super::package::package_of;
 use super::zener::zener_volts;
 
@@ -37,6 +37,9 @@ const SMALL: &[&str] = &[
     "TO-92", "TO-18", "SOT-23", "SOT-323", "SOT-363", "SOT-416", "SOT-523", "SOT-563", "SOT-723", "SOT-883", "SC-70",
     "SC-75", "SC-89", "SC-59", "SC-101",
 ];
+
+/// How the numbers of transistors with resistors inside begin.
+const WITH_RESISTORS: &[&str] = &["DTA", "DTB", "DTC", "DTD", "PDTA", "PDTC", "MUN2", "MUN5"];
 
 /// The model of a part as what it is drawn as; `None` for parts that have none, or of which nothing tells the polarity.
 #[must_use]
@@ -74,15 +77,23 @@ pub fn kinds_of(device: &Device) -> &'static [ModelKind] {
     }
 }
 
-/// The texts that may name a part, the most trusted first.
+/// The texts that may name a part, the most trusted first. Where the value names another part than the symbol, the symbol
+/// says nothing of it.
 fn texts(device: &Device) -> impl Iterator<Item = &str> {
     let of_fields = device.fields.iter().filter(|field| {
         let name = field.name.trim();
         NUMBER_FIELDS.iter().any(|known| known.eq_ignore_ascii_case(name))
     });
     let fields = of_fields.map(|field| field.value.trim());
-    let all = std::iter::once(device.value.trim()).chain(fields).chain([device.symbol()]);
+    let (value, symbol) = (device.value.trim(), device.symbol());
+    let symbol = if names_device(value) && !same_part(value, symbol) { "" } else { symbol };
+    let all = std::iter::once(value).chain(fields).chain([symbol]);
     all.filter(|text| !text.is_empty())
+}
+
+/// Whether a text looks like a part number, those that begin with a digit (`2N3904`, `1N4148`) among them.
+fn names_device(text: &str) -> bool {
+    names_part(text) || text.strip_prefix(['1', '2', '3']).is_some_and(names_part)
 }
 
 /// The family that a text of the part names: of several the one whose pattern has most letters and digits, then the one
@@ -91,11 +102,12 @@ fn named<'k>(knowledge: &'k Knowledge, device: &Device, kind: ModelKind) -> Opti
     let families: Vec<&DeviceFamily> = knowledge.devices.iter().filter(|family| family.kind == kind).collect();
     for text in texts(device) {
         let name = reduced(text);
-        let mut best: Option<(usize, &DeviceFamily)> = None;
+        let mut best: Option<((usize, bool), &DeviceFamily)> = None;
         for family in &families {
-            let fitting = family.names.iter().filter_map(|pattern| fit(pattern, &name)).max();
-            if let Some(letters) = fitting.filter(|letters| best.is_none_or(|(most, _)| *letters > most)) {
-                best = Some((letters, *family));
+            let Some(letters) = family.names.iter().filter_map(|pattern| fit(pattern, &name)).max() else { continue };
+            let rank = (letters, family.of_user);
+            if best.is_none_or(|(most, _)| rank > most) {
+                best = Some((rank, *family));
             }
         }
         if let Some((_, family)) = best {
@@ -109,6 +121,9 @@ fn named<'k>(knowledge: &'k Knowledge, device: &Device, kind: ModelKind) -> Opti
 fn usual<'k>(knowledge: &'k Knowledge, device: &Device, kind: ModelKind) -> Option<DeviceMatch<'k>> {
     let standing =
         |of: StandsFor| knowledge.devices.iter().find(|family| family.kind == kind && family.stands_for == Some(of));
+    if is_special(device, kind) {
+        return None;
+    }
     let one = |of: StandsFor| standing(of).map(|family| matched(family, family.model(volts(device, kind)), None));
     match kind {
         ModelKind::Npn | ModelKind::Pnp if is_darlington(device) => one(StandsFor::Darlington),
@@ -164,10 +179,31 @@ fn over_both(one: &DeviceModel, other: &DeviceModel) -> DeviceModel {
     both
 }
 
+/// Whether the part is of a sort of its own, of which nothing is usual: with resistors inside, conducting without drive, or
+/// a clamp that is named by the voltage that it lets stand.
+fn is_special(device: &Device, kind: ModelKind) -> bool {
+    let words: &[&str] = match kind {
+        ModelKind::Npn | ModelKind::Pnp => &["bias resistor", "biased", "prebias", "digital", "brt"],
+        ModelKind::Nmos | ModelKind::Pmos => &["depletion"],
+        ModelKind::Zener => &["tvs", "transient", "suppress", "varistor", "esd", "smaj", "smbj", "p6ke"],
+        _ => &[],
+    };
+    let text = text_of(device);
+    let name = reduced(if device.value.trim().is_empty() { device.symbol() } else { &device.value });
+    let with_resistors = matches!(kind, ModelKind::Npn | ModelKind::Pnp)
+        && WITH_RESISTORS.iter().any(|beginning| name.starts_with(beginning));
+    with_resistors || words.iter().any(|word| text.contains(word))
+}
+
 /// Whether two transistors hide in one symbol.
 fn is_darlington(device: &Device) -> bool {
+    text_of(device).contains("darlington")
+}
+
+/// Everything that is said of a part, in lower case.
+fn text_of(device: &Device) -> String {
     let text = format!("{} {} {} {}", device.part, device.value, device.description, device.keywords);
-    text.to_ascii_lowercase().contains("darlington")
+    text.to_ascii_lowercase()
 }
 
 /// Whether the package is one that carries power; `None` where the footprint tells no package that is known here.

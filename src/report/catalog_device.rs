@@ -5,7 +5,7 @@ use super::figures::title;
 use super::inert::inert;
 use super::layout::{table, wrapped};
 use super::look::Look;
-use crate::knowledge::{Cited, DeviceFamily, Knowledge, parameter_dimension};
+use crate::knowledge::{Cited, DeviceFamily, Knowledge, parameter_dimension, parameter_unit};
 use crate::quantity::{Dimension, Range, print_amount};
 
 /// Every family of single parts in a line: its name, its kind, the names of its parts.
@@ -34,8 +34,12 @@ pub fn device(knowledge: &Knowledge, name: &str, look: Look) -> Option<String> {
         }
     }
     if let Some(tolerance) = &family.tolerance {
-        let percent = format!("{:.3} %", tolerance.value.high() * 100.0);
+        let percent = format!("{} %", print_amount(tolerance.value.high() * 100.0, Dimension::ONE));
         rows.push(vec!["tolerance of BV".to_owned(), percent, title(&tolerance.source)]);
+    }
+    if family.sources.len() == 1 {
+        // The one source stands below.
+        rows.iter_mut().for_each(|row| row.truncate(2));
     }
     text.push_str(&table(&rows, "  ", look.width()));
     if !family.names.is_empty() {
@@ -57,15 +61,22 @@ fn step(name: &str, limit: f64, figure: &Cited<Range>) -> Vec<String> {
 }
 
 fn row(what: String, name: &str, figure: &Cited<Range>) -> Vec<String> {
-    vec![what, low_nominal_high(figure.value, parameter_dimension(name)), title(&figure.source)]
+    vec![what, low_nominal_high(figure.value, name), title(&figure.source)]
 }
 
 /// `lowest / nominal / highest`, or one value.
-fn low_nominal_high(range: Range, dimension: Dimension) -> String {
-    let amount = |value: f64| match value != 0.0 && value.abs() < LEAST_PREFIXED {
-        // Saturation currents go below every prefix.
-        true => format!("{value:e} {dimension}"),
-        false => print_amount(value, dimension),
+fn low_nominal_high(range: Range, name: &str) -> String {
+    let dimension = parameter_dimension(name);
+    let (unit, one) = parameter_unit(name);
+    let amount = |value: f64| {
+        if dimension.symbol().is_none() {
+            return format!("{} {unit}", print_amount(value / one, Dimension::ONE));
+        }
+        match value != 0.0 && value.abs() < LEAST_PREFIXED {
+            // Saturation currents go below every prefix.
+            true => format!("{value:e} {unit}"),
+            false => print_amount(value, dimension),
+        }
     };
     if range.is_exact() {
         return amount(range.nominal());

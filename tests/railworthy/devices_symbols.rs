@@ -5,7 +5,9 @@ use std::fs;
 use std::path::Path;
 
 use railworthy::circuit::{Circuit, DeviceKind, Polarity};
+use railworthy::knowledge::{Knowledge, ModelKind};
 use railworthy::netlist::{Component, Format, LibraryPart, Netlist, PartPin};
+use railworthy::recognize::device_match;
 use railworthy::source::Source;
 
 use crate::shared::shared_folder;
@@ -196,5 +198,46 @@ fn no_integrated_regulator_is_taken_for_another_device() {
             circuit.devices().map(|id| circuit.device(id)).filter(|device| device.kind != DeviceKind::Integrated);
         let other: Vec<String> = other.map(|device| format!("{} {:?}", device.part, device.kind)).collect();
         assert!(other.is_empty(), "{library:?} {described}: {} of them: {other:?}", other.len());
+    }
+}
+
+#[test]
+fn parts_of_the_library_find_a_device_model_of_their_polarity() {
+    let Some(shared) = shared_folder() else { return };
+    let rows = table(&shared.join("symbols/devices.tsv"));
+    let circuit = board(&rows, None, true);
+    let knowledge = Knowledge::shared();
+    // Of each kind of symbol: how many are known by number, assumed, without a model.
+    let mut counts: BTreeMap<&str, [usize; 3]> = BTreeMap::new();
+    let mut wrong = Vec::new();
+    for (row, id) in rows.iter().zip(circuit.devices()) {
+        let device = circuit.device(id);
+        let found = device_match(knowledge, device);
+        let place = match &found {
+            Some(found) if !found.assumed => 0,
+            Some(_) => 1,
+            None => 2,
+        };
+        counts.entry(&row["kind"]).or_default()[place] += 1;
+        let Some(found) = found else { continue };
+        let fits = match (found.model.kind(), device.polarity) {
+            (ModelKind::Npn | ModelKind::Nmos, Some(polarity)) => polarity == Polarity::N,
+            (ModelKind::Pnp | ModelKind::Pmos, Some(polarity)) => polarity == Polarity::P,
+            _ => true,
+        };
+        if !fits {
+            wrong.push(format!("{}: {}", row["symbol"], found.family));
+        }
+    }
+    println!("{counts:?}");
+    assert_eq!(wrong, Vec::<String>::new());
+    let of = |kind: &str| counts[kind];
+    assert!(of("bjt")[0] >= 110 && of("bjt")[2] <= 20, "{:?}", of("bjt"));
+    assert!(of("op-amp")[0] >= 120 && of("op-amp")[2] == 0, "{:?}", of("op-amp"));
+    assert!(of("mosfet")[0] >= 35 && of("mosfet")[2] <= 30, "{:?}", of("mosfet"));
+    assert!(of("diode-zener")[0] >= 80 && of("tvs")[1] == 0, "{:?} {:?}", of("diode-zener"), of("tvs"));
+    assert!(of("bjt-prebiased")[0] + of("bjt-prebiased")[1] == 0, "{:?}", of("bjt-prebiased"));
+    for kind in ["resistor", "capacitor", "connector", "jfet", "igbt"] {
+        assert_eq!(of(kind)[0] + of(kind)[1], 0, "{kind}");
     }
 }

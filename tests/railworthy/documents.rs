@@ -231,7 +231,7 @@ fn models() -> String {
 fn model_units() -> String {
     let mut by_unit: BTreeMap<&str, Vec<&str>> = BTreeMap::new();
     for (name, _) in ModelKind::ALL.iter().flat_map(|(kind, _)| kind.parameters()) {
-        let names = by_unit.entry(parameter_unit(name)).or_default();
+        let names = by_unit.entry(parameter_unit(name).0).or_default();
         if !names.contains(name) {
             names.push(name);
         }

@@ -17,6 +17,7 @@ mod declare;
 mod declared_parts;
 mod demo;
 mod demo_formats;
+mod device_figures;
 mod device_files;
 mod devices_symbols;
 mod documents;

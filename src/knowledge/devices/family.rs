@@ -76,6 +76,8 @@ pub struct DeviceFamily {
     pub sources: Vec<SourceNote>,
     /// The file it comes from, as a path below `rules/`.
     pub file: String,
+    /// Whether that file lies in a folder of the user.
+    pub of_user: bool,
 }
 
 impl DeviceFamily {

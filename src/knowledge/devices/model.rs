@@ -125,13 +125,13 @@ pub fn parameter_dimension(name: &str) -> Dimension {
     }
 }
 
-/// The unit in which device files state a parameter, as it is written there; empty for a plain number.
+/// The unit of a parameter as device files write it, empty for a plain number, and what one of it is in SI units.
 #[must_use]
-pub fn parameter_unit(name: &str) -> &'static str {
+pub fn parameter_unit(name: &str) -> (&'static str, f64) {
     match name {
-        "KP" => "A/V/V",
-        "SR" => "V/us",
-        _ => parameter_dimension(name).symbol().unwrap_or(""),
+        "KP" => ("A/V/V", 1.0),
+        "SR" => ("V/us", 1e6),
+        _ => (parameter_dimension(name).symbol().unwrap_or(""), 1.0),
     }
 }
 

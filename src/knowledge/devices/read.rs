@@ -42,6 +42,7 @@ fn read_device(document: &Document, file: &str) -> Option<DeviceFamily> {
         note,
         sources: Vec::new(),
         file: file.to_owned(),
+        of_user: false,
     };
     read_parameters(&mut root, &sources, &mut family);
     if family.parameters.is_empty() && !document.has_problems() {

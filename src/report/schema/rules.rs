@@ -158,7 +158,7 @@ pub(super) fn device() -> Value {
             let kinds =
                 ModelKind::ALL.iter().filter(|(kind, _)| kind.parameters().iter().any(|(own, _)| own == name));
             let kinds: Vec<&str> = kinds.map(|(_, name)| *name).collect();
-            let unit = if parameter_unit(name).is_empty() { "no unit" } else { parameter_unit(name) };
+            let unit = Some(parameter_unit(name).0).filter(|unit| !unit.is_empty()).unwrap_or("no unit");
             keys.push(Key(name, part_figure(&format!("Parameter of {}", kinds.join(", ")), unit), Optional));
         }
     }

@@ -270,6 +270,23 @@ fn a_number_of_the_other_polarity_is_not_taken() {
 }
 
 #[test]
+fn a_symbol_says_nothing_of_another_part_that_the_value_names() {
+    let found = found(&part("Transistor_BJT:BD139", "1.5 A NPN transistor", "2SC9999", "")).unwrap();
+    assert!(found.assumed, "{}", found.family);
+}
+
+#[test]
+fn parts_of_their_own_sort_have_no_usual_model() {
+    for (symbol, about, value) in [
+        ("Device:Q_NPN_BCE", "NPN transistor", "DTC143E"),
+        ("Device:Q_NMOS_GDS", "N-channel depletion mode MOSFET", "ZZ129"),
+        ("Device:D_Zener", "Transient suppressor", "SMAJ5.0A"),
+    ] {
+        assert!(found(&part(symbol, about, value, "")).is_none(), "{value}");
+    }
+}
+
+#[test]
 fn each_pattern_finds_its_own_family() {
     for family in &Knowledge::shared().devices {
         let (symbol, about) = match family.kind {
@@ -301,12 +318,15 @@ fn a_file_of_the_user_takes_the_place_of_a_built_in_one_or_adds_a_part() {
     };
     fs::write(folder.path().join("devices/bd139.toml"), own("BD139", "90 / 100 / 110")).unwrap();
     fs::write(folder.path().join("devices/house.toml"), own("QZ77", "50")).unwrap();
+    // The name is that of a built-in file's pattern too: the user's own is meant.
+    let rival = own("house TIP31", "60").replace("house TIP31*", "TIP31*");
+    fs::write(folder.path().join("devices/zz.toml"), rival).unwrap();
     let (knowledge, problems) = Knowledge::load(&[folder.path().to_owned()]);
     assert!(problems.iter().all(|problem| problem.message().contains("takes the place of")), "{problems:?}");
-    for (value, gain) in [("BD139", 100.0), ("QZ77", 50.0)] {
+    for (value, name, gain) in [("BD139", "BD139", 100.0), ("QZ77", "QZ77", 50.0), ("TIP31C", "house TIP31", 60.0)] {
         let device = part("Device:Q_NPN_BCE", "NPN transistor", value, "");
         let found = device_match(&knowledge, &device).unwrap();
-        assert_eq!((found.family, found.recalled, found.source.as_str()), (value, false, "house sheet"));
+        assert_eq!((found.family, found.recalled, found.source.as_str()), (name, false, "house sheet"));
         assert!((found.model.get("BF").unwrap().nominal() - gain).abs() < 1e-9);
     }
     let list = run(root(), &["catalog", "devices", "--rules", &folder.path().display().to_string()]);

@@ -229,7 +229,6 @@ fn parts_of_the_library_find_a_device_model_of_their_polarity() {
             wrong.push(format!("{}: {}", row["symbol"], found.family));
         }
     }
-    println!("{counts:?}");
     assert_eq!(wrong, Vec::<String>::new());
     let of = |kind: &str| counts[kind];
     assert!(of("bjt")[0] >= 110 && of("bjt")[2] <= 20, "{:?}", of("bjt"));

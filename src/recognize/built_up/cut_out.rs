@@ -24,7 +24,7 @@ pub(super) fn cut_out(
     let mut nets: Vec<NetId> = drive.path.clone();
     nets.extend(stage.transistors.iter().map(|one| one.control));
     if let Some(amplifier) = &drive.amplifier {
-        nets.push(amplifier.sensing);
+        nets.extend([amplifier.sensing, amplifier.comparing]);
     }
     nets.push(drive.reference.net);
     let mut parts: Vec<DeviceId> = known.keys().copied().collect();

@@ -126,7 +126,7 @@ fn amplified(network: &Network<'_>, stage: &Stage, ends: &Ends, step: &Step) -> 
         let sensing = shunt.roles.adjust.first().and_then(|pin| network.circuit.net_of(shunt.device, *pin))?;
         let devices = vec![shunt.device];
         let reference = Reference::held(ReferenceKind::Shunt, devices, net);
-        let compared = Comparison { sensing, sensed, reference, rising: false };
+        let compared = Comparison { sensing, comparing: sensing, sensed, reference, rising: false };
         Some((AmplifierKind::Shunt, vec![shunt.device], compared))
     });
     let own = |one: &&Transistor| stage.transistors.iter().all(|pass| pass.device != one.device);
@@ -140,7 +140,15 @@ fn amplified(network: &Network<'_>, stage: &Stage, ends: &Ends, step: &Step) -> 
     let junction = junction(network, kind, step, ends, &compared);
     let own = |one: &&Regulator| kind == AmplifierKind::Shunt && devices.contains(&one.device);
     let shunt = network.error_amplifiers(step.net).iter().find(own).map(|one| Box::new(one.clone()));
-    let amplifier = Amplifier { kind, devices, output: step.net, sensing: compared.sensing, junction, shunt };
+    let amplifier = Amplifier {
+        kind,
+        devices,
+        output: step.net,
+        sensing: compared.sensing,
+        comparing: compared.comparing,
+        junction,
+        shunt,
+    };
     Some(Drive {
         amplifier: Some(amplifier),
         sensed: Some(compared.sensed),

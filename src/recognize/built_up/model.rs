@@ -41,6 +41,8 @@ pub struct Amplifier {
     pub output: NetId,
     /// The input that senses the output.
     pub sensing: NetId,
+    /// The other input, which sees the reference or ground; the same net where a part has no other.
+    pub comparing: NetId,
     /// What a single transistor's own junction does to the reference.
     pub junction: Junction,
     /// A programmable shunt, with its pins and family.

@@ -185,6 +185,8 @@ fn part_of(circuit: &Circuit, input: NetId, held: NetId) -> Option<Divider> {
 #[derive(Debug)]
 pub(super) struct Comparison {
     pub(super) sensing: NetId,
+    /// The other input.
+    pub(super) comparing: NetId,
     pub(super) sensed: Sensed,
     pub(super) reference: Reference,
     /// Whether the amplifier's output rises with the output of the regulator.
@@ -193,20 +195,23 @@ pub(super) struct Comparison {
 
 /// What an amplifier with an inverting and a plain input compares; `None` where it is no error amplifier.
 pub(super) fn compare(minus: Input, plus: Input) -> Option<Comparison> {
-    let comparison = |sensing: NetId, sensed, reference, rising| Comparison { sensing, sensed, reference, rising };
     match (minus, plus) {
-        (Input { net, sensed: Some(sensed), .. }, Input { reference: Some(reference), .. }) => {
-            Some(comparison(net, sensed, reference, false))
-        }
-        (Input { reference: Some(reference), .. }, Input { net, sensed: Some(sensed), .. }) => {
-            Some(comparison(net, sensed, reference, true))
-        }
-        (Input { net, sensed: Some(sensed), opposite: Some(reference), .. }, Input { grounded: true, .. }) => {
-            Some(comparison(net, sensed, reference, false))
-        }
-        (Input { grounded: true, .. }, Input { net, sensed: Some(sensed), opposite: Some(reference), .. }) => {
-            Some(comparison(net, sensed, reference, true))
-        }
+        (
+            Input { net: sensing, sensed: Some(sensed), .. },
+            Input { net: comparing, reference: Some(reference), .. },
+        ) => Some(Comparison { sensing, comparing, sensed, reference, rising: false }),
+        (
+            Input { net: comparing, reference: Some(reference), .. },
+            Input { net: sensing, sensed: Some(sensed), .. },
+        ) => Some(Comparison { sensing, comparing, sensed, reference, rising: true }),
+        (
+            Input { net: sensing, sensed: Some(sensed), opposite: Some(reference), .. },
+            Input { net: comparing, grounded: true, .. },
+        ) => Some(Comparison { sensing, comparing, sensed, reference, rising: false }),
+        (
+            Input { net: comparing, grounded: true, .. },
+            Input { net: sensing, sensed: Some(sensed), opposite: Some(reference), .. },
+        ) => Some(Comparison { sensing, comparing, sensed, reference, rising: true }),
         _ => None,
     }
 }
@@ -225,10 +230,16 @@ pub(super) fn grounded_emitter(network: &Network<'_>, base: NetId, ends: &Ends) 
         let net = last.into_iter().find(|net| ends.output.contains(net))?;
         let kind = string_kind(circuit, &devices);
         let reference = Reference { in_sense: true, ..Reference::held(kind, devices, net) };
-        return Some(Comparison { sensing: base, sensed: Sensed { net, divider: None }, reference, rising: false });
+        return Some(Comparison {
+            sensing: base,
+            comparing: base,
+            sensed: Sensed { net, divider: None },
+            reference,
+            rising: false,
+        });
     }
     let sensed = sensed(circuit, base, ends)?;
     let divided = sensed.divider.as_ref().is_some_and(|divider| !divider.lower.is_empty());
     let reference = Reference::held(ReferenceKind::BaseEmitter, Vec::new(), base);
-    divided.then_some(Comparison { sensing: base, sensed, reference, rising: false })
+    divided.then_some(Comparison { sensing: base, comparing: base, sensed, reference, rising: false })
 }

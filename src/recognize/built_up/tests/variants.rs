@@ -100,8 +100,10 @@ fn followers_pass_a_reference_on_and_dividers_behind_them_count() {
     let reference = |lines: &str| {
         let (design, told) = built(&format!("{rest}{lines}"));
         assert_eq!(told, ["Q1: npn-follower + VIN>OUT, op-amp U1, zener diode D1 input divider R3/R4"]);
-        let reference = design.regulators[0].built_up.as_ref().unwrap().reference.clone();
-        (reference.whole, reference.divider.is_some())
+        let built = design.regulators[0].built_up.as_ref().unwrap();
+        let inside = |name: &str| built.cut_out.iter().any(|(id, _)| design.circuit.device(*id).reference == name);
+        assert!(["R5", "U2"].into_iter().all(inside), "{:?}", built.cut_out);
+        (built.reference.whole, built.reference.divider.is_some())
     };
     // The load at the follower's output takes nothing of what it gives.
     let held = "D1 2V5 D_Zener 1:K=q 2:A=GND\nR6 1k R 1=f 2=GND\n";

@@ -148,6 +148,17 @@ impl Quantity {
         self.missing.take_over(&other.missing, Arc::ptr_eq);
     }
 
+    /// Takes over what an input rests on which, moved over its whole range, moves this figure by `swing`; one that could
+    /// move it and does not is left out.
+    pub(super) fn take_over(&mut self, input: &Quantity, swing: f64) {
+        if swing > 0.0 || input.worst.width() <= 0.0 {
+            self.inherit(input);
+        }
+        if swing > 0.0 && !input.guesses.is_empty() {
+            self.inherit_guesses(input, swing);
+        }
+    }
+
     /// Takes over the guesses of an input which, moved over its whole range, moves this figure by `swing`. Facts take
     /// their part of that range: a guess gets no more of the swing than it moves of the input.
     pub(super) fn inherit_guesses(&mut self, input: &Quantity, swing: f64) {

@@ -5,6 +5,7 @@
 mod arithmetic;
 mod dimension;
 mod evidence;
+mod explore;
 mod figure;
 mod ledger;
 mod pair;

@@ -7,12 +7,14 @@ use std::ops::Deref;
 use std::rc::Rc;
 
 use super::flow::{self, Drawn, Flow, Rail, Rails};
+use super::solved::{Recipe, Start};
 use super::{Subject, SubjectKind, Value, definition};
 use crate::board::Board;
-use crate::circuit::{Circuit, Device, DeviceId, DeviceKind, NetId};
+use crate::circuit::{Circuit, Device, DeviceId, NetId};
 use crate::knowledge::{Family, Knowledge};
 use crate::quantity::{Dimension, Evidence, Grade, Quantity, Range};
 use crate::recognize::{Bank, Design, Regulator, RegulatorId, Side, bank_to};
+use crate::solve::SolveError;
 
 /// Where no ambient is declared (°C).
 const AMBIENT: (f64, f64) = (-10.0, 50.0);
@@ -21,6 +23,9 @@ const ROOM: f64 = 25.0;
 
 /// A bank: net, returns, side.
 type BankKey = (NetId, Option<NetId>, Side);
+
+/// The circuit of a built-up regulator, or what is missing for it.
+type KnownRecipe = Rc<Result<Recipe, Box<Evidence>>>;
 
 /// A bank's total: net, returns, side, whether only ceramics count, whether as drawn.
 pub(super) type TotalKey = (NetId, Option<NetId>, Side, bool, bool);
@@ -36,11 +41,13 @@ pub struct Facts<'a> {
     loads: OnceCell<HashMap<NetId, Vec<Quantity>>>,
     draws: RefCell<HashMap<(NetId, Drawn), Quantity>>,
     cycles: OnceCell<Vec<Vec<RegulatorId>>>,
-    clamps: RefCell<HashMap<NetId, Option<DeviceId>>>,
+    pub(super) clamps: RefCell<HashMap<NetId, Option<DeviceId>>>,
     // Never gone through in order: only looked up.
     values: RefCell<HashMap<(Subject, &'static str), Value>>,
     banks: RefCell<HashMap<BankKey, Rc<KnownBank>>>,
     totals: RefCell<HashMap<TotalKey, Quantity>>,
+    recipes: RefCell<HashMap<DeviceId, KnownRecipe>>,
+    starts: RefCell<HashMap<DeviceId, Result<Rc<Start>, SolveError>>>,
     index: OnceCell<Index>,
 }
 
@@ -95,6 +102,8 @@ impl<'a> Facts<'a> {
             values: RefCell::new(HashMap::new()),
             banks: RefCell::new(HashMap::new()),
             totals: RefCell::new(HashMap::new()),
+            recipes: RefCell::new(HashMap::new()),
+            starts: RefCell::new(HashMap::new()),
             index: OnceCell::new(),
         }
     }
@@ -181,27 +190,6 @@ impl<'a> Facts<'a> {
     /// What fields on parts say that these draw, by net.
     pub(super) fn field_loads(&self) -> &HashMap<NetId, Vec<Quantity>> {
         self.loads.get_or_init(|| self.loads_by_field())
-    }
-
-    /// The first fitted diode of some kinds between a net and ground, looked for once: many parts share an input.
-    pub(super) fn diode_to_ground(&self, net: NetId) -> Option<DeviceId> {
-        if let Some(known) = self.clamps.borrow().get(&net) {
-            return *known;
-        }
-        let circuit = self.circuit();
-        let is_diode = |device: DeviceId| {
-            matches!(circuit.device(device).kind, DeviceKind::Diode | DeviceKind::Schottky | DeviceKind::Zener)
-        };
-        // A clamp is told ahead of a plain diode, which only stops a reversed supply.
-        let mut found: Vec<DeviceId> = circuit
-            .neighbours(net)
-            .filter(|(device, to)| circuit.net(*to).ground && is_diode(*device))
-            .map(|(device, _)| device)
-            .collect();
-        found.sort_by_key(|device| circuit.device(*device).kind != DeviceKind::Zener);
-        let first = found.first().copied();
-        self.clamps.borrow_mut().insert(net, first);
-        first
     }
 
     /// What is drawn from a net, summed once.
@@ -345,6 +333,34 @@ impl<'a> Facts<'a> {
         let total = sum();
         self.totals.borrow_mut().insert(key, total.clone());
         total
+    }
+
+    /// The circuit of a built-up regulator, made once.
+    pub(super) fn recipe_once(
+        &self,
+        device: DeviceId,
+        make: impl FnOnce() -> Result<Recipe, Box<Evidence>>,
+    ) -> KnownRecipe {
+        if let Some(known) = self.recipes.borrow().get(&device) {
+            return Rc::clone(known);
+        }
+        let made = Rc::new(make());
+        self.recipes.borrow_mut().insert(device, Rc::clone(&made));
+        made
+    }
+
+    /// What was found about a start, once.
+    pub(super) fn start_once(
+        &self,
+        device: DeviceId,
+        find: impl FnOnce() -> Result<Start, SolveError>,
+    ) -> Result<Rc<Start>, SolveError> {
+        if let Some(known) = self.starts.borrow().get(&device) {
+            return known.clone();
+        }
+        let found = find().map(Rc::new);
+        self.starts.borrow_mut().insert(device, found.clone());
+        found
     }
 
     /// Ambient temperature, °C; a guess where none is declared.

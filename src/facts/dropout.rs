@@ -27,7 +27,8 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         |facts, subject| {
             series(facts, subject, |regulator| {
                 let load = facts.load(regulator);
-                Value::Figure(facts.dropout(regulator, &load))
+                let solved = facts.undeclared(regulator).and_then(|own| facts.solved_dropout(own, None));
+                solved.unwrap_or_else(|| Value::Figure(facts.dropout(regulator, &load)))
             })
         },
     ),
@@ -36,8 +37,9 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         "the same at a tenth of the peak load, or at the declared idle where that is more",
         |facts, subject| {
             series(facts, subject, |regulator| {
-                let load = facts.load(regulator);
-                Value::Figure(facts.dropout(regulator, &light(&load)))
+                let light = light(&facts.load(regulator));
+                let solved = facts.undeclared(regulator).and_then(|own| facts.solved_dropout(own, light.nominal()));
+                solved.unwrap_or_else(|| Value::Figure(facts.dropout(regulator, &light)))
             })
         },
     ),
@@ -127,6 +129,11 @@ impl Facts<'_> {
         let range = Range::clamped(range.0, 1.0, range.1);
         let (low, high) = RECALLED_LIMITS;
         Some(Quantity::given(Dimension::ONE, range, Pair::new(low, high), evidence))
+    }
+
+    /// The regulator, where no dropout is declared for it.
+    fn undeclared<'r>(&self, regulator: &'r Regulator) -> Option<&'r Regulator> {
+        self.declared_dropout(regulator).is_none().then_some(regulator)
     }
 
     fn declared_dropout(&self, regulator: &Regulator) -> Option<(Vec<DropoutPoint>, Quantity)> {

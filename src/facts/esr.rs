@@ -155,7 +155,7 @@ impl Facts<'_> {
     }
 
     /// The capacitors that dominate the output bank: the largest, with those that are equal to it.
-    fn bulk(&self, regulator: &Regulator) -> Vec<Branch> {
+    pub(super) fn bulk(&self, regulator: &Regulator) -> Vec<Branch> {
         let Some(bank) = self.bank_of(regulator, Side::Output) else { return Vec::new() };
         let farads = |branch: &Branch| {
             self.circuit().device(branch.capacitor).amount.as_ref().map_or(0.0, |amount| amount.amount)
@@ -222,6 +222,9 @@ impl Facts<'_> {
                     declared.evidence(what),
                 )),
             };
+        }
+        if let Some(solved) = self.solved_window_end(regulator, end == End::Low) {
+            return solved;
         }
         let Some((_, demand)) = self.first_family(regulator, |family| family.output_capacitor.as_ref()) else {
             return Value::inapplicable("no data sheet is known");

@@ -35,6 +35,7 @@ mod reference_load;
 mod sequence;
 mod sheet;
 mod shunt;
+mod solved;
 mod startup;
 mod stress;
 mod target;
@@ -81,6 +82,7 @@ pub const DEFINITIONS: &[&[Definition]] = &[
     feedback::DEFINITIONS,
     least_load::DEFINITIONS,
     tied::DEFINITIONS,
+    solved::DEFINITIONS,
 ];
 
 /// The definition of a name for a kind of subject.

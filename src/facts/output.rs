@@ -6,7 +6,7 @@ use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
 use crate::circuit::supply_name;
 use crate::knowledge::{AdjustSide, Sign};
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
-use crate::recognize::{Divider, Mode, Regulator};
+use crate::recognize::{Divider, Mode, Regulator, RegulatorKind};
 
 /// Tolerance of a fixed output whose family states none, and the limits of that guess.
 const OUTPUT_TOLERANCE: (f64, f64) = (0.04, 0.10);
@@ -22,10 +22,10 @@ pub(super) const DEFINITIONS: &[Definition] = &[
         |facts, subject| of(facts, subject, |regulator| Value::Figure(facts.set_point(regulator))),
     ),
     volts("output_voltage", "the output against ground, signed", |facts, subject| {
-        of(facts, subject, |regulator| Value::Figure(facts.output_voltage(regulator)))
+        of(facts, subject, |regulator| Value::Figure(facts.solved_or_set(regulator)))
     }),
     volts("output_magnitude", "the magnitude of the output voltage", |facts, subject| {
-        of(facts, subject, |regulator| Value::Figure(facts.output_voltage(regulator).magnitude()))
+        of(facts, subject, |regulator| Value::Figure(facts.solved_or_set(regulator).magnitude()))
     }),
     volts("held_output", "the magnitude that the output must not fall below", |facts, subject| {
         of(facts, subject, |regulator| Value::Figure(facts.held_output(regulator)))
@@ -50,6 +50,9 @@ impl Facts<'_> {
         if let Some(declared) = part.and_then(|part| part.output_voltage.as_ref()) {
             return declared.quantity(Dimension::VOLTAGE, self.about(regulator, "output voltage"));
         }
+        if let Some(modelled) = self.modelled_set_point(regulator) {
+            return modelled;
+        }
         let magnitude = match (regulator.mode, &regulator.nominal) {
             (Mode::Fixed, _) if regulator.is_built_up() => self.followed_output(regulator),
             (Mode::Fixed, Some(_)) | (Mode::Adjustable, Some(_)) if regulator.divider.is_none() => {
@@ -60,6 +63,16 @@ impl Facts<'_> {
         };
         let magnitude = magnitude.unwrap_or_else(|| self.no_set_point(regulator));
         if regulator.polarity == Sign::Negative { magnitude.negated() } else { magnitude }
+    }
+
+    /// What a shunt reference holds by the model that is declared for it, signed.
+    fn modelled_set_point(&self, regulator: &Regulator) -> Option<Quantity> {
+        let part = self.board().part(&self.part_of(regulator).reference)?;
+        let model = part.model.as_ref().filter(|_| regulator.kind == RegulatorKind::Shunt)?;
+        let volts = model.value.get("BV")?;
+        let held =
+            Quantity::fact(Dimension::VOLTAGE, volts, model.evidence(self.about(regulator, "breakdown voltage")));
+        Some(if regulator.polarity == Sign::Negative { held.negated() } else { held })
     }
 
     fn no_set_point(&self, regulator: &Regulator) -> Quantity {
@@ -263,6 +276,14 @@ impl Facts<'_> {
         Quantity::fact(Dimension::VOLTAGE, Range::with_tolerance(volts, NAME_TOLERANCE), evidence)
     }
 
+    /// The output as its circuit gives it, of built-up regulators, else as it is set.
+    fn solved_or_set(&self, regulator: &Regulator) -> Quantity {
+        let declared =
+            self.board().part(&self.part_of(regulator).reference).is_some_and(|part| part.output_voltage.is_some());
+        let solved = if declared { None } else { self.solved_output(regulator) };
+        solved.unwrap_or_else(|| self.output_voltage(regulator))
+    }
+
     /// The magnitude that the output must hold: a rail that may sag must hold its low end, a fact; else nobody says
     /// how far below its set point it may fall, and the tolerance's high end as a fact would make false errors.
     fn held_output(&self, regulator: &Regulator) -> Quantity {
@@ -280,7 +301,7 @@ impl Facts<'_> {
 
     /// The magnitude of the output that regulates: its nominal value, where within its tolerance is a guess.
     pub(super) fn steady_output(&self, regulator: &Regulator) -> Quantity {
-        let output = self.output_voltage(regulator).magnitude();
+        let output = self.solved_or_set(regulator).magnitude();
         let Some(name) = self.output_name(regulator) else { return output };
         let Some(shown) = output.shown() else { return output };
         let range = Range::clamped(shown.nominal(), shown.nominal(), shown.high());

@@ -115,6 +115,27 @@ pub fn overshoot(quality: f64) -> f64 {
 }
 
 impl Facts<'_> {
+    /// The first fitted diode of some kinds between a net and ground, looked for once: many parts share an input.
+    fn diode_to_ground(&self, net: NetId) -> Option<DeviceId> {
+        if let Some(known) = self.clamps.borrow().get(&net) {
+            return *known;
+        }
+        let circuit = self.circuit();
+        let is_diode = |device: DeviceId| {
+            matches!(circuit.device(device).kind, DeviceKind::Diode | DeviceKind::Schottky | DeviceKind::Zener)
+        };
+        // A clamp is told ahead of a plain diode, which only stops a reversed supply.
+        let mut found: Vec<DeviceId> = circuit
+            .neighbours(net)
+            .filter(|(device, to)| circuit.net(*to).ground && is_diode(*device))
+            .map(|(device, _)| device)
+            .collect();
+        found.sort_by_key(|device| circuit.device(*device).kind != DeviceKind::Zener);
+        let first = found.first().copied();
+        self.clamps.borrow_mut().insert(net, first);
+        first
+    }
+
     fn limit(&self, regulator: &Regulator, key: &'static str, noun: &'static str) -> Value {
         let ask = Ask { key, noun, dimension: Dimension::VOLTAGE, limits: Pair::NOT_NEGATIVE };
         match self.family_figure(regulator, ask) {

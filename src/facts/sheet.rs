@@ -86,7 +86,14 @@ pub const SHEET: &[SheetFigure] = &[
         key: "loop",
         unit: "dB, Hz, Ω",
         meaning: "gain, poles and zeros inside the part, output resistance, where the maker publishes them",
-        used_by: &["has_published_loop", "computed_esr_low", "computed_esr_high"],
+        used_by: &[
+            "has_published_loop",
+            "computed_esr_low",
+            "computed_esr_high",
+            "phase_margin",
+            "modulus_margin",
+            "unity_gain_frequency",
+        ],
         about: About::Series,
     },
     SheetFigure {

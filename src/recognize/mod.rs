@@ -41,8 +41,8 @@ mod zener;
 
 pub use bank::{Side, bank, bank_to};
 pub use built_up::{
-    Amplifier, AmplifierKind, BuiltUp, Duty, Junction, Reference, ReferenceFeed, ReferenceKind, Transistor,
-    transistors,
+    Amplifier, AmplifierKind, BuiltUp, Duty, Junction, OpAmpUnit, Reference, ReferenceFeed, ReferenceKind,
+    Transistor, op_amps, transistors,
 };
 pub use device_match::{DeviceMatch, device_match, device_match_as, kinds_of};
 pub use drawn::{DrawnPin, drawn_pins};

@@ -40,6 +40,9 @@ pub(super) const FACTS: &[&str] = &[
     "junction_temperature",
 ];
 
+/// What a window of ESR can look like.
+const WINDOWS: &[&str] = &["none", "all", "lower", "upper", "two-sided", "split"];
+
 #[derive(Debug, Serialize)]
 struct Result<'a> {
     schema: &'static str,
@@ -153,7 +156,12 @@ fn window(facts: &Facts<'_>, subject: Subject) -> Option<Fact> {
     let (low, high) = (end("esr_low"), end("esr_high"));
     let value = |figure: &Option<Quantity>| figure.as_ref().and_then(Quantity::nominal).and_then(finite);
     let (least, most) = (value(&low).filter(|least| *least > 0.0), value(&high));
+    let solved = match facts.value(subject, "esr_window_kind") {
+        Value::Word(word) => WINDOWS.iter().find(|kind| **kind == word.word).copied(),
+        _ => None,
+    };
     let kind = match (least, most) {
+        _ if solved.is_some() => solved.unwrap_or_default(),
         (Some(_), Some(_)) => "two-sided",
         (Some(_), None) => "lower",
         (None, Some(_)) => "upper",

@@ -23,4 +23,5 @@ mod tests;
 
 pub(super) use find::add;
 pub use model::{Amplifier, AmplifierKind, BuiltUp, Duty, Junction, Reference, ReferenceFeed, ReferenceKind};
+pub use opamp::{OpAmpUnit, op_amps};
 pub use transistor::{Transistor, transistors};

@@ -6,7 +6,7 @@ use crate::circuit::{Circuit, NetId};
 
 use super::super::find::Found;
 use super::super::model::{Regulator, RegulatorKind};
-use super::opamp::{OpAmp, op_amps};
+use super::opamp::{OpAmpUnit, op_amps};
 use super::transistor::{Transistor, transistors};
 
 /// Looked up by net, never gone through in order of a hash.
@@ -16,7 +16,7 @@ pub(super) struct Network<'a> {
     pub(super) transistors: Vec<Transistor>,
     by_collector: HashMap<NetId, Vec<usize>>,
     by_emitter: HashMap<NetId, Vec<usize>>,
-    op_amps: HashMap<NetId, Vec<OpAmp>>,
+    op_amps: HashMap<NetId, Vec<OpAmpUnit>>,
     error_amplifiers: HashMap<NetId, Vec<Regulator>>,
     regulators: HashMap<NetId, Vec<Regulator>>,
 }
@@ -65,7 +65,7 @@ impl<'a> Network<'a> {
         self.by_emitter.get(&net).into_iter().flatten().filter_map(|index| self.transistors.get(*index))
     }
 
-    pub(super) fn op_amps(&self, output: NetId) -> &[OpAmp] {
+    pub(super) fn op_amps(&self, output: NetId) -> &[OpAmpUnit] {
         self.op_amps.get(&output).map_or(&[], Vec::as_slice)
     }
 

@@ -4,11 +4,15 @@ use crate::circuit::{Circuit, DeviceId, DeviceKind, NetId, Pin, PinType};
 
 /// One operational amplifier.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub(super) struct OpAmp {
-    pub(super) device: DeviceId,
-    pub(super) plus: NetId,
-    pub(super) minus: NetId,
-    pub(super) output: NetId,
+pub struct OpAmpUnit {
+    /// Its part.
+    pub device: DeviceId,
+    /// The net of its input +.
+    pub plus: NetId,
+    /// The net of its input −.
+    pub minus: NetId,
+    /// The net of its output.
+    pub output: NetId,
 }
 
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -31,7 +35,8 @@ fn pole(pin: &Pin) -> Option<Pole> {
 
 /// The operational amplifiers of a part: three pins that follow each other by number make one. Comparators switch and
 /// are none.
-pub(super) fn op_amps(circuit: &Circuit, id: DeviceId) -> Vec<OpAmp> {
+#[must_use]
+pub fn op_amps(circuit: &Circuit, id: DeviceId) -> Vec<OpAmpUnit> {
     let device = circuit.device(id);
     let text = format!("{} {} {}", device.part, device.description, device.keywords).to_ascii_lowercase();
     if device.kind != DeviceKind::OpAmp || text.contains("comparator") && !text.contains("operational") {
@@ -45,7 +50,7 @@ pub(super) fn op_amps(circuit: &Circuit, id: DeviceId) -> Vec<OpAmp> {
     pins.sort_by_key(|(number, ..)| *number);
     let unit = |three: &[(u32, Pole, Option<NetId>)]| {
         let on = |wanted: Pole| three.iter().find(|pin| pin.1 == wanted).and_then(|pin| pin.2);
-        Some(OpAmp { device: id, plus: on(Pole::Plus)?, minus: on(Pole::Minus)?, output: on(Pole::Output)? })
+        Some(OpAmpUnit { device: id, plus: on(Pole::Plus)?, minus: on(Pole::Minus)?, output: on(Pole::Output)? })
     };
     pins.chunks_exact(3).filter_map(unit).collect()
 }

@@ -7,7 +7,7 @@ use super::super::model::Divider;
 use super::super::walk::{SAMPLE, chains};
 use super::model::{Reference, ReferenceFeed, ReferenceKind};
 use super::network::Network;
-use super::opamp::OpAmp;
+use super::opamp::OpAmpUnit;
 use super::reference::{holding, rail, string, string_kind};
 use super::supply::is_rail;
 
@@ -113,7 +113,7 @@ fn referenced(network: &Network<'_>, net: NetId, ends: &Ends, above: bool, block
             continue;
         }
         // A follower gives what its input has, whatever resistors lie behind its output.
-        let follows = |one: &&OpAmp| one.minus == at && !blocked.contains(&one.plus) && !nets.contains(&one.plus);
+        let follows = |one: &&OpAmpUnit| one.minus == at && !blocked.contains(&one.plus) && !nets.contains(&one.plus);
         if let Some(follower) = network.op_amps(at).iter().find(follows) {
             share.close(circuit, at, follower.plus);
             nets.truncate(next);

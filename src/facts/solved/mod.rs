@@ -1,0 +1,246 @@
+//! The figures of regulators that are built up from single parts, solved as circuits.
+
+mod breaking;
+mod figures;
+mod models;
+mod parts;
+mod place;
+mod recipe;
+mod rest;
+mod stability;
+mod start;
+
+use std::rc::Rc;
+
+use super::{Facts, Flag, Value};
+use crate::board::SettingValue;
+use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, read_amount};
+use crate::recognize::{BuiltUp, ReferenceFeed, Regulator};
+use crate::solve::{Goal, SolveError, Window, WindowKind};
+
+pub(in crate::facts) use figures::DEFINITIONS;
+use parts::not_solved;
+pub(in crate::facts) use recipe::Recipe;
+use start::Decides;
+pub(in crate::facts) use start::Start;
+
+/// The phase margin for which a window of ESR is stated, in degrees, where no setting says another.
+const PHASE_GOAL: f64 = 45.0;
+/// The least and the largest ESR that stand for a window without any in it, and without an upper end, in ohms.
+const NOWHERE: f64 = 30.0;
+
+impl Facts<'_> {
+    /// How a regulator is built up, where it is one of its own.
+    fn own_circuit<'r>(&self, regulator: &'r Regulator) -> Option<&'r BuiltUp> {
+        regulator.built_up.as_deref().filter(|built| !built.outboard)
+    }
+
+    /// The circuit of a built-up regulator, made once; `None` for any other part.
+    fn circuit_of(&self, regulator: &Regulator) -> Option<Rc<Result<Recipe, Box<Evidence>>>> {
+        let built = self.own_circuit(regulator)?;
+        Some(self.recipe_once(regulator.device, || self.recipe(regulator, built)))
+    }
+
+    /// A figure that the circuit gives; what is missing for it is told.
+    pub(super) fn solved_figure(
+        &self,
+        regulator: &Regulator,
+        noun: &str,
+        dimension: Dimension,
+        solve: impl FnOnce(&Recipe) -> Result<Option<Quantity>, SolveError>,
+    ) -> Value {
+        let Some(recipe) = self.circuit_of(regulator) else {
+            return Value::inapplicable("not built up from single parts");
+        };
+        let missing = |evidence| Value::Figure(Quantity::missing(dimension, limits(dimension), evidence));
+        match &*recipe {
+            Err(evidence) => missing((**evidence).clone()),
+            Ok(recipe) => match solve(recipe) {
+                Ok(Some(figure)) => Value::Figure(figure),
+                Ok(None) => Value::inapplicable("there is no such loop"),
+                Err(error) => missing(not_solved(self, regulator, noun, error.to_string())),
+            },
+        }
+    }
+
+    /// The output of a built-up regulator as solved, signed.
+    pub(super) fn solved_output(&self, regulator: &Regulator) -> Option<Quantity> {
+        let found = self.solved_figure(regulator, "output voltage", Dimension::VOLTAGE, |recipe| {
+            recipe.output_voltage().map(Some)
+        });
+        found.figure().filter(|figure| !figure.is_missing()).cloned()
+    }
+
+    /// The dropout of a built-up regulator: at a load in amperes, or at its own load.
+    pub(super) fn solved_dropout(&self, regulator: &Regulator, load: Option<f64>) -> Option<Value> {
+        self.own_circuit(regulator)?;
+        let noun = if load.is_some() { "dropout at light load" } else { "dropout" };
+        Some(self.solved_figure(regulator, noun, Dimension::VOLTAGE, |recipe| recipe.dropout(load).map(Some)))
+    }
+
+    /// The whole range of the input, volts.
+    fn whole_input(&self, regulator: &Regulator) -> (f64, f64) {
+        let input = self.input_voltage(regulator).worst();
+        (input.low(), input.high())
+    }
+
+    /// A tenth around the nominal input, within its range, volts.
+    fn tenth_of_input(&self, regulator: &Regulator) -> (f64, f64) {
+        let input = self.input_voltage(regulator);
+        let nominal = input.nominal().unwrap_or(f64::NAN);
+        let (one, other) = (nominal * 0.9, nominal * 1.1);
+        (one.min(other).max(input.worst().low()), one.max(other).min(input.worst().high()))
+    }
+
+    fn line_change(&self, regulator: &Regulator, ends: fn(&Self, &Regulator) -> (f64, f64)) -> Value {
+        let (low, high) = ends(self, regulator);
+        if self.own_circuit(regulator).is_some() && !(low.is_finite() && high.is_finite()) {
+            return Value::inapplicable("the range of the input is not known");
+        }
+        self.solved_figure(regulator, "line change", Dimension::VOLTAGE, |recipe| {
+            recipe.change_between(low, high).map(Some)
+        })
+    }
+
+    fn operating_points(&self, regulator: &Regulator) -> Value {
+        self.solved_figure(regulator, "operating points", Dimension::ONE, |recipe| {
+            let [nominal, declared, all] =
+                recipe.count()?.map(|count| u32::try_from(count).map_or(f64::NAN, f64::from));
+            let grade = if all > declared { Grade::Assumed } else { Grade::Drawn };
+            let evidence =
+                Evidence::new(grade, self.about(regulator, "operating points"), "every one that was found");
+            let range = Range::clamped(nominal.min(declared), declared, all);
+            let figure = Quantity::given(Dimension::ONE, range, Pair::NOT_NEGATIVE, evidence);
+            Ok(Some(recipe.rests.iter().fold(figure, |figure, one| figure.also_resting_on(one))))
+        })
+    }
+
+    /// What was found about its start, once.
+    fn start_of(&self, regulator: &Regulator) -> Result<Rc<Start>, Value> {
+        let Some(recipe) = self.circuit_of(regulator) else {
+            return Err(Value::inapplicable("not built up from single parts"));
+        };
+        let recipe = match &*recipe {
+            Ok(recipe) => recipe,
+            Err(evidence) => return Err(Value::inapplicable(format!("{}: {}", evidence.what, evidence.source))),
+        };
+        let built = self.own_circuit(regulator);
+        let references: Vec<String> = built
+            .into_iter()
+            .flat_map(|built| &built.reference.devices)
+            .map(|device| self.circuit().device(*device).reference.clone())
+            .collect();
+        let bootstrapped = built.is_some_and(|built| built.feed == Some(ReferenceFeed::Output));
+        let found = self.start_once(regulator.device, || {
+            let (path, leaks) = if bootstrapped { recipe.lifting(&references) } else { (Vec::new(), Vec::new()) };
+            recipe.start(&path, &leaks)
+        });
+        found.map_err(|error| Value::inapplicable(error.to_string()))
+    }
+
+    fn starts(&self, regulator: &Regulator) -> Value {
+        let start = match self.start_of(regulator) {
+            Ok(start) => start,
+            Err(why) => return why,
+        };
+        let recipe = self.circuit_of(regulator);
+        let Some(Ok(recipe)) = recipe.as_deref() else { return Value::inapplicable("its circuit is not whole") };
+        let ends = recipe.parameters.iter().take(2).map(|one| &one.quantity);
+        let grades = recipe.rests.iter().chain(ends).filter_map(Quantity::grade);
+        let grade = grades.fold(if start.guessed { Grade::Assumed } else { Grade::Drawn }, Grade::weaker);
+        let source = match (start.starts, start.decides) {
+            (true, Decides::Nothing) => "one operating point, which regulates".to_owned(),
+            (true, decides) => format!("solved operating points; {} decides", decides.words()),
+            (false, decides) => format!("a solved state that does not regulate; {} decides", decides.words()),
+        };
+        let mut evidence = Evidence::new(grade, self.about(regulator, "start"), source);
+        if !grade.is_fact()
+            && let Some(settle) =
+                recipe.rests.iter().chain(recipe.offsets().map(|(_, offset)| offset)).find_map(|one| {
+                    one.evidence()
+                        .find(|evidence| !evidence.grade.is_fact())
+                        .and_then(|evidence| evidence.settle.clone())
+                })
+        {
+            evidence = evidence.settled_by(settle);
+        }
+        Value::Flag(Flag { holds: start.starts, evidence: Some(evidence) })
+    }
+
+    fn of_start(
+        &self,
+        regulator: &Regulator,
+        dimension: Dimension,
+        noun: &str,
+        pick: fn(&Start) -> Option<f64>,
+    ) -> Value {
+        let start = match self.start_of(regulator) {
+            Ok(start) => start,
+            Err(why) => return why,
+        };
+        let Some(value) = pick(&start) else { return Value::inapplicable("it starts") };
+        let evidence =
+            Evidence::new(Grade::Drawn, self.about(regulator, noun), "solved in the state that does not start");
+        Value::Figure(Quantity::fact(dimension, Range::exactly(value), evidence))
+    }
+
+    /// What the margins of a loop should be.
+    fn margin_goal(&self) -> Goal {
+        let setting = self.board().settings.get("phase-margin").and_then(|settings| settings.get("goal"));
+        let text = setting.and_then(|declared| match &declared.value {
+            SettingValue::Text(text) => read_amount(text, Dimension::ANGLE).ok(),
+            _ => None,
+        });
+        let phase = text.unwrap_or(PHASE_GOAL);
+        Goal { phase, modulus: 0.0 }
+    }
+
+    /// The window of the bulk capacitor's ESR at nominal values.
+    fn solved_window(&self, regulator: &Regulator) -> Result<Window, Value> {
+        let Some(recipe) = self.circuit_of(regulator) else {
+            return Err(Value::inapplicable("not built up from single parts"));
+        };
+        match &*recipe {
+            Ok(recipe) if recipe.has_loop() => match recipe.window(&self.margin_goal()) {
+                Ok(Some(window)) => Ok(window),
+                Ok(None) => Err(Value::inapplicable("no output capacitor")),
+                Err(error) => Err(Value::inapplicable(error.to_string())),
+            },
+            Ok(_) => Err(Value::inapplicable("there is no such loop")),
+            Err(evidence) => Err(Value::inapplicable(format!("{}: {}", evidence.what, evidence.source))),
+        }
+    }
+
+    /// The end of the solved window; `None` for a part that is not built up.
+    pub(super) fn solved_window_end(&self, regulator: &Regulator, low: bool) -> Option<Value> {
+        self.own_circuit(regulator)?;
+        let window = match self.solved_window(regulator) {
+            Ok(window) => window,
+            Err(why) => return Some(why),
+        };
+        let end = if low { window.low() } else { window.high() };
+        if end.is_none() {
+            return Some(Value::inapplicable("no bound"));
+        }
+        let goal = self.margin_goal();
+        let noun = if low { "least ESR" } else { "largest ESR" };
+        Some(self.solved_figure(regulator, noun, Dimension::RESISTANCE, |recipe| {
+            let found = if low { recipe.window_edge(&goal, low_edge) } else { recipe.window_edge(&goal, high_edge) };
+            found.map(Some)
+        }))
+    }
+}
+
+/// The least ESR that will do; where none will, more than any capacitor has.
+fn low_edge(window: &Window) -> f64 {
+    if window.kind == WindowKind::None { NOWHERE } else { window.low().unwrap_or(0.0) }
+}
+
+/// The largest ESR that will do.
+fn high_edge(window: &Window) -> f64 {
+    if window.kind == WindowKind::None { 0.0 } else { window.high().unwrap_or(NOWHERE) }
+}
+
+fn limits(dimension: Dimension) -> Pair {
+    if dimension == Dimension::ANGLE { Pair::ANY } else { Pair::NOT_NEGATIVE }
+}

@@ -56,7 +56,7 @@ pub(in crate::facts) const DEFINITIONS: &[Definition] = &[
         compute: |facts, s| {
             of(facts, s, |regulator| match facts.start_of(regulator) {
                 Ok(start) => Value::word(start.decides.name()),
-                Err(why) => why,
+                Err(why) => Value::inapplicable(why),
             })
         },
     },
@@ -95,7 +95,7 @@ pub(in crate::facts) const DEFINITIONS: &[Definition] = &[
         compute: |facts, s| {
             of(facts, s, |regulator| match facts.solved_window(regulator) {
                 Ok(window) => Value::word(kind_name(window.kind)),
-                Err(why) => why,
+                Err(why) => Value::inapplicable(why),
             })
         },
     },

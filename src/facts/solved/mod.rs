@@ -116,13 +116,13 @@ impl Facts<'_> {
     }
 
     /// What was found about its start, once.
-    fn start_of(&self, regulator: &Regulator) -> Result<Rc<Start>, Value> {
+    fn start_of(&self, regulator: &Regulator) -> Result<Rc<Start>, String> {
         let Some(recipe) = self.circuit_of(regulator) else {
-            return Err(Value::inapplicable("not built up from single parts"));
+            return Err("not built up from single parts".to_owned());
         };
         let recipe = match &*recipe {
             Ok(recipe) => recipe,
-            Err(evidence) => return Err(Value::inapplicable(format!("{}: {}", evidence.what, evidence.source))),
+            Err(evidence) => return Err(format!("{}: {}", evidence.what, evidence.source)),
         };
         let built = self.own_circuit(regulator);
         let references: Vec<String> = built
@@ -135,13 +135,13 @@ impl Facts<'_> {
             let (path, leaks) = if bootstrapped { recipe.lifting(&references) } else { (Vec::new(), Vec::new()) };
             recipe.start(&path, &leaks)
         });
-        found.map_err(|error| Value::inapplicable(error.to_string()))
+        found.map_err(|error| error.to_string())
     }
 
     fn starts(&self, regulator: &Regulator) -> Value {
         let start = match self.start_of(regulator) {
             Ok(start) => start,
-            Err(why) => return why,
+            Err(why) => return Value::inapplicable(why),
         };
         let recipe = self.circuit_of(regulator);
         let Some(Ok(recipe)) = recipe.as_deref() else { return Value::inapplicable("its circuit is not whole") };
@@ -176,7 +176,7 @@ impl Facts<'_> {
     ) -> Value {
         let start = match self.start_of(regulator) {
             Ok(start) => start,
-            Err(why) => return why,
+            Err(why) => return Value::inapplicable(why),
         };
         let Some(value) = pick(&start) else { return Value::inapplicable("it starts") };
         let evidence =
@@ -196,18 +196,18 @@ impl Facts<'_> {
     }
 
     /// The window of the bulk capacitor's ESR at nominal values.
-    fn solved_window(&self, regulator: &Regulator) -> Result<Window, Value> {
+    fn solved_window(&self, regulator: &Regulator) -> Result<Window, String> {
         let Some(recipe) = self.circuit_of(regulator) else {
-            return Err(Value::inapplicable("not built up from single parts"));
+            return Err("not built up from single parts".to_owned());
         };
         match &*recipe {
             Ok(recipe) if recipe.has_loop() => match recipe.window(&self.margin_goal()) {
                 Ok(Some(window)) => Ok(window),
-                Ok(None) => Err(Value::inapplicable("no output capacitor")),
-                Err(error) => Err(Value::inapplicable(error.to_string())),
+                Ok(None) => Err("no output capacitor".to_owned()),
+                Err(error) => Err(error.to_string()),
             },
-            Ok(_) => Err(Value::inapplicable("there is no such loop")),
-            Err(evidence) => Err(Value::inapplicable(format!("{}: {}", evidence.what, evidence.source))),
+            Ok(_) => Err("there is no such loop".to_owned()),
+            Err(evidence) => Err(format!("{}: {}", evidence.what, evidence.source)),
         }
     }
 
@@ -216,7 +216,7 @@ impl Facts<'_> {
         self.own_circuit(regulator)?;
         let window = match self.solved_window(regulator) {
             Ok(window) => window,
-            Err(why) => return Some(why),
+            Err(why) => return Some(Value::inapplicable(why)),
         };
         let end = if low { window.low() } else { window.high() };
         if end.is_none() {

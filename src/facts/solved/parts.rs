@@ -58,7 +58,7 @@ impl Draft<'_, '_> {
         let amplifies = self.built.amplifier.as_ref().is_some_and(|amplifier| amplifier.devices.contains(&device));
         let reference = self.facts.circuit().device(device).reference.clone();
         let Some(output) = packaged.output_net else { return Ok(()) };
-        let ground = packaged.ground_net.map_or(None, |net| self.place(net));
+        let ground = packaged.ground_net.and_then(|net| self.place(net));
         let output = self.place(output);
         match packaged.kind {
             RegulatorKind::Shunt if !amplifies => {
@@ -174,8 +174,7 @@ impl Draft<'_, '_> {
         while let Some(at) = waiting.iter().position(|unit| output == Some(unit.output) || self.has(unit.output)) {
             let unit = waiting.remove(at);
             let [upper, lower] = self.supply_pins(unit.device);
-            let nodes =
-                vec![self.place(unit.plus), self.place(unit.minus), upper, lower, self.place(unit.output)];
+            let nodes = vec![self.place(unit.plus), self.place(unit.minus), upper, lower, self.place(unit.output)];
             self.add_model(unit.device, ModelKind::OpAmp, nodes, None)?;
         }
         Ok(())

@@ -4,6 +4,8 @@ use super::{Dimension, Pair, Quantity};
 
 /// The share of a figure's own size below which an input does not move it.
 const STILL: f64 = 1e-7;
+/// The share of a figure's range below which what an input does to it is not told.
+const MINUTE: f64 = 1e-3;
 /// An input over which a figure is looked at between its ends too: its high end over its low one.
 const WIDE: f64 = 2.0;
 /// Of how many inputs, those that move the figure most, the joint ends are tried once more, one by one.
@@ -98,8 +100,9 @@ impl Quantity {
         // What fails whatever the guesses are fails with likely ones, though a course may bend beyond its range.
         let kind = explorer.kind()?;
         figure.kind = Pair::kind(kind.low().max(figure.likely.low()), kind.high().min(figure.likely.high()));
+        let told = MINUTE * explorer.courses.iter().map(|course| course.swing).fold(0.0, f64::max);
         for (input, course) in inputs.iter().zip(&explorer.courses) {
-            figure.take_over(input, course.swing);
+            figure.take_over(input, if course.swing > told { course.swing } else { 0.0 });
         }
         Ok(figure)
     }

@@ -18,6 +18,7 @@ fn series() -> Board {
         .u1("output_net", Value::word("+3V3"))
         .u1("ground_net", Value::word("GND"))
         .u1("reference_from_own_output", Value::flag(false))
+        .u1("window_is_solved", Value::flag(false))
 }
 
 fn run(board: &Board) -> Judgement {

@@ -1,7 +1,9 @@
 //! The figures of regulators that are built up from single parts, solved as circuits.
 
 mod breaking;
+mod darlington;
 mod figures;
+mod memory;
 mod models;
 mod parts;
 mod place;

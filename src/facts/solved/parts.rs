@@ -151,8 +151,12 @@ impl Draft<'_, '_> {
                 (false, false) => ModelKind::Pmos,
             };
             // Collector, base, emitter; drain, gate, source.
-            let nodes = [one.collector, one.control, one.emitter].map(|net| self.place(net)).to_vec();
-            self.add_model(device, kind, nodes, None)?;
+            let nodes = [one.collector, one.control, one.emitter].map(|net| self.place(net));
+            if one.darlington && self.facts.declared_model(device, kind).is_none() {
+                self.add_darlington(device, kind, nodes)?;
+            } else {
+                self.add_model(device, kind, nodes.to_vec(), None)?;
+            }
         }
         Ok(())
     }

@@ -3,6 +3,7 @@
 use std::collections::BTreeMap;
 
 use super::super::{Facts, RailOrigin};
+use super::memory::Memory;
 use super::models::is_dynamic;
 use super::recipe::{At, BankSlots, Draw, Element, Kind, Parameter, Recipe, Slot};
 use crate::board::{LoadKind, ModelKind};
@@ -54,6 +55,7 @@ impl Facts<'_> {
             negative: regulator.polarity == Sign::Negative,
             wanted: self.output_voltage(regulator).nominal().map_or(f64::NAN, f64::abs),
             rise: self.rise_of(input_net),
+            memory: Memory::default(),
         };
         let mut draft = Draft { facts: self, built, recipe, places: BTreeMap::new() };
         draft.recipe.input = draft.place(input_net).unwrap_or_default();

@@ -2,6 +2,7 @@
 
 use std::sync::Arc;
 
+use super::memory::Memory;
 use crate::board::DeviceModel;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range};
 use crate::solve::{
@@ -101,6 +102,7 @@ pub(in crate::facts) struct Recipe {
     pub(super) wanted: f64,
     /// Seconds in which the input rises, the shortest and the longest.
     pub(super) rise: (f64, f64),
+    pub(super) memory: Memory,
 }
 
 /// What is changed about the circuit to see what decides.

@@ -45,41 +45,55 @@ impl Recipe {
         Search { node, from: low.min(high), to: low.max(high) }
     }
 
+    /// The solution for a set of values, beside the one at nominal values.
+    pub(super) fn solution(&self, values: &[f64]) -> Result<Solution, SolveError> {
+        // Capacitances and bandwidths say nothing of it.
+        let still: Vec<f64> = self
+            .slots()
+            .zip(values)
+            .map(|((_, one), value)| if one.dynamic { one.quantity.nominal().unwrap_or(*value) } else { *value })
+            .collect();
+        self.memory.rest.once(&still, || {
+            let made = self.make(&still, View::Bare, &Change::default())?;
+            self.live(&made, &still, Some(&self.middle()?))
+        })
+    }
+
     /// The output in volts, signed.
-    fn output(&self, values: &[f64], near: Option<&Solution>) -> Result<f64, SolveError> {
+    fn output(&self, values: &[f64]) -> Result<f64, SolveError> {
         let made = self.make(values, View::Bare, &Change::default())?;
-        Ok(self.live(&made, values, near)?.voltage(made.output))
+        Ok(self.solution(values)?.voltage(made.output))
     }
 
     /// The solution at nominal values, beside which others lie.
     pub(super) fn middle(&self) -> Result<Solution, SolveError> {
-        let values = self.nominals();
-        self.live(&self.make(&values, View::Bare, &Change::default())?, &values, None)
+        let find = || {
+            let values = self.nominals();
+            self.live(&self.make(&values, View::Bare, &Change::default())?, &values, None)
+        };
+        self.memory.middle.get_or_init(find).clone()
     }
 
     /// The output at nominal input and load.
     pub(super) fn output_voltage(&self) -> Result<Quantity, SolveError> {
-        let middle = self.middle()?;
-        self.explore(Dimension::VOLTAGE, at_rest, |values| self.output(values, Some(&middle)))
+        self.explore(Dimension::VOLTAGE, at_rest, |values| self.output(values))
     }
 
     /// The dropout at a load in amperes, or at the load that the values tell.
     pub(super) fn dropout(&self, load: Option<f64>) -> Result<Quantity, SolveError> {
-        let middle = self.middle()?;
         let moves = |slot, one: &Parameter| at_rest(slot, one) || (slot == LOAD && load.is_none());
         self.explore(Dimension::VOLTAGE, moves, |values| {
             let values = load.map_or_else(|| values.to_vec(), |load| Self::with(values, LOAD, load));
             let made = self.make(&values, View::Bare, &Change::default())?;
-            let start = self.live(&made, &values, Some(&middle))?;
+            let start = self.solution(&values)?;
             Ok(dropout(&made.circuit, made.input, made.output, Some(&start))?.across.max(0.0))
         })
     }
 
     /// By how much the output moves while the input goes from one voltage to another, both in volts.
     pub(super) fn change_between(&self, low: f64, high: f64) -> Result<Quantity, SolveError> {
-        let middle = self.middle()?;
         self.explore(Dimension::VOLTAGE, at_rest, |values| {
-            let at = |volts: f64| self.output(&Self::with(values, INPUT, volts), Some(&middle));
+            let at = |volts: f64| self.output(&Self::with(values, INPUT, volts));
             Ok((at(high)? - at(low)?).abs())
         })
     }

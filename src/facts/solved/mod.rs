@@ -2,6 +2,7 @@
 
 mod breaking;
 mod darlington;
+mod exploring;
 mod figures;
 mod memory;
 mod models;
@@ -26,6 +27,8 @@ pub(in crate::facts) use recipe::Recipe;
 use start::Decides;
 pub(in crate::facts) use start::Start;
 
+/// Most circuits that are solved of one board: each takes up to seconds.
+const MOST_CIRCUITS: usize = 200;
 /// The phase margin for which a window of ESR is stated, in degrees, where no setting says another.
 const PHASE_GOAL: f64 = 45.0;
 /// The least and the largest ESR that stand for a window without any in it, and without an upper end, in ohms.
@@ -40,7 +43,16 @@ impl Facts<'_> {
     /// The circuit of a built-up regulator, made once; `None` for any other part.
     fn circuit_of(&self, regulator: &Regulator) -> Option<Rc<Result<Recipe, Box<Evidence>>>> {
         let built = self.own_circuit(regulator)?;
-        Some(self.recipe_once(regulator.device, || self.recipe(regulator, built)))
+        Some(self.recipe_once(regulator.device, || {
+            let before = self.design().regulators.iter().take_while(|one| !std::ptr::eq(*one, regulator));
+            if before.filter(|one| self.own_circuit(one).is_some()).count() >= MOST_CIRCUITS {
+                let why = format!(
+                    "the board has more than {MOST_CIRCUITS} built-up regulators, of which no more are solved"
+                );
+                return Err(Box::new(Evidence::new(Grade::Assumed, self.about(regulator, "circuit"), why)));
+            }
+            self.recipe(regulator, built)
+        }))
     }
 
     /// A figure that the circuit gives; what is missing for it is told.

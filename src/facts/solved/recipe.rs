@@ -4,7 +4,7 @@ use std::sync::Arc;
 
 use super::memory::Memory;
 use crate::board::DeviceModel;
-use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range};
+use crate::quantity::Quantity;
 use crate::solve::{
     Bank, Bipolar, Capacitor, Circuit, CurrentSource, Device, DeviceId, GROUND, Node, OpAmp, Polarity, Resistor,
     SeriesRc, SolveError, VoltageSource, from_model,
@@ -175,58 +175,6 @@ impl Recipe {
     pub(super) fn offsets(&self) -> impl Iterator<Item = (Slot, &Quantity)> {
         let all = self.parameters.iter().enumerate();
         all.filter(|(_, one)| one.offset).map(|(place, one)| (Slot(place), &one.quantity))
-    }
-
-    /// A figure that the circuit gives, over the ranges of the parameters that are asked for; the others are held at
-    /// their nominal values.
-    ///
-    /// # Errors
-    /// Where the circuit cannot be solved somewhere in those ranges.
-    pub(super) fn explore(
-        &self,
-        dimension: Dimension,
-        moves: impl Fn(Slot, &Parameter) -> bool,
-        mut formula: impl FnMut(&[f64]) -> Result<f64, SolveError>,
-    ) -> Result<Quantity, SolveError> {
-        let held: Vec<Quantity> = self
-            .parameters
-            .iter()
-            .enumerate()
-            .map(|(place, one)| match (moves(Slot(place), one), one.quantity.nominal()) {
-                (false, Some(nominal)) => Quantity::constant(one.quantity.dimension(), nominal),
-                _ => one.quantity.clone(),
-            })
-            .collect();
-        let inputs: Vec<&Quantity> = held.iter().collect();
-        let nominals = self.nominals();
-        let middle = formula(&nominals)?;
-        let mut left_out = false;
-        let figure = Quantity::explored(dimension, &inputs, |values| match formula(values) {
-            Err(error) if values == nominals || !self.is_far_guess(values, &nominals) => Err(error),
-            Err(_) => {
-                left_out = true;
-                Ok(middle)
-            }
-            found => found,
-        })?;
-        let ends = self.parameters.iter().take(2).map(|one| &one.quantity);
-        let left_out = left_out.then(|| {
-            let what = format!("ends of guesses at which the circuit of {} does not settle", self.name);
-            let evidence = Evidence::new(Grade::Assumed, what, "left out");
-            Quantity::given(Dimension::ONE, Range::exactly(0.0), Pair::ANY, evidence)
-        });
-        let rests = self.rests.iter().chain(ends).chain(&left_out);
-        Ok(rests.fold(figure, |figure, one| figure.also_resting_on(one)))
-    }
-
-    /// Whether among the values that are not nominal there is a guess without limits: such ends may lie where no circuit
-    /// works, and say nothing of this one.
-    fn is_far_guess(&self, values: &[f64], nominals: &[f64]) -> bool {
-        let moved =
-            self.parameters.iter().zip(values.iter().zip(nominals)).filter(|(_, (own, nominal))| own != nominal);
-        moved
-            .map(|(one, _)| &one.quantity)
-            .any(|one| one.kind().low().is_infinite() && one.guesses().next().is_some())
     }
 
     /// The circuit for a set of values.

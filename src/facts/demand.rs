@@ -294,6 +294,8 @@ impl Facts<'_> {
         });
         let word = match self.demand(regulator, side).map(|(_, demand)| demand.kind) {
             _ if declared => "required",
+            // No sheet asks for any; what its loop needs at the output is solved.
+            _ if regulator.is_built_up() => "optional",
             Some(MinimumKind::Required) => "required",
             Some(MinimumKind::Recommended) => "recommended",
             Some(MinimumKind::Optional) => "optional",

@@ -146,8 +146,8 @@ impl Facts<'_> {
             .collect();
         let bootstrapped = built.is_some_and(|built| built.feed == Some(ReferenceFeed::Output));
         let found = self.start_once(regulator.device, || {
-            let (path, leaks) = if bootstrapped { recipe.lifting(&references) } else { (Vec::new(), Vec::new()) };
-            recipe.start(&path, &leaks)
+            let lifting = bootstrapped.then(|| recipe.lifting(&references));
+            recipe.start(lifting.as_ref())
         });
         found.map_err(|error| error.to_string())
     }

@@ -63,6 +63,13 @@ impl Decides {
     }
 }
 
+/// The parts that can lift a circuit out of a dead state, by name.
+#[derive(Debug, Default)]
+pub(super) struct Lifting {
+    path: Vec<String>,
+    leaks: Vec<String>,
+}
+
 /// One case: values, and how long the input takes to rise, in seconds.
 #[derive(Debug, Clone)]
 struct Case {
@@ -185,8 +192,9 @@ impl Recipe {
         Ok(self.ramped(case, change)?.abs() >= up)
     }
 
-    /// Whether it starts over all cases, and what decides it.
-    pub(super) fn start(&self, path: &[String], leaks: &[String]) -> Result<Start, SolveError> {
+    /// Whether it starts over all cases, and what decides it. Only a circuit that feeds itself can owe its start to
+    /// `lifting` parts: those on a way from the input to the reference, and those across the pass transistor, by name.
+    pub(super) fn start(&self, lifting: Option<&Lifting>) -> Result<Start, SolveError> {
         let cases = self.cases();
         let (declared, guessed): (Vec<&Case>, Vec<&Case>) = cases.iter().partition(|case| !case.guessed);
         for case in declared.into_iter().chain(guessed) {
@@ -194,7 +202,10 @@ impl Recipe {
                 return self.dead(case, &cases);
             }
         }
-        let decides = self.lifted(&cases, path, leaks)?;
+        let decides = match lifting {
+            Some(parts) => self.lifted(&cases, parts)?,
+            None => Decides::Nothing,
+        };
         Ok(Start { starts: true, guessed: false, decides, dead: None, threshold: None, current: None })
     }
 
@@ -240,9 +251,9 @@ impl Recipe {
     }
 
     /// What lifts a circuit that starts out of a dead state: without it there is one.
-    fn lifted(&self, cases: &[Case], path: &[String], leaks: &[String]) -> Result<Decides, SolveError> {
-        for (names, decides) in [(path, Decides::Path), (leaks, Decides::Leak)] {
-            let without = Change { without: names.to_vec(), top: None };
+    fn lifted(&self, cases: &[Case], parts: &Lifting) -> Result<Decides, SolveError> {
+        for (names, decides) in [(&parts.path, Decides::Path), (&parts.leaks, Decides::Leak)] {
+            let without = Change { without: names.clone(), top: None };
             if !names.is_empty() && !self.all_come_up(cases, &without)? {
                 return Ok(decides);
             }
@@ -291,7 +302,7 @@ impl Recipe {
 
     /// The parts that lead from the input to the reference, and those that lead from it to the output, beside the pass
     /// transistor and the amplifier: by name.
-    pub(super) fn lifting(&self, reference_parts: &[String]) -> (Vec<String>, Vec<String>) {
+    pub(super) fn lifting(&self, reference_parts: &[String]) -> Lifting {
         let (input, output) = (Some(self.input), Some(self.output));
         let passive = |element: &&Element| {
             let two = element.nodes.len() == 2 && !matches!(element.kind, Kind::Source(_) | Kind::Break | Kind::Link);
@@ -322,7 +333,7 @@ impl Recipe {
             }
         }
         let path = if reached.contains(&input) { names(chain) } else { Vec::new() };
-        (path, names(leaks))
+        Lifting { path, leaks: names(leaks) }
     }
 }
 

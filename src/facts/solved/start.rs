@@ -259,7 +259,7 @@ impl Recipe {
             }
         }
         let turned_off = Change { without: Vec::new(), top: Some(NO_ROOM) };
-        if self.offsets().next().is_some() && !self.all_come_up(cases, &turned_off)? {
+        if !self.all_come_up(cases, &turned_off)? {
             return Ok(Decides::Headroom);
         }
         Ok(Decides::Nothing)

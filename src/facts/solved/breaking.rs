@@ -3,10 +3,9 @@
 use super::place::Draft;
 use super::recipe::{At, Element, Kind};
 use crate::circuit::NetId;
-use crate::recognize::{Amplifier, AmplifierKind, Duty, Transistor, transistors};
+use crate::recognize::{AmplifierKind, Duty, Transistor, transistors};
 
 /// Where an element's terminals stand among its nodes: collector, base, emitter.
-const COLLECTOR: usize = 0;
 const CONTROL: usize = 1;
 /// The output of an operational amplifier.
 const OUTPUT: usize = 4;
@@ -23,12 +22,8 @@ impl Draft<'_, '_> {
                 place == OUTPUT && element.nodes.len() > OUTPUT && names.contains(&element.name)
             }),
             AmplifierKind::Shunt => self.move_ends(at, driver, |element, _| names.contains(&element.name)),
-            AmplifierKind::Transistor | AmplifierKind::Pair if self.is_shared(&amplifier, at) => {
-                // Two ways lead to the output, as with a current mirror: the break lies behind both.
-                return self.break_behind(amplifier.output, at, driver);
-            }
             AmplifierKind::Transistor | AmplifierKind::Pair => {
-                self.move_ends(at, driver, |element, place| place == COLLECTOR && names.contains(&element.name))
+                return self.break_behind(amplifier.output, at, driver);
             }
         };
         if moved {
@@ -60,19 +55,6 @@ impl Draft<'_, '_> {
             }
         }
         moved
-    }
-
-    /// Whether another transistor's collector lies where the amplifier's does.
-    fn is_shared(&self, amplifier: &Amplifier, at: usize) -> bool {
-        let own: Vec<String> = amplifier.devices.iter().map(|device| self.name(*device)).collect();
-        let passes: Vec<String> = self.built.pass.iter().map(|device| self.name(*device)).collect();
-        let is_collector = |element: &Element| {
-            matches!(element.kind, Kind::Model { .. })
-                && element.nodes.len() == 3
-                && element.nodes.get(COLLECTOR) == Some(&Some(at))
-        };
-        let others = self.recipe.elements.iter().filter(|element| is_collector(element));
-        others.filter(|element| !passes.contains(&element.name)).any(|element| !own.contains(&element.name))
     }
 
     /// Breaks the way from the amplifier's output to the next stage's control terminal, or to a resistor that leads there.

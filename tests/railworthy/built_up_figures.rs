@@ -2,12 +2,13 @@
 //! (ngspice). `built_up/README.md` holds the conventions.
 
 use std::path::{Path, PathBuf};
+use std::sync::LazyLock;
 
 use num_complex::Complex64;
 use railworthy::knowledge::Knowledge;
 
 use crate::built_up_regulators::told_of;
-use crate::rails_figures::{Row, facts, rows};
+use crate::rails_figures::{Facts, Row, all_facts, faults, rows};
 use crate::simulator::{is_installed, run_deck, table};
 
 fn folder() -> PathBuf {
@@ -18,6 +19,9 @@ fn expected() -> Vec<Row> {
     rows(&folder().join("expected.tsv"))
 }
 
+/// What the program says of every case.
+static FACTS: LazyLock<Facts> = LazyLock::new(|| all_facts(&folder().join("nets"), &expected()));
+
 #[test]
 fn each_circuit_is_recognized() {
     let knowledge = Knowledge::built_in();
@@ -27,6 +31,7 @@ fn each_circuit_is_recognized() {
         ("sziklai_op", format!("Q1+Q2 npn-follower-complementary {raw}+9V, op-amp, shunt reference from input")),
         ("level_op", format!("Q1 pnp {raw}+10V, op-amp, shunt reference from input")),
         ("pair_pnp", format!("Q1 pnp {raw}+10V, transistor pair, zener diode from input")),
+        ("pair_npn", format!("Q1+Q4 npn-follower-darlington {raw}+5V, transistor pair, shunt reference from input")),
         ("pair_mirror", format!("Q1 pnp {raw}+12V, transistor pair, zener diode from input")),
         ("single_zener", format!("Q1 npn-follower {raw}+12V, single transistor, zener diode from output")),
         ("single_be", format!("Q1 npn-follower {raw}+5V, single transistor, base-emitter drop from internal")),
@@ -41,6 +46,7 @@ fn each_circuit_is_recognized() {
         ("outboard", format!("Q1 npn-follower-darlington {raw}+5V, none, packaged regulator from internal")),
         ("boot_pair", format!("Q1 pnp {raw}+12V, transistor pair, zener diode from output")),
         ("boot_pair_su", format!("Q1 pnp {raw}+12V, transistor pair, zener diode from output")),
+        ("boot_diodes", format!("Q1+Q4 pnp-darlington {raw}+5V, transistor pair, diodes from output")),
         ("boot_npn", format!("Q1 npn-follower {raw}+5V, op-amp, shunt reference from output")),
         ("boot_npn_su", format!("Q1 npn-follower {raw}+5V, op-amp, shunt reference from output")),
         ("high_room", format!("Q1 pmos {raw}+10V, op-amp, shunt reference from output")),
@@ -60,12 +66,13 @@ fn set_points_are_the_simulators_within_a_few_percent() {
     let own = |row: &&Row| row.fact == "output_voltage" && !row.case.contains(".ref-") && !row.case.contains(".ref+");
     let mut compared = 0;
     for row in expected.iter().filter(own) {
-        let facts = facts(&folder().join("nets"), &row.case, &row.regulator);
-        let set = facts["set_point"]["nominal"].as_f64().unwrap_or_else(|| panic!("{}: no set point", row.case));
+        let set = FACTS[&row.key()]["set_point"]["nominal"]
+            .as_f64()
+            .unwrap_or_else(|| panic!("{}: no set point", row.case));
         assert!((set / row.number() - 1.0).abs() < 0.03, "{}: {set} against {}", row.case, row.value);
         compared += 1;
     }
-    assert_eq!(compared, 21);
+    assert_eq!(compared, 23);
 }
 
 /// The voltage across the pass device where the output has fallen to 0.98 of what it is at the nominal input.
@@ -136,5 +143,14 @@ fn the_decks_give_the_figures_that_are_pinned() {
             compared += 1;
         }
     }
-    assert!(compared >= 100, "{compared}");
+    assert!(compared >= 110, "{compared}");
+}
+
+/// Every figure that is pinned.
+#[test]
+fn every_figure_is_the_simulators() {
+    let rows = expected();
+    assert!(rows.len() >= 210, "{}", rows.len());
+    let faults = faults(&FACTS, &rows);
+    assert!(faults.is_empty(), "{} of {}:\n{}", faults.len(), rows.len(), faults.join("\n"));
 }

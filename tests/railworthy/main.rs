@@ -39,6 +39,7 @@ mod many_boards;
 mod netlist_corpus;
 mod netlist_hostile;
 mod oracle_deck;
+mod oracle_figures;
 mod oracle_solver;
 mod order_codes;
 mod outside_gates;

@@ -53,7 +53,7 @@ def circuit(title, rail, volts, amps, parts, supply="+18V_RAW", nominal=18.0, ot
     """One circuit: its rail with nominal voltage and full load, its supply, other supplies as (net, volts), its parts.
 
     broken: (part, terminal, side): the pin at which the loop is broken, and whether it drives or receives there.
-    force: the net that is forced to count operating points, with its highest voltage.
+    force: the net that is forced to count operating points, with its highest voltage and that in regulation.
     """
     return dict(title=title, rail=rail, volts=volts, amps=amps, supply=supply, nominal=nominal, others=list(others),
                 broken=broken, force=force, parts=parts)
@@ -136,6 +136,14 @@ CIRCUITS = {
             r("R1", "2k2", RAW, "REF"), r("R2", "1k", RAW, "DRV"), r("R3", "4k7", "+10V", "FB"), r("R4", "4k99", "FB", "GND"),
             r("R5", "1k5", "TAIL", "GND"), c("C1", "100n", "REF", "GND"), bulk("C2", "100u", 0.3, "+10V", "GND"),
         ], broken=("Q1", "B", "receives")),
+    "pair_npn": circuit(
+        "Irrigation clock, 5 V, pair and Darlington follower", "+5V", 5.0, 0.5, [
+            q("Q1", "NPN", "power_npn", "E4", RAW, "+5V"), q("Q4", "BC847", "small_npn", "DRV", RAW, "E4"),
+            q("Q2", "BC847", "small_npn", "REF", RAW, "TAIL"), q("Q3", "BC847", "small_npn", "FB", "DRV", "TAIL"),
+            d("D1", "SHUNT25", "LM4040DBZ-2.5", "shunt25", "REF", "GND"), r("R1", "6k8", RAW, "REF"), r("R2", "8k2", RAW, "DRV"),
+            r("R3", "4k7", "+5V", "FB"), r("R4", "4k7", "FB", "GND"), r("R5", "820", "TAIL", "GND"), r("R6", "1k", "E4", "+5V"),
+            c("C1", "10n", "REF", "GND"), c("C3", "100p", "DRV", "FB"), bulk("C2", "22u", 0.25, "+5V", "GND"),
+        ], broken=("Q4", "B", "receives")),
     "pair_mirror": circuit(
         "Data logger, 12 V, pair with mirror", "+12V", 12.0, 0.08, [
             q("Q1", "PNP", "medium_pnp", "DRV", "+12V", RAW),
@@ -228,21 +236,29 @@ CIRCUITS = {
             q("Q3", "BC847", "small_npn", "FB", RAW, "TAIL"), d("D1", "ZENER", "6V2", "zener62", "REF", "GND"),
             r("R1", "1k2", "+12V", "REF"), r("R2", "1k", RAW, "DRV"), r("R3", "4k7", "+12V", "FB"), r("R4", "4k99", "FB", "GND"),
             r("R5", "1k5", "TAIL", "GND"), c("C1", "10n", "REF", "GND"), bulk("C2", "47u", 0.4, "+12V", "GND"),
-        ], broken=("Q1", "B", "receives"), force=("REF", 8.0)),
+        ], broken=("Q1", "B", "receives"), force=("REF", 8.0, 6.2)),
+    "boot_diodes": circuit(
+        "Night lamps, 5 V, Darlington pass with bleeders, reference of two diodes from the output", "+5V", 5.0, 0.2, [
+            q("Q1", "PNP", "power_pnp", "E4", "+5V", RAW), q("Q4", "BC857", "small_pnp", "DRV", "GND", "E4"),
+            q("Q2", "BC847", "small_npn", "REF", "DRV", "TAIL"), q("Q3", "BC847", "small_npn", "FB", RAW, "TAIL"),
+            d("D1", "D", "1N4148W", "diode", "MID", "REF"), d("D2", "D", "1N4148W", "diode", "GND", "MID"),
+            r("R1", "2k2", "+5V", "REF"), r("R2", "4k7", "E4", "DRV"), r("R3", "27k", "+5V", "FB"), r("R4", "10k", "FB", "GND"),
+            r("R5", "470", "TAIL", "GND"), r("R6", "1k", RAW, "E4"), bulk("C2", "100u", 0.2, "+5V", "GND"),
+        ], broken=("Q4", "B", "receives"), force=("REF", 2.0, 1.35)),
     "boot_npn": circuit(
         "Controller core, 5 V, follower with reference from the output", "+5V", 5.0, 0.3, [
             q("Q1", "NPN", "power_npn", "B", RAW, "+5V"), op("U1", "op_wide", "REF", "FB", "DRV", RAW),
             d("D1", "SHUNT25", "LM4040DBZ-2.5", "shunt25", "REF", "GND"), r("R1", "1k", "+5V", "REF"),
             r("R2", "68", "DRV", "B"), r("R3", "12k", "+5V", "FB"), r("R4", "12k", "FB", "GND"),
             c("C1", "10n", "REF", "GND"), bulk("C2", "22u", 0.3, "+5V", "GND"),
-        ], broken=("U1", "4", "drives"), force=("REF", 4.0)),
+        ], broken=("U1", "4", "drives"), force=("REF", 4.0, 2.5)),
     "high_room": circuit(
         "Heater relays, 10 V, op-amp that cannot reach the gate's threshold", "+10V", 10.0, 0.6, [
             m("Q1", "PMOS", "pmos", "G", "+10V", RAW), op("U1", "op_high", "FB", "REF", "DRV", RAW),
             d("D1", "SHUNT25", "LM4040DBZ-2.5", "shunt25", "REF", "GND"), r("R1", "2k7", "+10V", "REF"),
             r("R2", "100", "DRV", "G"), r("R3", "30k", "+10V", "FB"), r("R4", "10k", "FB", "GND"),
             c("C1", "10n", "REF", "GND"), bulk("C2", "22u", 0.6, "+10V", "GND"),
-        ], broken=("U1", "4", "drives"), force=("REF", 4.0)),
+        ], broken=("U1", "4", "drives"), force=("REF", 4.0, 2.5)),
 }
 
 

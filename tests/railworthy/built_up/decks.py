@@ -121,7 +121,8 @@ def head(name):
         lines += [f"Vinj {driver} {receiver} DC 0 AC 0", f"Iinj 0 {driver} DC 0 AC 0"]
     models = sorted({part[3] for part in circuit["parts"] if isinstance(part[3], str)})
     lines += [model_line(model) for model in models] + [".model DCL D(IS=1e-14 N=1)"]
-    lines.append(f".nodeset v(out)={sign * circuit['volts']:g}")
+    held = f" v({node(circuit, circuit['force'][0])})={circuit['force'][2]:g}" if circuit["force"] else ""
+    lines.append(f".nodeset v(out)={sign * circuit['volts']:g}{held}")
     return "\n".join(lines) + "\n"
 
 

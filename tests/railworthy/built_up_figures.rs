@@ -28,6 +28,7 @@ fn each_circuit_is_recognized() {
     let raw = "+18V_RAW>";
     let circuits = [
         ("darlington_op", format!("Q1+Q2 npn-follower-darlington {raw}+12V, op-amp, zener diode from input")),
+        ("limit_op", format!("Q1 npn-follower {raw}+10V, op-amp, shunt reference from input")),
         ("sziklai_op", format!("Q1+Q2 npn-follower-complementary {raw}+9V, op-amp, shunt reference from input")),
         ("level_op", format!("Q1 pnp {raw}+10V, op-amp, shunt reference from input")),
         ("pair_pnp", format!("Q1 pnp {raw}+10V, transistor pair, zener diode from input")),
@@ -72,7 +73,7 @@ fn set_points_are_the_simulators_within_a_few_percent() {
         assert!((set / row.number() - 1.0).abs() < 0.03, "{}: {set} against {}", row.case, row.value);
         compared += 1;
     }
-    assert_eq!(compared, 23);
+    assert_eq!(compared, 24);
 }
 
 /// The voltage across the pass device where the output has fallen to 0.98 of what it is at the nominal input.
@@ -150,7 +151,7 @@ fn the_decks_give_the_figures_that_are_pinned() {
 #[test]
 fn every_figure_is_the_simulators() {
     let rows = expected();
-    assert!(rows.len() >= 210, "{}", rows.len());
+    assert!(rows.len() >= 220, "{}", rows.len());
     let faults = faults(&FACTS, &rows);
     assert!(faults.is_empty(), "{} of {}:\n{}", faults.len(), rows.len(), faults.join("\n"));
 }

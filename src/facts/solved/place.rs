@@ -192,6 +192,10 @@ impl Draft<'_, '_> {
             if ends.contains(&Some(*net)) || circuit.net(*net).ground || !self.has(*net) || self.is_driven(*net) {
                 continue;
             }
+            // What lies on the output's line is held by the pass transistor, through the parts that join it.
+            if self.built.output_line.contains(net) {
+                continue;
+            }
             let place = self.place(*net);
             let name = circuit.net(*net).name.clone();
             let upstream = ends.iter().flatten().any(|end| self.is_one_supply(*net, *end));

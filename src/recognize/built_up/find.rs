@@ -93,6 +93,7 @@ fn regulator(network: &Network<'_>, stage: &Stage, drive: Drive, ends: &Ends) ->
         gate_source_drops: drops(false),
         input,
         output,
+        output_line: ends.output.clone(),
         amplifier: drive.amplifier,
         divider: divider.clone(),
         reference: drive.reference,

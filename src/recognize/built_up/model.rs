@@ -192,6 +192,8 @@ pub struct BuiltUp {
     pub input: NetId,
     /// The net behind it.
     pub output: NetId,
+    /// The nets that are one with that but for small resistors, beads and links, the pass transistor's own among them.
+    pub output_line: Vec<NetId>,
     /// What compares; `None` where the reference holds the control terminal itself.
     pub amplifier: Option<Amplifier>,
     /// The resistors that divide the output; `None` where it is sensed directly or not at all.

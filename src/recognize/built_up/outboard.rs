@@ -40,6 +40,7 @@ pub(super) fn outboard(network: &Network<'_>, regulator: &Regulator) -> Option<B
         gate_source_drops: stage.gate_source_drops,
         input: stage.input,
         output,
+        output_line: ends.output.clone(),
         amplifier: None,
         divider: None,
         reference: drive.reference,

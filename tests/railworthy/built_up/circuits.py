@@ -112,6 +112,13 @@ CIRCUITS = {
             r("R1", "2k2", RAW, "REF"), r("R2", "100", "DRV", "B"), r("R3", "27k", "+12V", "FB"), r("R4", "20k", "FB", "GND"),
             r("R5", "1k", "E2", "+12V"), c("C1", "100n", "REF", "GND"), bulk("C2", "47u", 0.25, "+12V", "GND"),
         ], broken=("U1", "4", "drives")),
+    "limit_op": circuit(
+        "Door actuators, 10 V, with a current limit", "+10V", 10.0, 0.4, [
+            q("Q1", "NPN", "power_npn", "B", RAW, "SNS"), q("Q2", "BC847", "small_npn", "SNS", "B", "+10V"),
+            op("U1", "op_wide", "REF", "FB", "DRV", RAW), d("D1", "SHUNT25", "LM4040DBZ-2.5", "shunt25", "REF", "GND"),
+            r("R1", "4k7", RAW, "REF"), r("R2", "470", "DRV", "B"), r("R3", "30k", "+10V", "FB"), r("R4", "10k", "FB", "GND"),
+            r("R5", "1R0", "SNS", "+10V"), c("C1", "100n", "REF", "GND"), bulk("C2", "47u", 0.3, "+10V", "GND"),
+        ], broken=("U1", "4", "drives")),
     "sziklai_op": circuit(
         "Moisture probes, 9 V", "+9V", 9.0, 0.5, [
             q("Q1", "PNP", "power_pnp", "CB", "+9V", RAW), q("Q2", "BC847", "small_npn", "B", "CB", "+9V"),

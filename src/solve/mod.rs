@@ -30,8 +30,8 @@ pub use loop_gain::{Frequencies, LoopGain};
 pub use margins::{Margins, margins};
 pub use matrix::LARGEST;
 pub use models::{
-    Bipolar, Capacitor, CurrentSource, Diode, Inductor, Mosfet, OpAmp, Polarity, Resistor, Transconductance,
-    VoltageSource,
+    Bipolar, Capacitor, CurrentSource, Diode, Inductor, Mosfet, OpAmp, Polarity, ProgrammableShunt, Resistor,
+    Transconductance, VoltageSource,
 };
 pub use points::{OperatingPoint, OperatingPoints, Search, operating_points};
 pub use ramp::{Ramp, Trace, ramp};

@@ -10,6 +10,7 @@ mod parts;
 mod place;
 mod recipe;
 mod rest;
+mod shunt;
 mod stability;
 mod start;
 

@@ -68,6 +68,7 @@ impl Draft<'_, '_> {
                 };
                 self.add_shunt(device, packaged, nodes)
             }
+            RegulatorKind::Shunt => self.add_amplifying_shunt(device, packaged),
             RegulatorKind::Reference | RegulatorKind::Series if self.built.reference.devices.contains(&device) => {
                 let Some(input) = packaged.input_net else {
                     return Err(not_modelled(self.facts, device, "its input is open"));

@@ -6,8 +6,8 @@ use super::memory::Memory;
 use crate::board::DeviceModel;
 use crate::quantity::Quantity;
 use crate::solve::{
-    Bank, Bipolar, Capacitor, Circuit, CurrentSource, Device, DeviceId, GROUND, Node, OpAmp, Polarity, Resistor,
-    SeriesRc, SolveError, VoltageSource, from_model,
+    Bank, Bipolar, Capacitor, Circuit, CurrentSource, Device, DeviceId, GROUND, Node, OpAmp, Polarity,
+    ProgrammableShunt, Resistor, SeriesRc, SolveError, VoltageSource, from_model,
 };
 
 /// The least resistance that a link or a resistor has, in ohms.
@@ -52,8 +52,35 @@ pub(super) enum Kind {
     Source(Slot),
     /// A packaged series reference between its input, ground and output: volts, and how close it comes to its input.
     Series(Slot),
+    /// A programmable shunt reference that compares: cathode, reference, anode.
+    AmplifyingShunt(ShuntSlots),
     /// Where the loop is broken.
     Break,
+}
+
+/// The figures of a programmable shunt reference, as [`ProgrammableShunt`] names them.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct ShuntSlots {
+    pub(super) reference: Slot,
+    pub(super) impedance: Slot,
+    pub(super) least_current: Slot,
+    pub(super) sensitivity: Slot,
+    pub(super) bandwidth: Slot,
+    pub(super) pin_current: Slot,
+}
+
+impl ShuntSlots {
+    fn device(&self, values: &[f64]) -> ProgrammableShunt {
+        let of = |slot| Recipe::of(values, slot);
+        ProgrammableShunt {
+            reference: of(self.reference),
+            impedance: of(self.impedance),
+            least_current: of(self.least_current),
+            sensitivity: of(self.sensitivity),
+            bandwidth: of(self.bandwidth),
+            pin_current: of(self.pin_current),
+        }
+    }
 }
 
 /// A part of the circuit.
@@ -250,6 +277,7 @@ fn device(kind: &Kind, values: &[f64], change: &Change) -> Arc<dyn Device> {
         Kind::Link => Arc::new(Resistor { ohms: LEAST_RESISTANCE }),
         Kind::Capacitor(slot) => Arc::new(Capacitor { farads: Recipe::of(values, *slot), esr: 0.0 }),
         Kind::Source(slot) => Arc::new(VoltageSource { volts: Recipe::of(values, *slot) }),
+        Kind::AmplifyingShunt(slots) => Arc::new(slots.device(values)),
         Kind::Break | Kind::Series(_) => Arc::new(VoltageSource { volts: 0.0 }),
         Kind::Model { model, slots } => from_model(model, |name, range| {
             if let Some(top) = change.top.filter(|_| name == "TOP") {

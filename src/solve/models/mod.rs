@@ -6,6 +6,7 @@ mod junction;
 mod mosfet;
 mod opamp;
 mod passive;
+mod programmable_shunt;
 mod source;
 
 pub use bipolar::Bipolar;
@@ -13,6 +14,7 @@ pub use diode::Diode;
 pub use mosfet::Mosfet;
 pub use opamp::OpAmp;
 pub use passive::{Capacitor, Inductor, Resistor};
+pub use programmable_shunt::ProgrammableShunt;
 pub use source::{CurrentSource, Transconductance, VoltageSource};
 
 /// Whether a device conducts with the signs of the N kind (NPN, N channel) or with all of them reversed.

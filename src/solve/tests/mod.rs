@@ -8,6 +8,7 @@ mod loops;
 mod matrix;
 mod models;
 mod moving;
+mod programmable_shunt;
 
 /// That a value is as it should be, as a share of it.
 fn close(value: f64, wanted: f64, share: f64) {

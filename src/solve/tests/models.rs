@@ -47,7 +47,16 @@ fn devices() -> Vec<(&'static str, Box<dyn Device>)> {
         ..Mosfet::new(polarity)
     };
     let amplifier = OpAmp { offset: 1e-3, top: 1.3, bottom: 0.05, ..OpAmp::default() };
+    let shunt = ProgrammableShunt {
+        reference: 2.495,
+        impedance: 0.2,
+        least_current: 0.4e-3,
+        sensitivity: 1.4e-3,
+        bandwidth: 1e6,
+        pin_current: 2e-6,
+    };
     vec![
+        ("programmable shunt", Box::new(shunt)),
         ("diode", Box::new(diode)),
         ("diode without resistance", Box::new(Diode { series_resistance: 0.0, ..diode })),
         ("npn", Box::new(bipolar(Polarity::N))),
@@ -100,6 +109,10 @@ proptest! {
                 // Rails where rails are, about the inner node.
                 (at[2], at[3], at[5]) = (at[2] + 6.0, at[3] - 6.0, at[5] * 0.3);
             }
+            if name == "programmable shunt" {
+                // About its floor, its reference voltage, and the end of its current.
+                at = vec![at[2] + 2.0 + 0.3 * at[0], at[2] + 2.495 + 0.01 * at[1], at[2], 1e-3 * at[3]];
+            }
             let (currents, charges, slopes, capacitances) = values(&*device, &at);
             for column in 0..count {
                 let step = 1e-7;
@@ -133,8 +146,9 @@ proptest! {
 
     #[test]
     fn currents_of_a_device_add_up(volts in prop::collection::vec(-3.0..3.0_f64, 8)) {
-        // The amplifier alone returns its current through ground; a winding's branch row is no node.
-        for (name, device) in devices().into_iter().filter(|(name, _)| *name != "amplifier") {
+        // The inner nodes of amplifiers return their currents through ground; a winding's branch row is no node.
+        let grounded = ["amplifier", "programmable shunt"];
+        for (name, device) in devices().into_iter().filter(|(name, _)| !grounded.contains(name)) {
             let count = device.terminals() + device.inner_nodes() + device.branches();
             let at: Vec<f64> = volts.iter().take(count).map(|volts| volts * 0.3).collect();
             let (currents, charges, ..) = values(&*device, &at);

@@ -17,6 +17,8 @@ const RECALLED: (f64, f64) = (0.7, 1.3);
 const RECALLED_LIMITS: (f64, f64) = (0.0, 3.0);
 /// Dropout of a low-dropout part that no family knows, volts (common practice).
 const LOW_DROPOUT: (f64, f64, f64) = (0.05, 0.35, 1.3);
+/// The base-emitter drop of an outboard transistor, volts: low, nominal, high, most (common practice).
+const BASE_EMITTER: (f64, f64, f64, f64) = (0.6, 0.8, 1.2, 2.0);
 /// Light load as a part of the peak.
 const LIGHT: f64 = 0.1;
 
@@ -28,7 +30,7 @@ pub(super) const DEFINITIONS: &[Definition] = &[
             series(facts, subject, |regulator| {
                 let load = facts.load(regulator);
                 let solved = facts.undeclared(regulator).and_then(|own| facts.solved_dropout(own, None));
-                solved.unwrap_or_else(|| Value::Figure(facts.dropout(regulator, &load)))
+                solved.unwrap_or_else(|| Value::Figure(facts.dropout_of_all(regulator, &load)))
             })
         },
     ),
@@ -39,7 +41,7 @@ pub(super) const DEFINITIONS: &[Definition] = &[
             series(facts, subject, |regulator| {
                 let light = light(&facts.load(regulator));
                 let solved = facts.undeclared(regulator).and_then(|own| facts.solved_dropout(own, light.nominal()));
-                solved.unwrap_or_else(|| Value::Figure(facts.dropout(regulator, &light)))
+                solved.unwrap_or_else(|| Value::Figure(facts.dropout_of_all(regulator, &light)))
             })
         },
     ),
@@ -65,6 +67,22 @@ fn light(load: &Quantity) -> Quantity {
 }
 
 impl Facts<'_> {
+    /// The packaged part's dropout at light load: what is left of the load where a transistor takes it over.
+    pub(super) fn light_packaged_dropout(&self, regulator: &Regulator) -> Quantity {
+        self.dropout(regulator, &light(&self.load(regulator)))
+    }
+
+    /// The dropout with the base-emitter drop of an outboard transistor, whose circuit could not be solved.
+    fn dropout_of_all(&self, regulator: &Regulator, load: &Quantity) -> Quantity {
+        let packaged = self.dropout(regulator, load);
+        let Some(transistor) = regulator.outboard() else { return packaged };
+        let (low, nominal, high, most) = BASE_EMITTER;
+        let what = format!("base-emitter drop of {}", self.circuit().device(transistor).reference);
+        let evidence = Evidence::new(Grade::Assumed, what, "usual at full current");
+        let limits = Pair::new(0.0, most);
+        packaged.plus(&Quantity::given(Dimension::VOLTAGE, Range::clamped(low, nominal, high), limits, evidence))
+    }
+
     fn dropout(&self, regulator: &Regulator, load: &Quantity) -> Quantity {
         if let Some(points) = self.declared_dropout(regulator) {
             let curve = |load: f64, _: f64| interpolated(&points.0, load);
@@ -133,7 +151,9 @@ impl Facts<'_> {
 
     /// The regulator, where no dropout is declared for it.
     fn undeclared<'r>(&self, regulator: &'r Regulator) -> Option<&'r Regulator> {
-        self.declared_dropout(regulator).is_none().then_some(regulator)
+        // Of a packaged part with an outboard transistor, that is one of the figures of its circuit.
+        let declared = self.declared_dropout(regulator).is_some() && regulator.outboard().is_none();
+        (!declared).then_some(regulator)
     }
 
     fn declared_dropout(&self, regulator: &Regulator) -> Option<(Vec<DropoutPoint>, Quantity)> {

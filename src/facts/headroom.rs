@@ -65,7 +65,7 @@ fn series(facts: &Facts<'_>, subject: Subject, compute: impl FnOnce(&Regulator) 
 
 impl Facts<'_> {
     pub(super) fn input_voltage(&self, regulator: &Regulator) -> Quantity {
-        match regulator.input_net {
+        match regulator.source_net() {
             Some(net) => self.rail(net).voltage,
             None => {
                 let part = &self.part_of(regulator).reference;

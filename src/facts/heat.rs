@@ -3,6 +3,7 @@
 use super::family_figure::Ask;
 use super::identity::of;
 use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
+use crate::circuit::Device;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
 use crate::recognize::{Regulator, RegulatorKind, family_package, package_of};
 
@@ -106,8 +107,13 @@ impl Facts<'_> {
         })
     }
 
+    /// The part that gets hot: an outboard transistor carries nearly all of the current.
+    fn heated(&self, regulator: &Regulator) -> &Device {
+        self.circuit().device(regulator.outboard().unwrap_or(regulator.device))
+    }
+
     fn heat_input(&self, regulator: &Regulator) -> Quantity {
-        match regulator.input_net {
+        match regulator.source_net() {
             Some(net) => self.heat_voltage(net).magnitude(),
             None => self.input_magnitude(regulator),
         }
@@ -115,8 +121,11 @@ impl Facts<'_> {
 
     /// Junction to ambient: declared; by the declared heat sink; by the package, where the board's copper is a guess.
     fn thermal_resistance(&self, regulator: &Regulator) -> Quantity {
-        let device = self.part_of(regulator);
-        let what = self.about(regulator, "thermal resistance");
+        let device = self.heated(regulator);
+        let what = match regulator.outboard() {
+            Some(_) => format!("thermal resistance of {}", device.reference),
+            None => self.about(regulator, "thermal resistance"),
+        };
         let declared = self.board().part(&device.reference);
         if let Some(whole) = declared.and_then(|part| part.junction_to_ambient.as_ref()) {
             return whole.quantity(Dimension::THERMAL_RESISTANCE, what);
@@ -141,8 +150,10 @@ impl Facts<'_> {
 
     /// What the sheet gives for the package on its board, else what is usual for it, with its source.
     fn usual(&self, regulator: &Regulator, package: &str) -> Option<(f64, String)> {
+        let own = regulator.outboard().is_none();
         let sheet = self.first_family(regulator, |family| {
-            family_package(family, package).and_then(|package| package.junction_to_ambient.as_ref())
+            let package = family_package(family, package).filter(|_| own);
+            package.and_then(|package| package.junction_to_ambient.as_ref())
         });
         if let Some((_, cited)) = sheet {
             return Some((cited.value, format!("{}, {package} on the board of the sheet", cited.source)));
@@ -169,10 +180,12 @@ impl Facts<'_> {
             dimension: Dimension::TEMPERATURE,
             limits: Pair::new(0.0, JUNCTION.3),
         };
-        self.family_figure(regulator, ask).unwrap_or_else(|| {
+        let own = regulator.outboard().is_none();
+        self.family_figure(regulator, ask).filter(|_| own).unwrap_or_else(|| {
             let (low, nominal, high, most) = JUNCTION;
-            let what = self.about(regulator, "junction limit");
-            let settle = Settle::new(Table::Part, &self.part_of(regulator).reference, "junction_max", "125 °C");
+            let device = self.heated(regulator);
+            let what = format!("junction limit of {}", device.reference);
+            let settle = Settle::new(Table::Part, &device.reference, "junction_max", "125 °C");
             let evidence = Evidence::new(Grade::Assumed, what, "usual for silicon parts").settled_by(settle);
             let range = Range::clamped(low, nominal, high);
             Quantity::given(Dimension::TEMPERATURE, range, Pair::new(low, most), evidence)

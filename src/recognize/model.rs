@@ -186,6 +186,20 @@ impl Regulator {
     pub fn is_built_up(&self) -> bool {
         self.built_up.as_ref().is_some_and(|built| !built.outboard)
     }
+
+    /// The transistor that takes over the current of a packaged part.
+    #[must_use]
+    pub fn outboard(&self) -> Option<DeviceId> {
+        let built = self.built_up.as_ref().filter(|built| built.outboard)?;
+        built.pass.first().copied()
+    }
+
+    /// The net from which the load's current comes: that of the input, or the one ahead of an outboard transistor.
+    #[must_use]
+    pub fn source_net(&self) -> Option<NetId> {
+        let outboard = self.built_up.as_ref().filter(|built| built.outboard);
+        outboard.map(|built| built.input).or(self.input_net)
+    }
 }
 
 /// A part that was recognized and is not judged, with the reason.

@@ -6,6 +6,7 @@ mod accept_command;
 mod accepted;
 mod archive;
 mod built_up_figures;
+mod built_up_packaged;
 mod built_up_regulators;
 mod check_values;
 mod check_values_supply;

@@ -88,7 +88,7 @@ impl Row {
 }
 
 /// The facts of a regulator of a case in a folder of netlists and board files.
-fn facts(folder: &Path, case: &str, regulator: &str) -> Value {
+pub(crate) fn facts(folder: &Path, case: &str, regulator: &str) -> Value {
     let name = case.split('.').next().unwrap();
     let (netlist, board) = (format!("{name}.net"), format!("{case}.railworthy.toml"));
     let ran = run(folder, &["rails", &netlist, "--format", "json", "--board", &board]);

@@ -10,6 +10,7 @@ mod parts;
 mod place;
 mod recipe;
 mod rest;
+mod series;
 mod shunt;
 mod stability;
 mod start;
@@ -41,12 +42,12 @@ impl Facts<'_> {
         regulator.built_up.as_deref().filter(|built| !built.outboard)
     }
 
-    /// The circuit of a built-up regulator, made once; `None` for any other part.
-    fn circuit_of(&self, regulator: &Regulator) -> Option<Rc<Result<Recipe, Box<Evidence>>>> {
-        let built = self.own_circuit(regulator)?;
+    /// The circuit at rest of a regulator with transistors, a packaged one with an outboard transistor among them.
+    fn circuit_at_rest(&self, regulator: &Regulator) -> Option<Rc<Result<Recipe, Box<Evidence>>>> {
+        let built = regulator.built_up.as_deref()?;
         Some(self.recipe_once(regulator.device, || {
             let before = self.design().regulators.iter().take_while(|one| !std::ptr::eq(*one, regulator));
-            if before.filter(|one| self.own_circuit(one).is_some()).count() >= MOST_CIRCUITS {
+            if before.filter(|one| one.built_up.is_some()).count() >= MOST_CIRCUITS {
                 let why = format!(
                     "the board has more than {MOST_CIRCUITS} built-up regulators, of which no more are solved"
                 );
@@ -54,6 +55,12 @@ impl Facts<'_> {
             }
             self.recipe(regulator, built)
         }))
+    }
+
+    /// The circuit of a built-up regulator, made once; `None` for any other part.
+    fn circuit_of(&self, regulator: &Regulator) -> Option<Rc<Result<Recipe, Box<Evidence>>>> {
+        self.own_circuit(regulator)?;
+        self.circuit_at_rest(regulator)
     }
 
     /// A figure that the circuit gives; what is missing for it is told.
@@ -64,7 +71,21 @@ impl Facts<'_> {
         dimension: Dimension,
         solve: impl FnOnce(&Recipe) -> Result<Option<Quantity>, SolveError>,
     ) -> Value {
-        let Some(recipe) = self.circuit_of(regulator) else {
+        if self.own_circuit(regulator).is_none() {
+            return Value::inapplicable("not built up from single parts");
+        }
+        self.figure_at_rest(regulator, noun, dimension, solve)
+    }
+
+    /// The same, of a packaged regulator with an outboard transistor too.
+    fn figure_at_rest(
+        &self,
+        regulator: &Regulator,
+        noun: &str,
+        dimension: Dimension,
+        solve: impl FnOnce(&Recipe) -> Result<Option<Quantity>, SolveError>,
+    ) -> Value {
+        let Some(recipe) = self.circuit_at_rest(regulator) else {
             return Value::inapplicable("not built up from single parts");
         };
         let missing = |evidence| Value::Figure(Quantity::missing(dimension, limits(dimension), evidence));
@@ -80,17 +101,20 @@ impl Facts<'_> {
 
     /// The output of a built-up regulator as solved, signed.
     pub(super) fn solved_output(&self, regulator: &Regulator) -> Option<Quantity> {
-        let found = self.solved_figure(regulator, "output voltage", Dimension::VOLTAGE, |recipe| {
+        let found = self.figure_at_rest(regulator, "output voltage", Dimension::VOLTAGE, |recipe| {
             recipe.output_voltage().map(Some)
         });
         found.figure().filter(|figure| !figure.is_missing()).cloned()
     }
 
-    /// The dropout of a built-up regulator: at a load in amperes, or at its own load.
+    /// The dropout of a built-up regulator: at a load in amperes, or at its own load. Of a packaged one `None` where its
+    /// circuit is not whole.
     pub(super) fn solved_dropout(&self, regulator: &Regulator, load: Option<f64>) -> Option<Value> {
-        self.own_circuit(regulator)?;
+        let outboard = regulator.built_up.as_ref()?.outboard;
         let noun = if load.is_some() { "dropout at light load" } else { "dropout" };
-        Some(self.solved_figure(regulator, noun, Dimension::VOLTAGE, |recipe| recipe.dropout(load).map(Some)))
+        let found = self.figure_at_rest(regulator, noun, Dimension::VOLTAGE, |recipe| recipe.dropout(load).map(Some));
+        let known = found.figure().is_some_and(|figure| !figure.is_missing());
+        (known || !outboard).then_some(found)
     }
 
     /// The whole range of the input, volts.
@@ -109,12 +133,17 @@ impl Facts<'_> {
 
     fn line_change(&self, regulator: &Regulator, ends: fn(&Self, &Regulator) -> (f64, f64)) -> Value {
         let (low, high) = ends(self, regulator);
-        if self.own_circuit(regulator).is_some() && !(low.is_finite() && high.is_finite()) {
+        if regulator.built_up.is_some() && !(low.is_finite() && high.is_finite()) {
             return Value::inapplicable("the range of the input is not known");
         }
-        self.solved_figure(regulator, "line change", Dimension::VOLTAGE, |recipe| {
+        let found = self.figure_at_rest(regulator, "line change", Dimension::VOLTAGE, |recipe| {
             recipe.change_between(low, high).map(Some)
-        })
+        });
+        let missing = found.figure().is_some_and(Quantity::is_missing);
+        if missing && self.own_circuit(regulator).is_none() {
+            return Value::inapplicable("its circuit is not whole");
+        }
+        found
     }
 
     fn operating_points(&self, regulator: &Regulator) -> Value {

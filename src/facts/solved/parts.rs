@@ -77,9 +77,9 @@ impl Draft<'_, '_> {
                 if let Some(missing) = volts.missing_evidence().next() {
                     return Err(Box::new(missing.clone()));
                 }
-                let slot = self.recipe.slot(volts, false);
+                let slots = self.series_slots(packaged, volts);
                 let input = self.place(input);
-                self.add(&reference, vec![input, ground, output], Kind::Series(slot));
+                self.add(&reference, vec![input, ground, output], Kind::Series(slots));
                 Ok(())
             }
             _ => Err(not_modelled(self.facts, device, "there is no model of its kind in a loop")),
@@ -165,7 +165,8 @@ impl Draft<'_, '_> {
     /// Of two transistors in one package the one that belongs to this circuit.
     fn is_inside(&self, one: Transistor) -> bool {
         let cut = |net: NetId| self.facts.circuit().net(net).ground || self.built.boundary.contains(&net);
-        !(cut(one.control) && cut(one.collector) && cut(one.emitter))
+        // An outboard transistor lies between three supplies.
+        self.built.outboard || !(cut(one.control) && cut(one.collector) && cut(one.emitter))
     }
 
     /// Adds the amplifiers that drive a net of this circuit, each unit of a part for itself; the others of the part belong

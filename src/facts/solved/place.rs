@@ -37,7 +37,7 @@ impl Facts<'_> {
             }
         }
         let open = Evidence::new(Grade::Assumed, self.about(regulator, "circuit"), "its input or output is open");
-        let (Some(input_net), Some(output_net)) = (regulator.input_net, regulator.output_net) else {
+        let (Some(input_net), Some(output_net)) = (regulator.source_net(), regulator.output_net) else {
             return Err(Box::new(open));
         };
         let fixed = |quantity| Parameter { quantity, dynamic: false, offset: false };
@@ -186,7 +186,7 @@ impl Draft<'_, '_> {
 
     /// The supplies at which the circuit is cut out, other than its own input and output.
     fn add_supplies(&mut self, regulator: &Regulator) -> Result<(), Box<Evidence>> {
-        let ends = [regulator.input_net, regulator.output_net];
+        let ends = [regulator.source_net(), regulator.input_net, regulator.output_net];
         for net in &self.built.boundary {
             let circuit = self.facts.circuit();
             if ends.contains(&Some(*net)) || circuit.net(*net).ground || !self.has(*net) || self.is_driven(*net) {

@@ -3,11 +3,13 @@
 use std::sync::Arc;
 
 use super::memory::Memory;
+use super::series::SeriesSlots;
+use super::shunt::ShuntSlots;
 use crate::board::DeviceModel;
 use crate::quantity::Quantity;
 use crate::solve::{
-    Bank, Bipolar, Capacitor, Circuit, CurrentSource, Device, DeviceId, GROUND, Node, OpAmp, Polarity,
-    ProgrammableShunt, Resistor, SeriesRc, SolveError, VoltageSource, from_model,
+    Bank, Capacitor, Circuit, CurrentSource, Device, DeviceId, GROUND, Node, Resistor, SeriesRc, SolveError,
+    VoltageSource, from_model,
 };
 
 /// The least resistance that a link or a resistor has, in ohms.
@@ -50,37 +52,12 @@ pub(super) enum Kind {
     Model { model: DeviceModel, slots: Vec<(&'static str, Slot)> },
     /// A supply that is there from the start, volts.
     Source(Slot),
-    /// A packaged series reference between its input, ground and output: volts, and how close it comes to its input.
-    Series(Slot),
+    /// A packaged series part between its input, ground and output.
+    Series(SeriesSlots),
     /// A programmable shunt reference that compares: cathode, reference, anode.
     AmplifyingShunt(ShuntSlots),
     /// Where the loop is broken.
     Break,
-}
-
-/// The figures of a programmable shunt reference, as [`ProgrammableShunt`] names them.
-#[derive(Debug, Clone, Copy)]
-pub(super) struct ShuntSlots {
-    pub(super) reference: Slot,
-    pub(super) impedance: Slot,
-    pub(super) least_current: Slot,
-    pub(super) sensitivity: Slot,
-    pub(super) bandwidth: Slot,
-    pub(super) pin_current: Slot,
-}
-
-impl ShuntSlots {
-    fn device(&self, values: &[f64]) -> ProgrammableShunt {
-        let of = |slot| Recipe::of(values, slot);
-        ProgrammableShunt {
-            reference: of(self.reference),
-            impedance: of(self.impedance),
-            least_current: of(self.least_current),
-            sensitivity: of(self.sensitivity),
-            bandwidth: of(self.bandwidth),
-            pin_current: of(self.pin_current),
-        }
-    }
 }
 
 /// A part of the circuit.
@@ -215,8 +192,8 @@ impl Recipe {
         let mut at_break = None;
         for element in self.elements.iter().filter(|one| !change.without.contains(&one.name)) {
             let ends: Vec<Node> = element.nodes.iter().map(|at| node(*at)).collect();
-            if let Kind::Series(volts) = element.kind {
-                add_series(&mut circuit, &element.name, &ends, Self::of(values, volts))?;
+            if let Kind::Series(slots) = &element.kind {
+                slots.add_to(&mut circuit, &element.name, &ends, values)?;
                 continue;
             }
             let id = circuit.add_shared(&element.name, &ends, device(&element.kind, values, change))?;
@@ -287,19 +264,4 @@ fn device(kind: &Kind, values: &[f64], change: &Change) -> Arc<dyn Device> {
             slot.map_or_else(|| range.nominal(), |(_, slot)| Recipe::of(values, *slot))
         }),
     }
-}
-
-/// A packaged series reference as an amplifier of its own between its input and ground, which drives a transistor.
-fn add_series(circuit: &mut Circuit, name: &str, ends: &[Node], volts: f64) -> Result<(), SolveError> {
-    let [input, ground, output] = ends else { return Err(SolveError::UnknownNode) };
-    let held = circuit.node(&format!("the reference inside {name}"));
-    let gate = circuit.node(&format!("the drive inside {name}"));
-    circuit.add(&format!("the reference of {name}"), &[held, *ground], VoltageSource { volts })?;
-    let amplifier = OpAmp { gain: 1e4, bandwidth: 1e5, slew_rate: 1e5, ..OpAmp::default() };
-    let (upper, lower, polarity) =
-        if volts >= 0.0 { (*input, *ground, Polarity::N) } else { (*ground, *input, Polarity::P) };
-    circuit.add(name, &[held, *output, upper, lower, gate], amplifier)?;
-    let transistor = Bipolar { saturation_current: 1e-12, forward_gain: 1e3, ..Bipolar::new(polarity) };
-    circuit.add(&format!("the transistor of {name}"), &[*input, gate, *output], transistor)?;
-    Ok(())
 }

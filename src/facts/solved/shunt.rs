@@ -2,12 +2,13 @@
 
 use super::super::family_figure::Ask;
 use super::place::{Draft, not_modelled};
-use super::recipe::{Kind, ShuntSlots, Slot};
+use super::recipe::{Kind, Recipe, Slot};
 use crate::board::{DeviceModel, ModelKind};
 use crate::circuit::DeviceId;
 use crate::knowledge::Sign;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range};
 use crate::recognize::Regulator;
+use crate::solve::ProgrammableShunt;
 
 /// Where no model and no family tells: dynamic impedance in ohms and least cathode current in amperes (common practice).
 const IMPEDANCE: (f64, f64, f64) = (0.05, 0.2, 0.5);
@@ -20,6 +21,31 @@ const BANDWIDTH: (f64, f64, f64) = (0.3e6, 1e6, 3e6);
 const PIN_CURRENT: (f64, f64, f64) = (0.0, 2e-6, 4e-6);
 /// How far guesses may lie beyond their usual ends, as a factor.
 const BEYOND: f64 = 4.0;
+
+/// The figures of a programmable shunt reference, as [`ProgrammableShunt`] names them.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct ShuntSlots {
+    pub(super) reference: Slot,
+    pub(super) impedance: Slot,
+    pub(super) least_current: Slot,
+    pub(super) sensitivity: Slot,
+    pub(super) bandwidth: Slot,
+    pub(super) pin_current: Slot,
+}
+
+impl ShuntSlots {
+    pub(super) fn device(&self, values: &[f64]) -> ProgrammableShunt {
+        let of = |slot| Recipe::of(values, slot);
+        ProgrammableShunt {
+            reference: of(self.reference),
+            impedance: of(self.impedance),
+            least_current: of(self.least_current),
+            sensitivity: of(self.sensitivity),
+            bandwidth: of(self.bandwidth),
+            pin_current: of(self.pin_current),
+        }
+    }
+}
 
 impl Draft<'_, '_> {
     /// Adds a shunt reference that amplifies.

@@ -20,7 +20,10 @@ def ohms(text):
 
 
 def node(circuit, net):
-    return {"GND": "0", circuit["supply"]: "in", circuit["rail"]: "out"}.get(net, net.strip("+-").lower())
+    own = net.strip("+-").lower()
+    # A deck does not tell IN from in.
+    own = f"{own}_pin" if own in ("in", "out") else own
+    return {"GND": "0", circuit["supply"]: "in", circuit["rail"]: "out"}.get(net, own)
 
 
 def parameters(model):
@@ -100,8 +103,8 @@ def programmable(ref, symbol, at):
     if symbol == "TL431":
         return [f"B{ref} {at('K')} {at('A')} I=0.05*(1+tanh(400*(v({at('REF')})-v({at('A')})-2.495)))"
                 f"*tanh((v({at('K')})-v({at('A')}))/0.5)*0.5"]
-    # What it takes from its input it gives to its output, at 5 V behind 20 mohm.
-    return [f"B{ref} {at('IN')} {at('OUT')} I=50*(5-v({at('OUT')}))*0.5*(1+tanh(v({at('IN')})-v({at('OUT')})-2))",
+    # What it takes from its input it gives to its output, at 5 V behind 20 mohm, down to 2 V across it.
+    return [f"B{ref} {at('IN')} {at('OUT')} I=50*(5-v({at('OUT')}))*0.5*(1+tanh(20*(v({at('IN')})-v({at('OUT')})-2.1)))",
             f"I{ref} {at('IN')} 0 4m"]
 
 

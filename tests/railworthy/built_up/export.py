@@ -125,6 +125,10 @@ def milli(value):
     return f"{value * 1000:g}"
 
 
+# Of packaged regulators, as in their macromodels.
+DROPOUTS = {"L7805": "2 V at 1 A"}
+
+
 def board(stem, circuit, offset=None):
     """The board file; ESR and offset are written as ranges, so that they are taken as they stand."""
     sign = -1 if circuit["nominal"] < 0 else 1
@@ -146,6 +150,8 @@ def board(stem, circuit, offset=None):
             text = MODELS[model]
             text = text.replace("VOS=0 ", f"VOS={offset} ") if offset and text.startswith("opamp") else text
             lines += ["[[part]]", f'ref = "{ref}"', f'model = "{text}"', ""]
+        elif symbol in DROPOUTS:
+            lines += ["[[part]]", f'ref = "{ref}"', f'dropout = "{DROPOUTS[symbol]}"', ""]
     return "\n".join(lines[:-1]) + "\n"
 
 

@@ -202,8 +202,13 @@ def figures(name):
         rows.append("\t".join([case, regulator, fact, value, unit, f"{tolerance:.4g}", condition]))
 
     if name in PACKAGED:
-        volts = at_input(run(deck(name))[f"{name}_dc_1.dat"], CIRCUITS[name]["nominal"])
+        tables, nominal = run(deck(name)), CIRCUITS[name]["nominal"]
+        volts = at_input(tables[f"{name}_dc_1.dat"], nominal)
         add(name, "output_voltage", volts, "V", PACKAGED[name][1] * abs(volts), "nominal input, load 100 %, macromodel")
+        for fact, share, load in (("dropout", "1", 100), ("dropout_light", "0.1", 10)):
+            across = dropout(tables[f"{name}_dc_{share}.dat"], nominal)
+            told = f"output 2 % under its value at nominal input, load {load} %, macromodel"
+            add(name, fact, across, "V", max(3e-3, 0.03 * across), told)
         return rows
     # Where the offset is a range or the output is no regulated one, figures of a small signal stand for one offset.
     case = f"{name}.ref0" if name in OFFSETS else name

@@ -1,4 +1,4 @@
-//! Bias of shunt references.
+//! Bias of shunt references, and of the references of built-up regulators.
 
 use super::family_figure::Ask;
 use super::identity::of;
@@ -17,16 +17,23 @@ const MINIMUM_BIAS: (f64, f64, f64) = (0.05e-3, 0.5e-3, 1e-3);
 pub(super) const DEFINITIONS: &[Definition] = &[
     amperes(
         "reference_bias",
-        "the current that a shunt reference itself gets: its feed less its load",
-        |facts, subject| shunt(facts, subject, |regulator| facts.bias(regulator)),
+        "the current that a shunt reference itself gets, its feed less its load; of a built-up regulator that of its reference",
+        |facts, subject| {
+            of(facts, subject, |regulator| match regulator.kind {
+                RegulatorKind::Shunt => facts.bias(regulator),
+                _ => facts.solved_bias(regulator),
+            })
+        },
     ),
     amperes(
         "reference_bias_highest",
         "the current through a shunt reference when nothing is drawn from it",
         |facts, subject| {
-            shunt(facts, subject, |regulator| match facts.feed_current(regulator) {
-                Some(current) => Value::Figure(current),
-                None => Value::inapplicable("it is not fed through a resistor"),
+            of(facts, subject, |regulator| match (regulator.kind, facts.feed_current(regulator)) {
+                (RegulatorKind::Shunt, Some(current)) => Value::Figure(current),
+                (RegulatorKind::Shunt, None) => Value::inapplicable("it is not fed through a resistor"),
+                // Its range is that over all inputs and loads.
+                _ => facts.value(subject, "reference_bias"),
             })
         },
     ),
@@ -36,27 +43,36 @@ pub(super) const DEFINITIONS: &[Definition] = &[
             _ => Value::inapplicable("not a reference"),
         })
     }),
-    amperes("bias_minimum", "the least current at which a shunt reference regulates", |facts, subject| {
-        shunt(facts, subject, |regulator| Value::Figure(facts.least_bias(regulator)))
-    }),
-    amperes("bias_maximum", "the most current that a shunt reference may carry", |facts, subject| {
-        shunt(facts, subject, |regulator| match facts.family_figure(regulator, bias("bias_max", "maximum bias")) {
-            Some(most) => Value::Figure(most),
-            None => Value::inapplicable("no maximum is known"),
+    amperes("bias_minimum", "the least current at which such a reference regulates", |facts, subject| {
+        of(facts, subject, |regulator| match (regulator.kind, facts.shunt_inside(regulator)) {
+            (RegulatorKind::Shunt, _) => Value::Figure(facts.least_bias(regulator)),
+            (_, Some(shunt)) => Value::Figure(facts.least_bias(shunt)),
+            _ => facts.knee(regulator),
         })
     }),
+    amperes("bias_maximum", "the most current that a shunt reference may carry", |facts, subject| {
+        of(facts, subject, |regulator| {
+            let shunt =
+                if regulator.kind == RegulatorKind::Shunt { Some(regulator) } else { facts.shunt_inside(regulator) };
+            let most = shunt.and_then(|shunt| facts.family_figure(shunt, bias("bias_max", "maximum bias")));
+            most.map_or_else(|| Value::inapplicable("no maximum is known"), Value::Figure)
+        })
+    }),
+    Definition {
+        name: "reference_is_judged_itself",
+        of: SubjectKind::Regulator,
+        kind: ValueKind::Flag,
+        meaning: "the reference of a built-up regulator is a packaged one, which is a subject of its own",
+        defined_in: file!(),
+        compute: |facts, subject| {
+            of(facts, subject, |regulator| Value::flag(facts.shunt_inside(regulator).is_some()))
+        },
+    },
 ];
 
 const fn amperes(name: &'static str, meaning: &'static str, compute: fn(&Facts<'_>, Subject) -> Value) -> Definition {
     let kind = ValueKind::Figure(Dimension::CURRENT);
     Definition { name, of: SubjectKind::Regulator, kind, meaning, defined_in: file!(), compute }
-}
-
-fn shunt(facts: &Facts<'_>, subject: Subject, compute: impl FnOnce(&Regulator) -> Value) -> Value {
-    of(facts, subject, |regulator| match regulator.kind {
-        RegulatorKind::Shunt => compute(regulator),
-        _ => Value::inapplicable("not a shunt reference"),
-    })
 }
 
 const fn bias(key: &'static str, noun: &'static str) -> Ask<'static> {
@@ -88,6 +104,14 @@ impl Facts<'_> {
     }
 
     fn bias(&self, regulator: &Regulator) -> Value {
+        // A pass transistor on the reference itself takes a part of its current, which the circuit tells.
+        let followed = self.design().regulators.iter().find(|own| {
+            let built = own.built_up.as_ref().filter(|built| built.amplifier.is_none());
+            built.is_some_and(|built| built.reference.devices.contains(&regulator.device))
+        });
+        if let Some(solved @ Value::Figure(_)) = followed.map(|own| self.solved_bias(own)) {
+            return solved;
+        }
         match self.feed_current(regulator) {
             Some(current) => Value::Figure(current.minus(&self.reference_load(regulator))),
             None => Value::inapplicable("it is not fed through a resistor"),

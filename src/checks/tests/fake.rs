@@ -63,6 +63,7 @@ pub(super) const NAMES: &[(SubjectKind, &str, ValueKind)] = &[
     (REGULATOR, "reference_from_own_output", ValueKind::Flag),
     (REGULATOR, "reference_bias", A),
     (REGULATOR, "reference_bias_highest", A),
+    (REGULATOR, "reference_is_judged_itself", ValueKind::Flag),
     (REGULATOR, "bias_minimum", A),
     (REGULATOR, "bias_maximum", A),
     (REGULATOR, "output_capacitors", ValueKind::Group(SubjectKind::Capacitor)),

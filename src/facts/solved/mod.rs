@@ -1,5 +1,6 @@
 //! The figures of regulators that are built up from single parts, solved as circuits.
 
+mod bias;
 mod breaking;
 mod darlington;
 mod exploring;

@@ -116,6 +116,8 @@ pub(super) struct Change {
     pub(super) without: Vec<String>,
     /// The room that amplifiers keep to their upper rail, volts.
     pub(super) top: Option<f64>,
+    /// The part, by name, whose current from the reference's net is measured.
+    pub(super) sensed: Option<String>,
 }
 
 /// How the circuit is looked at.
@@ -135,6 +137,8 @@ pub(super) struct Made {
     pub(super) input: DeviceId,
     pub(super) output: Node,
     pub(super) at_break: Option<DeviceId>,
+    /// Where a current is measured, if one is.
+    pub(super) sense: Option<DeviceId>,
 }
 
 impl Recipe {
@@ -189,9 +193,17 @@ impl Recipe {
         let mut circuit = Circuit::new();
         let nodes: Vec<Node> = self.nodes.iter().map(|name| circuit.node(name)).collect();
         let node = |at: At| at.and_then(|place| nodes.get(place).copied()).unwrap_or(GROUND);
-        let mut at_break = None;
+        let (mut at_break, mut sense) = (None, None);
         for element in self.elements.iter().filter(|one| !change.without.contains(&one.name)) {
-            let ends: Vec<Node> = element.nodes.iter().map(|at| node(*at)).collect();
+            let mut ends: Vec<Node> = element.nodes.iter().map(|at| node(*at)).collect();
+            let held = element.nodes.iter().position(|at| *at == self.reference);
+            if let Some(end) = held.and_then(|held| ends.get_mut(held))
+                && change.sensed.as_ref() == Some(&element.name)
+            {
+                let behind = circuit.node("behind the measured current");
+                sense = Some(circuit.add("the measured current", &[*end, behind], VoltageSource { volts: 0.0 })?);
+                *end = behind;
+            }
             if let Kind::Series(slots) = &element.kind {
                 slots.add_to(&mut circuit, &element.name, &ends, values)?;
                 continue;
@@ -211,7 +223,7 @@ impl Recipe {
                 circuit.add(&format!("output capacitor {place}"), &[output, GROUND], Capacitor { farads, esr })?;
             }
         }
-        Ok(Made { circuit, nodes, input, output, at_break })
+        Ok(Made { circuit, nodes, input, output, at_break, sense })
     }
 
     fn add_load(&self, circuit: &mut Circuit, output: Node, amperes: f64, view: View) -> Result<(), SolveError> {

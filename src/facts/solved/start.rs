@@ -253,12 +253,12 @@ impl Recipe {
     /// What lifts a circuit that starts out of a dead state: without it there is one.
     fn lifted(&self, cases: &[Case], parts: &Lifting) -> Result<Decides, SolveError> {
         for (names, decides) in [(&parts.path, Decides::Path), (&parts.leaks, Decides::Leak)] {
-            let without = Change { without: names.clone(), top: None };
+            let without = Change { without: names.clone(), ..Change::default() };
             if !names.is_empty() && !self.all_come_up(cases, &without)? {
                 return Ok(decides);
             }
         }
-        let turned_off = Change { without: Vec::new(), top: Some(NO_ROOM) };
+        let turned_off = Change { top: Some(NO_ROOM), ..Change::default() };
         if !self.all_come_up(cases, &turned_off)? {
             return Ok(Decides::Headroom);
         }

@@ -5,7 +5,7 @@ use super::identity::of;
 use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
 use crate::circuit::Device;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Slope, Table};
-use crate::recognize::{Regulator, RegulatorKind, family_package, package_of};
+use crate::recognize::{Regulator, RegulatorKind, Transistor, family_package, package_of, transistors};
 
 /// By which factor the resistance on this board may differ from the sheet's, which is measured on a board of its own
 /// (JESD51): low, high, and the limits.
@@ -86,6 +86,9 @@ const fn entry(
 
 fn series(facts: &Facts<'_>, subject: Subject, compute: impl FnOnce(&Regulator) -> Value) -> Value {
     of(facts, subject, |regulator| match regulator.kind {
+        RegulatorKind::Series if regulator.built_up.as_ref().is_some_and(|built| built.outboard) => {
+            Value::inapplicable("an outboard transistor carries most of its current")
+        }
         RegulatorKind::Series => compute(regulator),
         _ => Value::inapplicable("not a series regulator"),
     })
@@ -162,13 +165,28 @@ impl Facts<'_> {
         Some((*usual, format!("usual for {package}")))
     }
 
-    /// `T_junction = T_ambient + P θ`.
+    /// How many pass transistors of a built-up regulator share the load; those that drive the base of another take little
+    /// of it.
+    fn sharing(&self, regulator: &Regulator) -> f64 {
+        let Some(built) = &regulator.built_up else { return 1.0 };
+        let pass: Vec<Transistor> =
+            built.pass.iter().flat_map(|device| transistors(self.circuit(), *device)).collect();
+        let drives = |one: &Transistor| {
+            let behind = [one.collector, one.emitter];
+            pass.iter().any(|other| other.control != one.control && behind.contains(&other.control))
+        };
+        let count = pass.iter().filter(|one| !drives(one)).count().max(1);
+        u32::try_from(count).map_or(1.0, f64::from)
+    }
+
+    /// `T_junction = T_ambient + P θ`, of one of the transistors that share the load alike.
     fn junction_temperature(&self, regulator: &Regulator) -> Quantity {
+        let sharing = self.sharing(regulator);
         let (power, resistance) = (self.dissipation(regulator), self.thermal_resistance(regulator));
         let ambient = self.ambient();
         let inputs = [(&ambient, Slope::Rising), (&power, Slope::Rising), (&resistance, Slope::Rising)];
         Quantity::monotone(Dimension::TEMPERATURE, &inputs, |v| match v {
-            [ambient, power, resistance] => ambient + product(*power, *resistance),
+            [ambient, power, resistance] => ambient + product(*power / sharing, *resistance),
             _ => f64::NAN,
         })
     }

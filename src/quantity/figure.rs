@@ -141,6 +141,15 @@ impl Quantity {
         self
     }
 
+    /// The same figure, which rests on another one too that is held at one value for it: over the range of that one it says
+    /// nothing.
+    #[must_use]
+    pub fn also_held_at(mut self, other: &Quantity) -> Self {
+        self.evidence.take_over(&other.evidence, Arc::ptr_eq);
+        self.missing.take_over(&other.missing, Arc::ptr_eq);
+        self
+    }
+
     pub(super) fn inherit(&mut self, other: &Quantity) {
         // Copies of one fact are one allocation; where they are not, the later one counts, as for any other.
         self.evidence.take_over(&other.evidence, Arc::ptr_eq);

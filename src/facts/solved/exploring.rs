@@ -56,8 +56,9 @@ impl Recipe {
         let whole = unsettled == 0 && moved < MOST_MOVED;
         let ends = self.parameters.iter().take(2).map(|one| &one.quantity);
         let left_out = (!whole).then(|| self.left_out());
-        let rests = self.rests.iter().chain(ends).chain(&left_out);
-        Ok(rests.fold(figure, |figure, one| figure.also_resting_on(one)))
+        let rests = self.rests.iter().chain(&left_out);
+        let figure = rests.fold(figure, |figure, one| figure.also_resting_on(one));
+        Ok(ends.fold(figure, |figure, one| figure.also_held_at(one)))
     }
 
     /// That some ends were not looked at, as a figure that the result rests on.

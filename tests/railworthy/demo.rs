@@ -2,6 +2,7 @@
 
 use std::collections::BTreeSet;
 
+use railworthy::checks::Verdict;
 use railworthy::review::{Examination, review_check};
 
 use crate::judge::Rules;
@@ -9,6 +10,10 @@ use crate::program::examples;
 
 /// Checks that the release must be asked.
 const ASKED: usize = 20;
+/// The pass transistor of the regulator that is built up from single parts.
+const BUILT_UP: &str = "Q2";
+/// Checks that must find something on it in the draft, and hold in the release.
+const OF_BUILT_UP: [&str; 3] = ["esr-window", "phase-margin", "reference-startup"];
 /// Checks that must find something on the draft.
 const BROKEN: usize = 12;
 
@@ -38,5 +43,19 @@ fn the_draft_breaks_many_of_them() {
     let release = judged("gauge-release.net");
     for check in broken {
         assert!(release.told.iter().any(|told| told.check == check), "{check} is not asked of the release");
+    }
+}
+
+#[test]
+fn the_built_up_regulator_rings_and_may_not_start_in_the_draft_and_does_both_well_in_the_release() {
+    let draft = judged("gauge-draft.net");
+    let release = judged("gauge-release.net");
+    for check in OF_BUILT_UP {
+        let verdict = |board: &Examination| {
+            let told = board.told.iter().find(|told| told.check == check && told.subject == BUILT_UP);
+            told.map(|told| told.verdict)
+        };
+        assert_eq!(verdict(&draft), Some(Verdict::Doubtful), "{check} in the draft");
+        assert_eq!(verdict(&release), Some(Verdict::Holds), "{check} in the release");
     }
 }

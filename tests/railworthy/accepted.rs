@@ -127,8 +127,10 @@ fn an_entry_of_a_check_that_was_asked_of_nothing_is_not_told_and_that_of_no_chec
     let bias = entry("reference-bias", "part = \"U2\"", "");
     let folder = gauge(&bias);
     assert_eq!(of_check(&board(folder.path()), "accept-unused").len(), 1);
-    // Without its only shunt reference the board is not asked.
-    append(folder.path(), &format!("[[part]]\nref = \"D4\"\nrole = \"ignore\"\n{bias}"));
+    // Without its shunt references, and without the transistor of the one that is a regulator's own, the board is not
+    // asked.
+    let ignored = ["D4", "D5", "Q2"].map(|part| format!("[[part]]\nref = \"{part}\"\nrole = \"ignore\"\n"));
+    append(folder.path(), &format!("{}{bias}", ignored.concat()));
     assert!(of_check(&board(folder.path()), "accept-unused").is_empty());
     append(folder.path(), &entry("reference-bais", "part = \"U2\"", ""));
     let refused = check(folder.path(), &[]);

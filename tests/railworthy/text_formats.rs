@@ -31,7 +31,7 @@ fn each_finding_is_a_line_with_its_place() {
     assert!(wanted.len() > 5);
     assert_eq!(lines.out.lines().collect::<Vec<_>>(), wanted);
     assert_eq!(lines.status, Some(1));
-    assert!(lines.err.starts_with("6 regulators, ") && lines.err.contains(" requirements: "), "{}", lines.err);
+    assert!(lines.err.starts_with("8 regulators, ") && lines.err.contains(" requirements: "), "{}", lines.err);
     assert!(lines.err.contains("cannot be seen in a netlist"), "{}", lines.err);
     let quiet = run(&examples(), &["check", "gauge-draft.net", "--format", "line", "--quiet"]);
     assert_eq!((quiet.out, quiet.err), (lines.out, String::new()));

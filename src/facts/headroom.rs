@@ -6,9 +6,7 @@ use super::{Definition, Facts, Subject, SubjectKind, Value, ValueKind};
 use crate::knowledge::Sign;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Settle, Slope, Table};
 use crate::recognize::{Regulator, RegulatorKind};
-
-/// By how much of its nominal value the input is moved.
-const LINE_STEP: f64 = 0.1;
+use crate::solve::LINE_STEP;
 
 pub(super) const DEFINITIONS: &[Definition] = &[
     volts("input_voltage", "the input against ground, signed", |facts, subject| {

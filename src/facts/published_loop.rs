@@ -12,11 +12,9 @@ use crate::board::LoadKind;
 use crate::knowledge::{Cited, PublishedLoop};
 use crate::quantity::{Dimension, Pair, Quantity, Range};
 use crate::recognize::{Regulator, Side};
-use crate::solve::{Frequencies, Goal};
-use shape::{Layout, NO_EDGE, Shape, edges, phase};
+use crate::solve::{Frequencies, Goal, USUAL_PHASE};
+use shape::{Layout, NO_EDGE, Shape, edges};
 
-/// The phase margin for which the window is computed, in degrees (common practice).
-const WINDOW_GOAL: f64 = 45.0;
 /// Any phase margin, in degrees.
 const ANY_PHASE: (f64, f64) = (-180.0, 180.0);
 /// Capacitors that differ, the largest first: the smaller ones beyond these are left out.
@@ -98,7 +96,7 @@ impl Facts<'_> {
         let formula = |values: &[f64]| {
             let found = Shape::new(inputs.layout, values, &frequencies).margins();
             match margin {
-                PublishedMargin::Phase => phase(&found),
+                PublishedMargin::Phase => found.phase_or_all(),
                 PublishedMargin::Modulus => found.modulus,
                 PublishedMargin::Crossover => found.crossover.unwrap_or(f64::NAN),
             }
@@ -141,7 +139,7 @@ impl Facts<'_> {
     }
 
     fn computed_edge(&self, regulator: &Regulator, edge: Edge) -> Value {
-        let found = self.published_edge(regulator, edge, WINDOW_GOAL);
+        let found = self.published_edge(regulator, edge, USUAL_PHASE);
         found.unwrap_or_else(|| Value::inapplicable("its loop is not published"))
     }
 

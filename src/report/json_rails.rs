@@ -40,9 +40,6 @@ pub(super) const FACTS: &[&str] = &[
     "junction_temperature",
 ];
 
-/// What a window of ESR can look like.
-const WINDOWS: &[&str] = &["none", "all", "lower", "upper", "two-sided", "split"];
-
 #[derive(Debug, Serialize)]
 struct Result<'a> {
     schema: &'static str,
@@ -94,7 +91,7 @@ enum Fact {
         evidence: Vec<EvidenceEntry>,
     },
     Window {
-        kind: &'static str,
+        kind: String,
         low: Option<f64>,
         high: Option<f64>,
         unit: &'static str,
@@ -157,17 +154,16 @@ fn window(facts: &Facts<'_>, subject: Subject) -> Option<Fact> {
     let value = |figure: &Option<Quantity>| figure.as_ref().and_then(Quantity::nominal).and_then(finite);
     let (least, most) = (value(&low).filter(|least| *least > 0.0), value(&high));
     let solved = match facts.value(subject, "esr_window_kind") {
-        Value::Word(word) => WINDOWS.iter().find(|kind| **kind == word.word).copied(),
+        Value::Word(word) => Some(word.word),
         _ => None,
     };
-    let kind = match (least, most) {
-        _ if solved.is_some() => solved.unwrap_or_default(),
-        (Some(_), Some(_)) => "two-sided",
-        (Some(_), None) => "lower",
-        (None, Some(_)) => "upper",
-        (None, None) if low.is_some() => "all",
-        (None, None) => return None,
+    let by_edges = || match (least, most) {
+        (Some(_), Some(_)) => Some("two-sided"),
+        (Some(_), None) => Some("lower"),
+        (None, Some(_)) => Some("upper"),
+        (None, None) => low.is_some().then_some("all"),
     };
+    let kind = solved.or_else(|| by_edges().map(str::to_owned))?;
     let evidence = low.iter().chain(&high).flat_map(evidence).collect();
     Some(Fact::Window { kind, low: least, high: most, unit: "Ω", evidence })
 }

@@ -7,6 +7,9 @@ use num_complex::Complex64;
 use super::bank::Network;
 use super::loop_gain::LoopGain;
 
+/// The largest phase margin that there is, in degrees.
+const ALL_PHASE: f64 = 180.0;
+
 /// How far a loop is from oscillating.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Margins {
@@ -24,6 +27,12 @@ pub struct Margins {
 impl Margins {
     /// A loop that has all room there is.
     pub const BOUNDLESS: Self = Self { phase: None, crossover: None, modulus: f64::INFINITY, modulus_at: 0.0 };
+
+    /// The phase margin in degrees; all the room there is, 180, where the gain crosses one nowhere.
+    #[must_use]
+    pub fn phase_or_all(&self) -> f64 {
+        self.phase.unwrap_or(ALL_PHASE)
+    }
 
     /// The worse of two, each margin for itself.
     #[must_use]
@@ -55,7 +64,8 @@ impl Margins {
 }
 
 /// An angle in degrees, more than −180 and up to 180.
-fn wrapped(degrees: f64) -> f64 {
+#[must_use]
+pub fn wrapped(degrees: f64) -> f64 {
     let turned = (degrees + 180.0).rem_euclid(360.0) - 180.0;
     if turned == -180.0 { 180.0 } else { turned }
 }

@@ -27,7 +27,7 @@ pub use circuit::{Circuit, Device, DeviceId, GROUND, Node};
 pub use error::SolveError;
 pub use from_model::from_model;
 pub use loop_gain::{Frequencies, LoopGain};
-pub use margins::{Margins, margins};
+pub use margins::{Margins, margins, wrapped};
 pub use matrix::LARGEST;
 pub use models::{
     Bipolar, Capacitor, CurrentSource, Diode, Inductor, Mosfet, OpAmp, Polarity, ProgrammableShunt, Resistor,
@@ -38,4 +38,6 @@ pub use ramp::{Ramp, Trace, ramp};
 pub use solution::{Solution, dc, dc_from, dc_near};
 pub use stamps::{At, Control, MOST_LOCAL, Stamps, THERMAL_VOLTAGE};
 pub use sweep::{DROPOUT_FALL, Dropout, LINE_STEP, dc_sweep, dropout, line_change};
-pub use window::{Goal, Window, WindowKind, esr_grid, esr_scan, window, window_of};
+pub use window::{
+    Goal, LOAD_SHARES, USUAL_PHASE, Window, WindowKind, esr_grid, esr_scan, window, window_of, worst_margins,
+};

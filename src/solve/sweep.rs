@@ -12,7 +12,7 @@ const MOST_ITERATIONS: usize = 40;
 const LEAST_PART: f64 = 1e-4;
 /// By how much the output falls where it is said to have dropped out.
 pub const DROPOUT_FALL: f64 = 0.02;
-/// How far the input moves both ways for the line change.
+/// How far the input moves both ways for the line change, of its nominal level (common practice: supplies vary by a tenth).
 pub const LINE_STEP: f64 = 0.1;
 /// The steps by which the input is lowered, of its nominal level.
 const COARSE_STEP: f64 = 0.02;

@@ -1,9 +1,13 @@
 //! Which ESR of the bulk capacitor keeps a loop stable at every load.
 
-use super::bank::Bank;
+use super::bank::{Bank, Network};
 use super::loop_gain::LoopGain;
 use super::margins::Margins;
 
+/// The loads at which a loop is looked at, as shares of the full one.
+pub const LOAD_SHARES: [f64; 3] = [0.1, 0.5, 1.0];
+/// The phase margin that a loop is usually given, in degrees (common practice).
+pub const USUAL_PHASE: f64 = 45.0;
 /// How closely an edge is bisected, of its value.
 const EDGE_TOLERANCE: f64 = 1e-5;
 /// Most halvings of one edge.
@@ -23,9 +27,7 @@ pub struct Goal {
 impl Goal {
     /// How far margins lie above the goal, as a share of it; below zero where they miss it.
     fn slack(&self, margins: &Margins) -> f64 {
-        // No crossing leaves all room there is.
-        let phase = margins.phase.map_or(180.0, |phase| phase);
-        let by_phase = (phase - self.phase) / self.phase.abs().max(1.0);
+        let by_phase = (margins.phase_or_all() - self.phase) / self.phase.abs().max(1.0);
         if self.modulus > 0.0 { by_phase.min((margins.modulus - self.modulus) / self.modulus) } else { by_phase }
     }
 }
@@ -45,6 +47,24 @@ pub enum WindowKind {
     TwoSided,
     /// There are several ranges.
     Split,
+}
+
+impl WindowKind {
+    /// Every kind with its name in results.
+    pub const NAMES: &'static [&'static str] = &["none", "all", "lower", "upper", "two-sided", "split"];
+
+    /// Its name in results.
+    #[must_use]
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::None => "none",
+            Self::All => "all",
+            Self::Lower => "lower",
+            Self::Upper => "upper",
+            Self::TwoSided => "two-sided",
+            Self::Split => "split",
+        }
+    }
 }
 
 /// The ESR that a loop is stable with, at every load.
@@ -94,9 +114,14 @@ pub fn esr_grid(least: f64, largest: f64, count: u32) -> Vec<f64> {
     (0..count).map(|number| least * (largest / least).powf(f64::from(number) / f64::from(last))).collect()
 }
 
+/// The worst margins of all loops with a network at the output.
+#[must_use]
+pub fn worst_margins(loops: &[LoopGain], network: &Network) -> Margins {
+    loops.iter().map(|own| own.margins(network)).fold(Margins::BOUNDLESS, Margins::worse)
+}
+
 fn worst(loops: &[LoopGain], bank: &Bank, ohms: f64) -> Margins {
-    let network = bank.with_esr(ohms);
-    loops.iter().map(|own| own.margins(&network)).fold(Margins::BOUNDLESS, Margins::worse)
+    worst_margins(loops, &bank.with_esr(ohms))
 }
 
 /// The values of ESR at which all loops, one for each load, meet a goal. The grid, rising, in ohms, is where it is looked

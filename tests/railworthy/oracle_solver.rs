@@ -203,17 +203,6 @@ fn phase_margins_and_crossovers_are_the_simulators() {
     assert_eq!(compared, 4 * 216);
 }
 
-fn kind_name(kind: WindowKind) -> &'static str {
-    match kind {
-        WindowKind::None => "none",
-        WindowKind::All => "all",
-        WindowKind::Lower => "lower",
-        WindowKind::Upper => "upper",
-        WindowKind::TwoSided => "two-sided",
-        WindowKind::Split => "split",
-    }
-}
-
 /// Where a margin crosses a goal on the grid, by straight lines over the logarithm of ESR, as the simulator's rows have
 /// it; the ends of the grid where it does not.
 fn interpolated(loops: &[LoopGain], bank: &Bank, goal: f64) -> (f64, f64) {
@@ -247,7 +236,7 @@ fn windows_are_the_simulators_in_kind_and_edges() {
             for (share, own) in LOADS.iter().zip(loops.chunks(1)) {
                 let case = format!("break={name} {} {bank_name}", load_name(*share));
                 let found = window(own, &bank, &grid(), &goal);
-                assert_eq!(kind_name(found.kind), results.text(circuit, "esr_window_kind", &case).unwrap(), "{case}");
+                assert_eq!(found.kind.name(), results.text(circuit, "esr_window_kind", &case).unwrap(), "{case}");
                 kinds += 1;
                 if found.kind != WindowKind::None {
                     let (low, high) = interpolated(own, &bank, 45.0);
@@ -259,7 +248,7 @@ fn windows_are_the_simulators_in_kind_and_edges() {
             let found = window(&loops, &bank, &grid(), &goal);
             let wanted = results.text(circuit, "esr_window_all_loads", &case).unwrap();
             let (kind, range) = wanted.split_once(' ').unwrap();
-            assert_eq!(kind_name(found.kind), kind, "{circuit} {case}");
+            assert_eq!(found.kind.name(), kind, "{circuit} {case}");
             kinds += 1;
             if let Some((low, high)) = range.split_once('-') {
                 let own = interpolated(&loops, &bank, 45.0);
@@ -269,7 +258,7 @@ fn windows_are_the_simulators_in_kind_and_edges() {
             // Where every phase margin is positive: stable at all.
             let stable = window(&loops, &bank, &grid(), &Goal { phase: 0.0, modulus: 0.0 });
             let wanted = results.text(circuit, "esr_stable_all_loads", &case).unwrap();
-            assert_eq!(kind_name(stable.kind), wanted.split_once(' ').unwrap().0, "{circuit} {case}");
+            assert_eq!(stable.kind.name(), wanted.split_once(' ').unwrap().0, "{circuit} {case}");
             kinds += 1;
         }
     }

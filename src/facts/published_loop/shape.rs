@@ -2,14 +2,13 @@
 
 use num_complex::Complex64;
 
-use crate::solve::{Frequencies, Goal, Margins, Network, SeriesRc, Window, WindowKind, esr_grid, margins, window_of};
+use crate::solve::{
+    Frequencies, Goal, LOAD_SHARES, Margins, Network, SeriesRc, Window, WindowKind, esr_grid, margins, window_of,
+    wrapped,
+};
 
-/// The loads at which the margins are looked at, as parts of the full one.
-const LOADS: [f64; 3] = [0.1, 0.5, 1.0];
 /// The ESR that is searched for a window, in ohms, and at how many values.
 const ESR: (f64, f64, u32) = (1e-3, 100.0, 24);
-/// A phase margin where the gain crosses one nowhere, in degrees: all there is.
-const NO_CROSSING: f64 = 180.0;
 /// An upper edge that is none, in ohms.
 pub(super) const NO_EDGE: f64 = f64::MAX;
 
@@ -69,7 +68,7 @@ impl Shape {
     fn worst(&self, inside: &[Inside], network: &Network) -> Margins {
         let admittances: Vec<Complex64> = inside.iter().map(|(hertz, ..)| network.admittance(*hertz)).collect();
         let (own, full) = self.conductances;
-        LOADS.iter().fold(Margins::BOUNDLESS, |worst, share| {
+        LOAD_SHARES.iter().fold(Margins::BOUNDLESS, |worst, share| {
             let ohms = 1.0 / (own + full * share);
             let gains = inside
                 .iter()
@@ -103,17 +102,11 @@ impl Shape {
 fn crossed(found: Margins, last: Option<Inside>) -> Margins {
     match (found.phase, last) {
         (None, Some((hertz, over, under))) if over.norm() > under.norm() => {
-            let phase = 180.0 + (over / under).arg().to_degrees();
-            let phase = if phase > 180.0 { phase - 360.0 } else { phase };
+            let phase = wrapped(180.0 + (over / under).arg().to_degrees());
             Margins { phase: Some(phase), crossover: Some(hertz), ..found }
         }
         _ => found,
     }
-}
-
-/// The phase margin in degrees; all there is where the gain crosses one nowhere.
-pub(super) fn phase(found: &Margins) -> f64 {
-    found.phase.unwrap_or(NO_CROSSING)
 }
 
 /// The edges of a window in ohms: 0 and [`NO_EDGE`] where it is open, its best value twice where nothing will do.

@@ -2,10 +2,10 @@
 
 use super::place::Draft;
 use super::recipe::{At, Element, Kind};
-use crate::circuit::NetId;
+use crate::circuit::{DeviceId, NetId};
 use crate::recognize::{AmplifierKind, Duty, Transistor, transistors};
 
-/// Where an element's terminals stand among its nodes: collector, base, emitter.
+/// Where a transistor's control terminal stands among its nodes.
 const CONTROL: usize = 1;
 /// The output of an operational amplifier.
 const OUTPUT: usize = 4;
@@ -27,15 +27,11 @@ impl Draft<'_, '_> {
             }
         };
         if moved {
-            self.recipe.elements.push(Element {
-                name: "the break".to_owned(),
-                nodes: vec![Some(driver), Some(at)],
-                kind: Kind::Break,
-            });
+            self.add("the break", vec![Some(driver), Some(at)], Kind::Break);
         }
     }
 
-    fn name(&self, device: crate::circuit::DeviceId) -> String {
+    fn name(&self, device: DeviceId) -> String {
         self.facts.circuit().device(device).reference.clone()
     }
 
@@ -66,22 +62,16 @@ impl Draft<'_, '_> {
         };
         let mut moved = self.move_ends(at, receiver, direct);
         if !moved {
-            let circuit = self.facts.circuit();
             let controls: Vec<NetId> = stages.iter().map(|one| one.control).filter(|own| *own != net).collect();
             let far: Vec<At> = controls.iter().map(|own| self.place(*own)).collect();
             let leading = |element: &Element, _: usize| {
                 matches!(element.kind, Kind::Resistor(_))
                     && element.nodes.iter().any(|node| node.is_some() && far.contains(node))
-                    && circuit.device_named(&element.name).is_some()
             };
             moved = self.move_ends(at, receiver, leading);
         }
         if moved {
-            self.recipe.elements.push(Element {
-                name: "the break".to_owned(),
-                nodes: vec![Some(at), Some(receiver)],
-                kind: Kind::Break,
-            });
+            self.add("the break", vec![Some(at), Some(receiver)], Kind::Break);
         }
     }
 

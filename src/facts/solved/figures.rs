@@ -89,12 +89,12 @@ pub(in crate::facts) const DEFINITIONS: &[Definition] = &[
     Definition {
         name: "esr_window_kind",
         of: SubjectKind::Regulator,
-        kind: ValueKind::Word(&["none", "all", "lower", "upper", "two-sided", "split"]),
+        kind: ValueKind::Word(WindowKind::NAMES),
         meaning: "what the solved window of the bulk capacitor's ESR looks like",
         defined_in: file!(),
         compute: |facts, s| {
             of(facts, s, |regulator| match facts.solved_window(regulator) {
-                Ok(window) => Value::word(kind_name(window.kind)),
+                Ok(window) => Value::word(window.kind.name()),
                 Err(why) => Value::inapplicable(why),
             })
         },
@@ -109,17 +109,6 @@ const fn figure(
 ) -> Definition {
     let kind = ValueKind::Figure(dimension);
     Definition { name, of: SubjectKind::Regulator, kind, meaning, defined_in: file!(), compute }
-}
-
-fn kind_name(kind: WindowKind) -> &'static str {
-    match kind {
-        WindowKind::None => "none",
-        WindowKind::All => "all",
-        WindowKind::Lower => "lower",
-        WindowKind::Upper => "upper",
-        WindowKind::TwoSided => "two-sided",
-        WindowKind::Split => "split",
-    }
 }
 
 /// A figure of the loop: of one that is published for the part, else of the solved one.

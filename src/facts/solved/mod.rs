@@ -22,7 +22,7 @@ use super::{Facts, Flag, Value};
 use crate::board::SettingValue;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, read_amount};
 use crate::recognize::{BuiltUp, ReferenceFeed, Regulator};
-use crate::solve::{Goal, SolveError, Window, WindowKind};
+use crate::solve::{Goal, LINE_STEP, SolveError, USUAL_PHASE, Window, WindowKind};
 
 pub(in crate::facts) use figures::DEFINITIONS;
 use parts::not_solved;
@@ -32,9 +32,7 @@ pub(in crate::facts) use start::Start;
 
 /// Most circuits that are solved of one board: each takes up to seconds.
 const MOST_CIRCUITS: usize = 200;
-/// The phase margin for which a window of ESR is stated, in degrees, where no setting says another.
-const PHASE_GOAL: f64 = 45.0;
-/// The least and the largest ESR that stand for a window without any in it, and without an upper end, in ohms.
+/// The ESR that stands for the least of a window with none in it, and for the largest of one without an upper end, ohms.
 const NOWHERE: f64 = 30.0;
 
 impl Facts<'_> {
@@ -128,7 +126,7 @@ impl Facts<'_> {
     fn tenth_of_input(&self, regulator: &Regulator) -> (f64, f64) {
         let input = self.input_voltage(regulator);
         let nominal = input.nominal().unwrap_or(f64::NAN);
-        let (one, other) = (nominal * 0.9, nominal * 1.1);
+        let (one, other) = (nominal * (1.0 - LINE_STEP), nominal * (1.0 + LINE_STEP));
         (one.min(other).max(input.worst().low()), one.max(other).min(input.worst().high()))
     }
 
@@ -236,8 +234,7 @@ impl Facts<'_> {
             SettingValue::Text(text) => read_amount(text, Dimension::ANGLE).ok(),
             _ => None,
         });
-        let phase = text.unwrap_or(PHASE_GOAL);
-        Goal { phase, modulus: 0.0 }
+        Goal { phase: text.unwrap_or(USUAL_PHASE), modulus: 0.0 }
     }
 
     /// The window of the bulk capacitor's ESR at nominal values.

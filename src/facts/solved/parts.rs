@@ -232,8 +232,12 @@ impl Draft<'_, '_> {
         let part = self.facts.circuit().device(device);
         let kind = match part.kind {
             DeviceKind::Resistor => part.amount.is_some(),
-            DeviceKind::Diode | DeviceKind::Schottky => true,
-            DeviceKind::Inductor | DeviceKind::Ferrite | DeviceKind::Fuse | DeviceKind::NetTie => true,
+            DeviceKind::Diode
+            | DeviceKind::Schottky
+            | DeviceKind::Inductor
+            | DeviceKind::Ferrite
+            | DeviceKind::Fuse
+            | DeviceKind::NetTie => true,
             _ => false,
         };
         let [one, other] = nets.map(|net| self.place(net));

@@ -4,14 +4,13 @@ use std::rc::Rc;
 
 use super::recipe::{Change, INPUT, LOAD, Parameter, Recipe, Slot, View};
 use crate::quantity::{Dimension, Quantity};
-use crate::solve::{Bank, Frequencies, Goal, LoopGain, Margins, Network, SolveError, Window, esr_grid, window};
+use crate::solve::{
+    Bank, Frequencies, Goal, LOAD_SHARES, LoopGain, Margins, Network, SolveError, Window, esr_grid, window,
+    worst_margins,
+};
 
-/// The loads at which a loop is looked at, as shares of the peak.
-const SHARES: [f64; 3] = [0.1, 0.5, 1.0];
 /// The values of ESR that are looked at, in ohms, and how many.
 const ESR: (f64, f64, u32) = (1e-3, 30.0, 24);
-/// A margin where the gain crosses one nowhere, in degrees.
-const ALL: f64 = 180.0;
 
 impl Recipe {
     /// Whether there is a loop.
@@ -28,7 +27,7 @@ impl Recipe {
         self.memory.loops.once(&own, || {
             let frequencies = Frequencies::default();
             let peak = Self::of(values, LOAD);
-            let found = SHARES.map(|share| {
+            let found = LOAD_SHARES.map(|share| {
                 let values = Self::with(&own, LOAD, peak * share);
                 let made = self.make(&values, View::Bare, &Change::default())?;
                 let solution = self.solution(&values)?;
@@ -42,14 +41,12 @@ impl Recipe {
     /// The worst margins of all loads.
     fn margins(&self, values: &[f64]) -> Result<Margins, SolveError> {
         let network = self.bank(values).map_or_else(Network::default, |(bank, ohms)| bank.with_esr(ohms));
-        let loops = self.loops(values)?;
-        Ok(loops.iter().map(|own| own.margins(&network)).fold(Margins::BOUNDLESS, Margins::worse))
+        Ok(worst_margins(&self.loops(values)?, &network))
     }
 
     /// The least phase margin in degrees.
     pub(super) fn phase_margin(&self) -> Result<Option<Quantity>, SolveError> {
-        let found =
-            self.explore(Dimension::ANGLE, in_motion, |values| Ok(self.margins(values)?.phase.unwrap_or(ALL)));
+        let found = self.explore(Dimension::ANGLE, in_motion, |values| Ok(self.margins(values)?.phase_or_all()));
         found.map(Some)
     }
 

@@ -69,6 +69,14 @@ pub(super) const DEFINITIONS: &[Definition] = &[
             })
         },
     ),
+    Definition {
+        name: "heated_part",
+        of: SubjectKind::Regulator,
+        kind: ValueKind::Word(&[]),
+        meaning: "the part that gets hot: an outboard transistor, else the regulator itself",
+        defined_in: file!(),
+        compute: |facts, subject| series(facts, subject, |regulator| Value::word(&facts.heated(regulator).reference)),
+    },
     entry("junction_limit", Dimension::TEMPERATURE, "the largest junction temperature", |facts, subject| {
         series(facts, subject, |regulator| Value::Figure(facts.junction_limit(regulator)))
     }),
@@ -86,9 +94,6 @@ const fn entry(
 
 fn series(facts: &Facts<'_>, subject: Subject, compute: impl FnOnce(&Regulator) -> Value) -> Value {
     of(facts, subject, |regulator| match regulator.kind {
-        RegulatorKind::Series if regulator.built_up.as_ref().is_some_and(|built| built.outboard) => {
-            Value::inapplicable("an outboard transistor carries most of its current")
-        }
         RegulatorKind::Series => compute(regulator),
         _ => Value::inapplicable("not a series regulator"),
     })

@@ -25,7 +25,6 @@ use crate::recognize::{BuiltUp, ReferenceFeed, Regulator};
 use crate::solve::{Goal, LINE_STEP, SolveError, USUAL_PHASE, Window, WindowKind};
 
 pub(in crate::facts) use figures::DEFINITIONS;
-use parts::not_solved;
 pub(in crate::facts) use recipe::Recipe;
 use start::Decides;
 pub(in crate::facts) use start::Start;
@@ -93,7 +92,7 @@ impl Facts<'_> {
             Ok(recipe) => match solve(recipe) {
                 Ok(Some(figure)) => Value::Figure(figure),
                 Ok(None) => Value::inapplicable("there is no such loop"),
-                Err(error) => missing(not_solved(self, regulator, noun, error.to_string())),
+                Err(error) => missing(self.not_solved(regulator, noun, error.to_string())),
             },
         }
     }

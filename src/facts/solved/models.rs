@@ -4,7 +4,7 @@ use super::super::Facts;
 use crate::board::{Declared, DeviceModel, ModelKind};
 use crate::circuit::DeviceId;
 use crate::quantity::{Dimension, Evidence, Grade, Pair, Quantity, Range, Settle, Table};
-use crate::recognize::device_match_as;
+use crate::recognize::{Regulator, Transistor, device_match_as, transistors};
 
 /// A part's model with what stands behind it.
 #[derive(Debug)]
@@ -52,6 +52,14 @@ impl Facts<'_> {
         entry.model.as_ref().filter(|model| fits(model.value.kind(), kind))
     }
 
+    /// That a circuit does not settle, so that a figure of it cannot be had: a better model of its pass transistor may help.
+    pub(super) fn not_solved(&self, regulator: &Regulator, noun: &str, why: String) -> Evidence {
+        let evidence = Evidence::new(Grade::Assumed, self.about(regulator, noun), why);
+        let pass = regulator.outboard().unwrap_or(regulator.device);
+        let Some(transistor) = transistors(self.circuit(), pass).first().copied() else { return evidence };
+        evidence.settled_by(settle(&self.circuit().device(pass).reference, model_kind(transistor)))
+    }
+
     /// The error that a part has no model.
     pub(super) fn no_model(&self, device: DeviceId, kind: ModelKind) -> Evidence {
         let part = self.circuit().device(device);
@@ -65,6 +73,16 @@ impl Facts<'_> {
 fn fits(told: ModelKind, wanted: ModelKind) -> bool {
     let diode = |kind: ModelKind| matches!(kind, ModelKind::Diode | ModelKind::Zener | ModelKind::Shunt);
     told == wanted || (diode(told) && diode(wanted))
+}
+
+/// The kind of model that a transistor has.
+pub(super) fn model_kind(one: Transistor) -> ModelKind {
+    match (one.bipolar, one.n) {
+        (true, true) => ModelKind::Npn,
+        (true, false) => ModelKind::Pnp,
+        (false, true) => ModelKind::Nmos,
+        (false, false) => ModelKind::Pmos,
+    }
 }
 
 /// How a model of a kind is declared.

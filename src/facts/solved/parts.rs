@@ -1,12 +1,12 @@
 //! Each part of a cut-out as an element of the circuit.
 
-use super::super::Facts;
+use super::models::model_kind;
 use super::place::{Draft, not_modelled};
 use super::recipe::{At, Kind};
 use crate::board::ModelKind;
 use crate::circuit::{Circuit, DeviceId, DeviceKind, NetId, Pin};
 use crate::knowledge::Sign;
-use crate::quantity::{Evidence, Grade, Settle, Table};
+use crate::quantity::Evidence;
 use crate::recognize::{OpAmpUnit, Regulator, RegulatorKind, Transistor, anode, op_amps, transistors};
 
 /// How many parts of a net are looked at.
@@ -145,12 +145,7 @@ impl Draft<'_, '_> {
             if !self.is_inside(one) {
                 continue;
             }
-            let kind = match (one.bipolar, one.n) {
-                (true, true) => ModelKind::Npn,
-                (true, false) => ModelKind::Pnp,
-                (false, true) => ModelKind::Nmos,
-                (false, false) => ModelKind::Pmos,
-            };
+            let kind = model_kind(one);
             // Collector, base, emitter; drain, gate, source.
             let nodes = [one.collector, one.control, one.emitter].map(|net| self.place(net));
             if one.darlington && self.facts.declared_model(device, kind).is_none() {
@@ -244,11 +239,4 @@ impl Draft<'_, '_> {
         let fixed = |at: At| at.is_none() || at == Some(self.recipe.input);
         kind && !(fixed(one) && fixed(other))
     }
-}
-
-/// What says that a figure cannot be had for a circuit that is not whole.
-pub(super) fn not_solved(facts: &Facts<'_>, regulator: &Regulator, noun: &str, why: String) -> Evidence {
-    let reference = &facts.part_of(regulator).reference;
-    let settle = Settle::new(Table::Part, reference, "model", "npn IS=1e-14 BF=40..160");
-    Evidence::new(Grade::Assumed, facts.about(regulator, noun), why).settled_by(settle)
 }

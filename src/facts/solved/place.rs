@@ -9,7 +9,7 @@ use super::recipe::{At, BankSlots, Draw, Element, Kind, Parameter, Recipe, Slot}
 use crate::board::{LoadKind, ModelKind};
 use crate::circuit::{DeviceId, NetId};
 use crate::knowledge::Sign;
-use crate::quantity::{Dimension, Evidence, Grade, Quantity, Range, Settle, Table};
+use crate::quantity::{Dimension, Evidence, Grade, Quantity, Range};
 use crate::recognize::{BuiltUp, Regulator, Side};
 
 /// Seconds in which an input rises where nothing is declared: fast ramps can hide a dead state.
@@ -251,9 +251,8 @@ impl Draft<'_, '_> {
     }
 }
 
-/// The error that a part is none that the solver has a model for.
+/// The error that a part is none that the solver has a model for: none that could be declared would help.
 pub(super) fn not_modelled(facts: &Facts<'_>, device: DeviceId, why: &str) -> Box<Evidence> {
     let reference = &facts.circuit().device(device).reference;
-    let settle = Settle::new(Table::Part, reference, "model", "npn IS=1e-14 BF=100");
-    Box::new(Evidence::new(Grade::Assumed, format!("model of {reference}"), why).settled_by(settle))
+    Box::new(Evidence::new(Grade::Assumed, format!("model of {reference}"), why))
 }

@@ -180,6 +180,11 @@ impl Facts<'_> {
         found.map_err(|error| error.to_string())
     }
 
+    /// Whether the circuit could be solved for its start.
+    pub(super) fn start_is_known(&self, regulator: &Regulator) -> bool {
+        self.start_of(regulator).is_ok()
+    }
+
     fn starts(&self, regulator: &Regulator) -> Value {
         let start = match self.start_of(regulator) {
             Ok(start) => start,
